@@ -1,174 +1,65 @@
 """Text to SI and back, at the edge and nowhere else.
 
 Input must carry its unit: in the text itself (`412 g`), in a column head (`planned_mass [g]`) or in
-the label of a field. Factors are exact fractions, so `1 lb` is 0.45359237 kg to the last bit.
+the label of a field. The units themselves are in `ledger.factors`, how figures are shown in
+`ledger.display`; both are had from here as well.
 """
 
 from __future__ import annotations
 
 import math
 import re
-from dataclasses import dataclass
 from datetime import UTC, date, datetime
-from enum import StrEnum
-from fractions import Fraction
 
-from ledger.errors import LedgerError
+from ledger.display import (
+    Display,
+    Rounding,
+    ShownIn,
+    show,
+    show_small_mass,
+    shown_number,
+    shown_unit,
+)
+from ledger.factors import (
+    KG_PER_LB,
+    M3_PER_US_GAL,
+    M_PER_IN,
+    SI_UNIT,
+    STANDARD_GRAVITY_M_S2,
+    Dimension,
+    UnitError,
+    from_si,
+    to_si,
+    units_of,
+)
 
-KG_PER_LB = 0.45359237
-M_PER_IN = 0.0254
-M3_PER_US_GAL = 0.003785411784
-STANDARD_GRAVITY_M_S2 = 9.80665
-
-
-class Dimension(StrEnum):
-    """What a number measures. The value names it in a message."""
-
-    MASS = "mass"
-    LENGTH = "length"
-    AREA = "area"
-    VOLUME = "volume"
-    DENSITY = "density"
-    AREAL_MASS = "areal mass"
-    LINEAR_MASS = "mass per length"
-    DURATION = "duration"
-    TEMPERATURE = "temperature"
-    FLOW = "flow"
-    ANGLE = "angle"
-    FRACTION = "share"
-
-
-class Display(StrEnum):
-    """How a build shows its figures."""
-
-    METRIC = "metric"
-    US = "us"
-
-
-class UnitError(LedgerError):
-    """A text that is not a quantity. `what` says what is wrong, `do` what to write instead."""
-
-    def __init__(self, what: str, do: str) -> None:
-        super().__init__(f"{what}; {do}")
-        self.what = what
-        self.do = do
-
-
-_LB = Fraction("0.45359237")
-_OZ = _LB / 16
-_IN = Fraction("0.0254")
-_FT = 12 * _IN
-_YD = 3 * _FT
-_US_GAL = Fraction("0.003785411784")
-_IMP_GAL = Fraction("0.00454609")
-_G = Fraction(1, 1000)
-_MM = Fraction(1, 1000)
-_CM = Fraction(1, 100)
-_L = Fraction(1, 1000)
-_ML = Fraction(1, 10**6)
-
-_FACTORS: dict[Dimension, dict[str, Fraction]] = {
-    Dimension.MASS: {"kg": Fraction(1), "g": _G, "mg": _G / 1000, "t": Fraction(1000), "lb": _LB, "oz": _OZ},
-    Dimension.LENGTH: {
-        "m": Fraction(1),
-        "mm": _MM,
-        "cm": _CM,
-        "um": _MM / 1000,
-        "in": _IN,
-        "ft": _FT,
-        "yd": _YD,
-    },
-    Dimension.AREA: {
-        "m2": Fraction(1),
-        "cm2": _CM**2,
-        "mm2": _MM**2,
-        "in2": _IN**2,
-        "ft2": _FT**2,
-        "yd2": _YD**2,
-    },
-    Dimension.VOLUME: {
-        "m3": Fraction(1),
-        "L": _L,
-        "l": _L,
-        "dL": _L / 10,
-        "cL": _L / 100,
-        "mL": _ML,
-        "ml": _ML,
-        "cm3": _ML,
-        "mm3": _MM**3,
-        "US gal": _US_GAL,
-        "imp gal": _IMP_GAL,
-        "US qt": _US_GAL / 4,
-        "US fl oz": _US_GAL / 128,
-        "in3": _IN**3,
-        "ft3": _FT**3,
-    },
-    Dimension.DENSITY: {
-        "kg/m3": Fraction(1),
-        "g/cm3": Fraction(1000),
-        "g/mL": Fraction(1000),
-        "kg/L": Fraction(1000),
-        "lb/ft3": _LB / _FT**3,
-        "lb/in3": _LB / _IN**3,
-        "lb/US gal": _LB / _US_GAL,
-        "lb/imp gal": _LB / _IMP_GAL,
-    },
-    Dimension.AREAL_MASS: {
-        "kg/m2": Fraction(1),
-        "g/m2": _G,
-        "gsm": _G,
-        "oz/yd2": _OZ / _YD**2,
-        "oz/ft2": _OZ / _FT**2,
-        "lb/ft2": _LB / _FT**2,
-    },
-    Dimension.LINEAR_MASS: {
-        "kg/m": Fraction(1),
-        "g/m": _G,
-        "tex": _G / 1000,
-        "lb/ft": _LB / _FT,
-        "oz/ft": _OZ / _FT,
-        "oz/yd": _OZ / _YD,
-        "lb/in": _LB / _IN,
-    },
-    Dimension.DURATION: {
-        "s": Fraction(1),
-        "min": Fraction(60),
-        "h": Fraction(3600),
-        "d": Fraction(86400),
-        "day": Fraction(86400),
-        "days": Fraction(86400),
-    },
-    Dimension.FLOW: {
-        "m3/s": Fraction(1),
-        "L/h": _L / 3600,
-        "L/min": _L / 60,
-        "US gal/h": _US_GAL / 3600,
-        "imp gal/h": _IMP_GAL / 3600,
-    },
-    Dimension.ANGLE: {"deg": Fraction(1), "\N{DEGREE SIGN}": Fraction(1)},
-    Dimension.FRACTION: {"%": Fraction(1, 100)},
-}
-
-_KELVIN_AT: dict[str, tuple[Fraction, Fraction]] = {
-    "K": (Fraction(1), Fraction(0)),
-    "C": (Fraction(1), Fraction("273.15")),
-    "F": (Fraction(5, 9), Fraction("459.67") * Fraction(5, 9)),
-}
-
-SI_UNIT: dict[Dimension, str] = {
-    Dimension.MASS: "kg",
-    Dimension.LENGTH: "m",
-    Dimension.AREA: "m2",
-    Dimension.VOLUME: "m3",
-    Dimension.DENSITY: "kg/m3",
-    Dimension.AREAL_MASS: "kg/m2",
-    Dimension.LINEAR_MASS: "kg/m",
-    Dimension.DURATION: "s",
-    Dimension.TEMPERATURE: "K",
-    Dimension.FLOW: "m3/s",
-    Dimension.ANGLE: "deg",
-    Dimension.FRACTION: "1",
-}
+__all__ = [
+    "KG_PER_LB",
+    "M3_PER_US_GAL",
+    "M_PER_IN",
+    "SI_UNIT",
+    "STANDARD_GRAVITY_M_S2",
+    "Dimension",
+    "Display",
+    "Rounding",
+    "ShownIn",
+    "UnitError",
+    "check_unit",
+    "from_si",
+    "read_any_quantity",
+    "read_date",
+    "read_moment",
+    "read_number",
+    "read_quantity",
+    "read_ratio",
+    "show",
+    "show_small_mass",
+    "shown_number",
+    "shown_unit",
+    "to_si",
+    "unit_in_head",
+    "units_of",
+]
 
 _EXAMPLE: dict[Dimension, tuple[str, str]] = {
     Dimension.MASS: ("g", "lb"),
@@ -206,7 +97,13 @@ _SPOKEN = {
     "hours": "h",
     "hour": "h",
     "USgal": "US gal",
+    "US gallon": "US gal",
+    "US gallons": "US gal",
     "impgal": "imp gal",
+    "imp gallon": "imp gal",
+    "imp gallons": "imp gal",
+    "l/h": "L/h",
+    "l/min": "L/min",
 }
 
 
@@ -229,7 +126,7 @@ def read_quantity(text: str, dimension: Dimension, *, unit: str | None = None) -
     """
     example = _EXAMPLE[dimension][0]
     number, rest = _split_number(text, unit_example=example)
-    return to_si(number, _unit_of(rest, unit, text, dimension), dimension)
+    return _in_si(number, _unit_of(rest, unit, text, dimension), dimension, text)
 
 
 def read_any_quantity(
@@ -240,29 +137,12 @@ def read_any_quantity(
     written = rest or unit or ""
     for dimension in dimensions:
         if _known_unit(written, dimension) is not None:
-            return to_si(number, _unit_of(rest, unit, text, dimension), dimension), dimension
+            return _in_si(number, _unit_of(rest, unit, text, dimension), dimension, text), dimension
     choices = " or ".join(
         f"{text.strip().split(' ')[0]} {_EXAMPLE[dimension][0]}" for dimension in dimensions
     )
     problem = f"{text.strip()!r} has no unit" if not written else f"{written!r} is not a unit that fits here"
     raise UnitError(problem, f"write {choices}")
-
-
-def to_si(number: float, unit: str, dimension: Dimension) -> float:
-    """Convert exactly; the only rounding is the last one, to a float."""
-    exact = Fraction(number)
-    if dimension is Dimension.TEMPERATURE:
-        factor, offset = _KELVIN_AT[unit]
-        return float(exact * factor + offset)
-    return float(Fraction(repr(number)) * _FACTORS[dimension][unit])
-
-
-def from_si(value: float, unit: str, dimension: Dimension) -> float:
-    """The number that stands before `unit` for an SI value."""
-    if dimension is Dimension.TEMPERATURE:
-        factor, offset = _KELVIN_AT[unit]
-        return float((Fraction(value) - offset) / factor)
-    return float(Fraction(value) / _FACTORS[dimension][unit])
 
 
 def unit_in_head(head: str) -> tuple[str, str | None]:
@@ -314,113 +194,20 @@ def read_moment(text: str, now: datetime) -> datetime:
     return moment if moment.tzinfo is not None else moment.replace(tzinfo=now.tzinfo or UTC)
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class ShownIn:
-    """Unit, decimals and factor that a build shows one dimension in."""
-
-    unit: str
-    places: int
-
-
-_SHOWN: dict[Display, dict[Dimension, ShownIn]] = {
-    Display.METRIC: {
-        Dimension.MASS: ShownIn(unit="kg", places=2),
-        Dimension.LENGTH: ShownIn(unit="mm", places=1),
-        Dimension.AREA: ShownIn(unit="m2", places=3),
-        Dimension.VOLUME: ShownIn(unit="L", places=1),
-        Dimension.DENSITY: ShownIn(unit="kg/m3", places=1),
-        Dimension.AREAL_MASS: ShownIn(unit="g/m2", places=0),
-        Dimension.LINEAR_MASS: ShownIn(unit="g/m", places=1),
-        Dimension.DURATION: ShownIn(unit="min", places=0),
-        Dimension.TEMPERATURE: ShownIn(unit="C", places=1),
-        Dimension.FLOW: ShownIn(unit="L/h", places=1),
-        Dimension.ANGLE: ShownIn(unit="deg", places=1),
-        Dimension.FRACTION: ShownIn(unit="%", places=1),
-    },
-    Display.US: {
-        Dimension.MASS: ShownIn(unit="lb", places=2),
-        Dimension.LENGTH: ShownIn(unit="in", places=2),
-        Dimension.AREA: ShownIn(unit="ft2", places=2),
-        Dimension.VOLUME: ShownIn(unit="US gal", places=2),
-        Dimension.DENSITY: ShownIn(unit="lb/ft3", places=2),
-        Dimension.AREAL_MASS: ShownIn(unit="oz/yd2", places=2),
-        Dimension.LINEAR_MASS: ShownIn(unit="oz/ft", places=2),
-        Dimension.DURATION: ShownIn(unit="min", places=0),
-        Dimension.TEMPERATURE: ShownIn(unit="F", places=1),
-        Dimension.FLOW: ShownIn(unit="US gal/h", places=2),
-        Dimension.ANGLE: ShownIn(unit="deg", places=1),
-        Dimension.FRACTION: ShownIn(unit="%", places=1),
-    },
-}
-_SMALL_MASS = {Display.METRIC: ShownIn(unit="g", places=1), Display.US: ShownIn(unit="oz", places=2)}
-
-
-class Rounding(StrEnum):
-    """Which way a shown figure may err: usable goes down, trapped goes up, all else to the nearest."""
-
-    NEAREST = "nearest"
-    DOWN = "down"
-    UP = "up"
-
-
-def shown_number(
-    value: float,
-    dimension: Dimension,
-    display: Display,
-    *,
-    rounding: Rounding = Rounding.NEAREST,
-    places: int | None = None,
-) -> str:
-    """The figure alone, in the build's unit, rounded towards safety where asked."""
-    shown_in = _SHOWN[display][dimension]
-    return _rounded(
-        from_si(value, shown_in.unit, dimension), shown_in.places if places is None else places, rounding
-    )
-
-
-def shown_unit(dimension: Dimension, display: Display) -> str:
-    """The unit that stands in a column head."""
-    return _SHOWN[display][dimension].unit
-
-
-def show(
-    value: float | None,
-    dimension: Dimension,
-    display: Display,
-    *,
-    rounding: Rounding = Rounding.NEAREST,
-    places: int | None = None,
-) -> str:
-    """The figure with its unit; a figure that does not exist is `-`."""
-    if value is None:
-        return "-"
-    number = shown_number(value, dimension, display, rounding=rounding, places=places)
-    return f"{number} {shown_unit(dimension, display)}"
-
-
-def show_small_mass(mass_kg: float | None, display: Display) -> str:
-    """A mass as a bench scale shows it: grams or ounces."""
-    if mass_kg is None:
-        return "-"
-    shown_in = _SMALL_MASS[display]
-    number = from_si(mass_kg, shown_in.unit, Dimension.MASS)
-    return f"{_rounded(number, shown_in.places, Rounding.NEAREST)} {shown_in.unit}"
-
-
-def _rounded(number: float, places: int, rounding: Rounding) -> str:
-    scale = 10**places
-    # A figure a hair off a round one by binary arithmetic is that round one, not the next step down.
-    slack = 1e-9 * max(1.0, abs(number * scale))
-    if rounding is Rounding.DOWN:
-        number = math.floor(number * scale + slack) / scale
-    elif rounding is Rounding.UP:
-        number = math.ceil(number * scale - slack) / scale
-    text = f"{number:.{places}f}"
-    return text.removeprefix("-") if float(text) == 0 else text
+def _in_si(number: float, unit: str, dimension: Dimension, text: str) -> float:
+    try:
+        value = to_si(number, unit, dimension)
+    except OverflowError:
+        value = math.inf
+    if not math.isfinite(value):
+        raise UnitError(f"{text.strip()!r} is not a finite number", "write the number you read")
+    if dimension is Dimension.TEMPERATURE and value < 0:
+        raise UnitError(f"{text.strip()!r} is below absolute zero", "write the temperature you read")
+    return value
 
 
 def _split_number(text: str, *, unit_example: str) -> tuple[float, str]:
-    match = _NUMBER.match(text)
+    match = _NUMBER.match(text.replace("\N{MINUS SIGN}", "-"))
     if match is None:
         wanted = (
             f"write a number and a unit, for example 4.2 {unit_example}"
@@ -432,7 +219,13 @@ def _split_number(text: str, *, unit_example: str) -> tuple[float, str]:
     number = float(f"{match.group('sign')}{digits}{match.group('exponent') or ''}")
     if not math.isfinite(number):
         raise UnitError(f"{text.strip()!r} is not a finite number", "write the number you read")
-    return number, " ".join(text[match.end() :].split())
+    rest = " ".join(text[match.end() :].split())
+    if rest[:1].isdigit():
+        raise UnitError(
+            f"{text.strip()!r} holds two numbers",
+            f"write one, without a space in it, for example 1250.5 {unit_example}".rstrip(),
+        )
+    return number, rest
 
 
 def _plain_digits(digits: str, text: str, unit: str) -> str:
@@ -452,7 +245,6 @@ def _plain_digits(digits: str, text: str, unit: str) -> str:
 
 
 def _known_unit(written: str, dimension: Dimension) -> str | None:
-    table = _KELVIN_AT if dimension is Dimension.TEMPERATURE else _FACTORS[dimension]
     folded = (
         written.strip()
         .replace("\N{SUPERSCRIPT TWO}", "2")
@@ -460,7 +252,7 @@ def _known_unit(written: str, dimension: Dimension) -> str | None:
         .replace("^", "")
     )
     folded = _SPOKEN.get(folded, folded)
-    return folded if folded in table else None
+    return folded if folded in units_of(dimension) else None
 
 
 def _unit_of(rest: str, unit: str | None, text: str, dimension: Dimension) -> str:
@@ -478,7 +270,7 @@ def _unit_of(rest: str, unit: str | None, text: str, dimension: Dimension) -> st
         raise UnitError(f"{written!r} can be US or imperial", "write US gal or imp gal")
     known = _known_unit(written, dimension)
     if known is None:
-        units = ", ".join(_KELVIN_AT if dimension is Dimension.TEMPERATURE else _FACTORS[dimension])
+        units = ", ".join(units_of(dimension))
         raise UnitError(f"{written!r} is not a unit of {dimension.value}", f"write one of {units}")
     return known
 

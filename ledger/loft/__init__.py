@@ -1,0 +1,1 @@
+"""From sections, webs and ribs to outlines, skins and cells."""

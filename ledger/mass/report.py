@@ -20,10 +20,11 @@ class CauseMass:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class PieceMass:
-    """One piece, begun or still to come. `state` is open, finished, planned or scrapped.
+    """One piece, begun or still to come. `state` is open, finished, planned, scrapped or spare.
 
     `known_by` is A (weighed), C (from what was logged) or E (from the plan). `expected_kg` is what a
-    scale should show today for the piece as logged.
+    scale should show today for the piece as logged, with whatever is fitted to it. `best_kg` is None
+    where nothing says what the piece weighs; a spare is one more than the plan wants and counts nothing.
     """
 
     piece: str
@@ -34,8 +35,8 @@ class PieceMass:
     calculated_kg: float | None
     actual_kg: float | None
     built_kg: float
-    best_kg: float
-    best_u_kg: float
+    best_kg: float | None
+    best_u_kg: float | None
     expected_kg: float | None
     expected_u_kg: float | None
     off_plan: tuple[CauseMass, ...]
@@ -55,10 +56,10 @@ class PartMass:
     calculated_kg: float | None
     actual_kg: float | None
     built_kg: float
-    best_kg: float
-    best_u_kg: float
+    best_kg: float | None
+    best_u_kg: float | None
     state: str
-    cg_m: Vector
+    cg_m: Vector | None
     area_m2: float | None
     pieces: tuple[PieceMass, ...]
     off_plan: tuple[CauseMass, ...]
@@ -100,7 +101,11 @@ class TotalMass:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class BatchAccount:
-    """Where one batch went. `unaccounted_kg` is None where residue was not recorded."""
+    """Where one batch went. `unaccounted_kg` is None where residue was not recorded.
+
+    `charged_kg` is in live pieces and cells, `scrapped_kg` in scrapped ones. Ratios are hardener per
+    resin by mass, as in `Material`; `ratio_verdict` is in, out or cannot tell.
+    """
 
     batch: str
     mixed_kg: float
@@ -113,6 +118,65 @@ class BatchAccount:
     ratio_high: float | None
     ratio_wanted: float | None
     ratio_verdict: str
+    ratio_why: str = ""
+    smallest_provable_kg: float | None = None
+    shared_kg: float | None = None
+    demand_kg: float | None = None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class WeighedAssembly:
+    """A weighing of several pieces at once, net of tare and of what was only present.
+
+    `unexplained_kg` is the net mass less the sum of the contents; it was spread over `spread_over`.
+    `presumed` is true where nothing had been fitted, so that the planned contents begun by then stand
+    in; then the spread rests on a guess that a rule reports.
+    """
+
+    what: str
+    seq: int
+    net_kg: float
+    sum_kg: float
+    unexplained_kg: float
+    u_kg: float
+    contents: tuple[str, ...]
+    spread_over: tuple[str, ...]
+    presumed: bool
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Disagreement:
+    """Two readings of one piece that differ by more than their uncertainty allows."""
+
+    piece: str
+    seq: int
+    earlier_seq: int
+    difference_kg: float
+    allowed_kg: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Unknown:
+    """A mass that cannot be known from what was recorded, and what would make it known."""
+
+    thing: str
+    seq: int | None
+    what: str
+    do: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class PlyNotice:
+    """A step of a piece that is not as its laminate wants. `what` is missing, twice, not in plan or to come.
+
+    A step to come is noticed only on a piece already weighed: the weighing does not hold it. `seqs`
+    are the entries that laid the step.
+    """
+
+    piece: str
+    step: int
+    what: str
+    seqs: tuple[int, ...]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -125,3 +189,7 @@ class WeightReport:
     assemblies: tuple[AssemblyMass, ...]
     off_plan: tuple[CauseMass, ...]
     batches: tuple[BatchAccount, ...]
+    weighed: tuple[WeighedAssembly, ...] = ()
+    disagreements: tuple[Disagreement, ...] = ()
+    unknowns: tuple[Unknown, ...] = ()
+    plies: tuple[PlyNotice, ...] = ()

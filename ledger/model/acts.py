@@ -24,12 +24,16 @@ WEIGHED_STATES = ("before trim", "after trim", "finished")
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Act:
-    """What every entry may carry. `typed` keeps the text of each quantity as the person wrote it."""
+    """What every entry may carry. `typed` keeps the text of each quantity as the person wrote it.
+
+    `corrects` is the seq of the entry this one stands in for; it then counts in that entry's place.
+    """
 
     with_others: tuple[str, ...] = ()
     remark: str | None = None
     minted: tuple[Minted, ...] = ()
     typed: tuple[tuple[str, str], ...] = ()
+    corrects: int | None = None
 
 
 @kind("receive", "a delivery of a material")

@@ -125,6 +125,7 @@ class Part:
     form: Form
     made_of: str | None = None
     geometry: str | None = None
+    geometry_unit: str | None = None
     placement: Placement | None = None
     face: Face = Face.MID
     quantity: int = 1
@@ -169,6 +170,7 @@ class Plan:
     parts: tuple[Part, ...]
     shapes: tuple[Shape, ...]
     tanks: Tanks = Tanks()
+    cell_digests: tuple[str, ...] = ()
     attitudes: tuple[Attitude, ...] = ()
     fuel: FuelGrade | None = None
     tolerances: tuple[tuple[PartClass, float], ...] = ()

@@ -72,6 +72,7 @@ class Cell:
 
     name: str
     mesh: str
+    mesh_unit: str | None = None
     displaced_m3: float | None = None
     displaced_mesh: str | None = None
     sealant_thickness_m: float | None = None

@@ -47,7 +47,18 @@ SPANS = {"IN": (ROOT_Y, SPAN_JOINT), "OUT": (SPAN_JOINT, TIP_Y)}
 WEBS = {"F": ("front", FRONT), "M": ("middle", MIDDLE), "R": ("rear", REAR)}
 
 PART_HEAD = (
-    *("part", "title", "class", "side", "assembly", "form", "made_of", "geometry", "geometry_unit", "origin"),
+    *(
+        "part",
+        "title",
+        "class",
+        "side",
+        "assembly",
+        "form",
+        "made_of",
+        "geometry",
+        "geometry_unit",
+        "origin [m]",
+    ),
     *("across", "up_axis", "face", "quantity", "planned_mass [g]", "mirror_of"),
 )
 Row = dict[str, str]
@@ -84,7 +95,7 @@ def rib_rows(geometry: Path) -> list[Row]:
                     "form": "panel",
                     "made_of": "PANEL 6",
                     "geometry": f"geometry/{name}#CUT",
-                    "origin": numbers(station(0.0, y), y, inside_origin(y)),
+                    "origin [m]": numbers(station(0.0, y), y, inside_origin(y)),
                     "across": "1 0 0",
                     "up_axis": "0 0 1",
                 }
@@ -117,7 +128,7 @@ def web_rows(geometry: Path) -> list[Row]:
                     "form": "panel",
                     "made_of": "PANEL 10",
                     "geometry": f"geometry/{name}#CUT",
-                    "origin": numbers(station(u, first_y), first_y, inside_origin(ROOT_Y)),
+                    "origin [m]": numbers(station(u, first_y), first_y, inside_origin(ROOT_Y)),
                     "across": numbers(*(value / length for value in across)),
                     "up_axis": "0 0 1",
                 }
@@ -249,7 +260,7 @@ def item_rows() -> list[Row]:
             "class": "fitting",
             "assembly": "fittings",
             "form": "item",
-            "origin": numbers(*place),
+            "origin [m]": numbers(*place),
             "quantity": str(quantity),
             "planned_mass [g]": f"{mass_g:g}",
         }
@@ -257,7 +268,7 @@ def item_rows() -> list[Row]:
     ]
 
 
-PLANNED_G = {"SKIN.UPR-R": 4420.0, "SKIN.LWR-R": 4380.0, "RIB.F1-R": 68.0, "WEB.M.IN-R": 610.0}
+PLANNED_G = {"SKIN.UPR-R": 4560.0, "SKIN.LWR-R": 4530.0, "RIB.F1-R": 27.5, "WEB.M.IN-R": 268.0}
 
 
 def both_sides(rows: Iterable[Row]) -> list[Row]:
@@ -274,7 +285,7 @@ def both_sides(rows: Iterable[Row]) -> list[Row]:
         left = {
             key: value
             for key, value in right.items()
-            if key not in ("geometry", "geometry_unit", "origin", "across", "up_axis")
+            if key not in ("geometry", "geometry_unit", "origin [m]", "across", "up_axis")
         }
         left |= {
             "part": row["part"].removesuffix("-R") + "-L",
@@ -299,11 +310,11 @@ density_15C = "715 kg/m3"
 ATTITUDES = (
     ("ground", 3.0, 0.0, "fill = true\nflight = false"),
     ("cruise", 1.5, 0.0, ""),
-    ("best climb", 12.0, 0.0, ""),
-    ("descent", -5.0, 0.0, ""),
-    ("slip left wing down", 1.0, -4.0, ""),
-    ("slip right wing down", 1.0, 4.0, ""),
-    ("take-off run", 3.0, 0.0, "ax_g = 0.25"),
+    ("best climb", 14.0, 0.0, ""),
+    ("descent", -3.0, 0.0, ""),
+    ("slip left wing down", 1.0, -1.5, ""),
+    ("slip right wing down", 1.0, 1.5, ""),
+    ("take-off run", 3.0, 0.0, "ax_g = 0.12"),
 )
 
 TOLERANCES = """[tolerance]

@@ -103,19 +103,18 @@ def side_text(side: str, sign: int) -> list[str]:
 def outside_text(side: str, word: str, sign: int) -> list[str]:
     """Outlet, drain, filler and vent of one wing."""
     root, tip = cell_name(side, "A", 0), cell_name(side, "F", len(TANK_RIBS) - 2)
-    low_y, high_y = TANK_RIBS[0] + 0.030, TANK_RIBS[-1] - 0.060
+    low_y, high_y = TANK_RIBS[0] + 0.030, TANK_RIBS[-1] - 0.300
     first, last = row_ends("A", low_y)
-    outlet_x = first + 0.45 * (last - first)
+    outlet_x = first + 0.50 * (last - first)
     outlet = (outlet_x, low_y, inside(outlet_x, low_y, -1) + 0.008)
     sump = (outlet_x - 0.02, low_y, inside(outlet_x - 0.02, low_y, -1) + 0.001)
     end = row_ends("F", high_y)
     neck_x = end[0] + 0.60 * (end[1] - end[0])
-    neck = (neck_x, high_y, inside(neck_x, high_y, 1) - 0.006)
+    neck = (neck_x, high_y, inside(neck_x, high_y, 1) - 0.016)
     vent_y = TANK_RIBS[-1] - 0.020
     vent = [
         (neck_x, vent_y, inside(neck_x, vent_y, 1) - 0.004),
         (neck_x, vent_y + 0.10, inside(neck_x, vent_y + 0.10, 1) + 0.010),
-        (neck_x + 0.10, vent_y + 0.10, inside(neck_x, vent_y, -1) - 0.050),
     ]
     points = ", ".join(f"[{x * MM:.3f}, {sign * y * MM:.3f}, {z * MM:.3f}]" for x, y, z in vent)
     return [

@@ -1,0 +1,111 @@
+"""The whole fuel report of a plan: every tank, every feed, and what the rules look at."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import replace
+
+from ledger.fuel.capacity import fill_tank
+from ledger.fuel.density import density_at
+from ledger.fuel.draining import NO_AIR
+from ledger.fuel.feeds import feed_rows
+from ledger.fuel.report import Airless, FuelReport, Pocketed
+from ledger.fuel.stood import Stood, System
+from ledger.fuel.tank_fuel import Wanted, tank_fuel
+from ledger.fuel.walls import far_openings, overlaps
+from ledger.geometry.closed_cell import ClosedCell
+from ledger.model.attitude import Attitude
+from ledger.model.plan import FuelGrade
+from ledger.model.tanks import Tanks
+
+
+def reckon(
+    tanks: Tanks,
+    cells: Mapping[str, ClosedCell],
+    displaced: Mapping[str, ClosedCell],
+    attitudes: tuple[Attitude, ...],
+    fuel: FuelGrade | None,
+    *,
+    levels: int = 100,
+    listed: tuple[str, ...] | None = None,
+    asked: Attitude | None = None,
+    temperature_k: float | None = None,
+) -> FuelReport:
+    """Reckon all tanks of a plan.
+
+    cells, displaced : proved meshes by the cell's name; `displaced` has those given as meshes.
+    levels : steps of each table, which then has one row more.
+    listed : names of the attitudes to show, all where None. Usable is over all flight attitudes
+        whatever is listed.
+    asked : one more attitude to show; it never counts as flight.
+    temperature_k : of the fuel, for masses; 15 C where None.
+    Raises
+        ValueError: levels below 1, or a listed name that is no attitude of the plan.
+    """
+    if levels < 1:
+        raise ValueError("a table needs at least one step")
+    unknown = set(listed or ()) - {attitude.name for attitude in attitudes}
+    if unknown:
+        raise ValueError(f"no attitude is named {', '.join(sorted(unknown))}")
+    if not tanks.tanks:
+        return FuelReport(tanks=(), feeds=())
+    system = System.of(tanks, cells, displaced)
+    stoods = _stand_all(system, attitudes, listed)
+    shown = [stood for stood in stoods if listed is None or stood.attitude.name in listed]
+    if asked is not None:
+        shown.append(Stood(system, replace(asked, flight=False, fill=False)))
+    ground = next((stood for stood in stoods if stood.attitude.fill), None)
+    flights = tuple(stood for stood in stoods if stood.attitude.flight)
+    wanted = Wanted(
+        steps=levels,
+        density_kg_m3=density_at(fuel, temperature_k),
+        ground=ground,
+        flights=flights,
+        listed=tuple(shown),
+        any_stood=next(iter((*stoods, *shown)), None) or Stood(system, Attitude(name="level")),
+    )
+    filled = {
+        tank.name: None if ground is None else fill_tank(tank, system.group_of(tank), ground)
+        for tank in tanks.tanks
+    }
+    return FuelReport(
+        tanks=tuple(
+            tank_fuel(tank, system.group_of(tank), filled[tank.name], wanted) for tank in tanks.tanks
+        ),
+        feeds=feed_rows(system, filled, flights),
+        far_openings=far_openings(tanks, cells),
+        overlaps=overlaps(cells),
+        airless=_airless(flights, tanks),
+        pocketed=_pocketed(flights, tanks),
+    )
+
+
+def _stand_all(
+    system: System, attitudes: Sequence[Attitude], listed: tuple[str, ...] | None
+) -> tuple[Stood, ...]:
+    """Every attitude that counts: flown, filled in, or shown."""
+    return tuple(
+        Stood(system, attitude)
+        for attitude in attitudes
+        if attitude.flight or attitude.fill or listed is None or attitude.name in listed
+    )
+
+
+def _airless(flights: Sequence[Stood], tanks: Tanks) -> tuple[Airless, ...]:
+    return tuple(
+        Airless(tank=tank.name, cell=cell, attitude=stood.attitude.name)
+        for tank in tanks.tanks
+        for cell in tank.cells
+        for stood in flights
+        if stood.kept[cell].by == NO_AIR
+    )
+
+
+def _pocketed(flights: Sequence[Stood], tanks: Tanks) -> tuple[Pocketed, ...]:
+    return tuple(
+        Pocketed(tank=tank.name, cell=cell, attitude=stood.attitude.name, places=stood.pockets(cell))
+        for tank in tanks.tanks
+        for cell in tank.cells
+        for stood in flights
+        if stood.pockets(cell) > 1
+    )

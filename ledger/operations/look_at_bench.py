@@ -1,0 +1,171 @@
+"""Everything the bench screen shows, frozen: cups, next jobs, today, what is open to choose from."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from datetime import datetime
+from pathlib import Path
+
+from ledger.errors import Finding
+from ledger.mass.charges import charges
+from ledger.mass.report import PieceMass
+from ledger.model.entry import Logged
+from ledger.model.plan import Plan
+from ledger.model.snapshot import PieceState, Snapshot
+from ledger.model.things import ThingKind
+from ledger.operations.clock_cups import Cup, cups_on_bench
+from ledger.operations.judge_reading import expected_of
+from ledger.operations.list_next_jobs import Job, list_next_jobs
+from ledger.operations.saying import say
+from ledger.operations.take_stock import Plate, Stock, take_stock
+from ledger.units import show_small_mass
+
+_MOST_JOBS = 200
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class LoggedLine:
+    """One entry that counts, in one line."""
+
+    seq: int
+    at: datetime
+    by: str
+    kind: str
+    says: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class OpenThing:
+    """Something a field can be completed with: what is typed, and what it is."""
+
+    text: str
+    says: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class BenchView:
+    """What the bench shows at one moment. `today_kg` is what today's entries put into pieces."""
+
+    plate: Plate
+    cups: tuple[Cup, ...]
+    jobs: tuple[Job, ...]
+    today: tuple[LoggedLine, ...]
+    today_kg: float
+    last: LoggedLine | None
+    findings: tuple[Finding, ...]
+    open_things: Mapping[ThingKind, tuple[OpenThing, ...]]
+    expected: Mapping[str, PieceMass]
+
+    def lines_about(self, name: str) -> tuple[tuple[str, str], ...]:
+        """What is expected of a piece on the scale, what comes next for it, and what is wrong with it."""
+        lines: list[tuple[str, str]] = []
+        mass = self.expected.get(name)
+        expected = None if mass is None else expected_of(mass)
+        if mass is not None and expected is not None:
+            spread = mass.expected_u_kg if mass.expected_kg is not None else mass.best_u_kg
+            shown = "" if spread is None else f" +-{show_small_mass(spread, self.plate.display)}"
+            lines.append(
+                ("", f"expected {show_small_mass(expected, self.plate.display)}{shown}, by {mass.known_by}")
+            )
+        job = next((job for job in self.jobs if job.thing == name), None)
+        if job is not None:
+            lines.append(("", f"next: {job.words}"))
+        lines += [
+            (finding.severity.value.upper(), finding.what)
+            for finding in self.findings
+            if finding.where.thing == name and finding.severity.value != "note"
+        ][:3]
+        return tuple(lines)
+
+
+def look_at_bench(book: Path | Stock, now: datetime) -> BenchView:
+    """Look at the whole bench. Newest entries of today come first."""
+    stock = take_stock(book) if isinstance(book, Path) else book
+    snapshot, weights = stock.build.snapshot, stock.weights
+    todays = [entry for entry in snapshot.logged if _same_day(entry.at, now)]
+    seqs = {entry.seq for entry in todays}
+    return BenchView(
+        plate=stock.plate,
+        cups=cups_on_bench(snapshot, weights, now),
+        jobs=list_next_jobs(snapshot, weights)[:_MOST_JOBS],
+        today=tuple(_line(entry) for entry in reversed(todays)),
+        today_kg=sum(
+            charge.mass_kg or 0.0
+            for charge in charges(snapshot)
+            if charge.seq in seqs and charge.piece in snapshot.pieces
+        )
+        if todays
+        else 0.0,
+        last=_line(snapshot.logged[-1]) if snapshot.logged else None,
+        findings=stock.findings,
+        open_things=open_things(snapshot),
+        expected={piece.piece: piece for part in weights.parts for piece in part.pieces},
+    )
+
+
+def open_things(snapshot: Snapshot) -> Mapping[ThingKind, tuple[OpenThing, ...]]:
+    """What a field of each kind can be completed with, newest first; scrapped things are left out."""
+    plan, gone = snapshot.plan, snapshot.gone
+
+    def standing(numbers: Mapping[str, object], says: Mapping[str, str]) -> tuple[OpenThing, ...]:
+        return tuple(
+            OpenThing(text=number, says=says[number])
+            for number in reversed(tuple(numbers))
+            if number not in gone
+        )
+
+    return {
+        ThingKind.LOT: standing(
+            snapshot.lots, {number: lot.receive.material for number, lot in snapshot.lots.items()}
+        ),
+        ThingKind.SHEET: standing(
+            snapshot.sheets, {number: sheet.sheet.laminate for number, sheet in snapshot.sheets.items()}
+        ),
+        ThingKind.OFFCUT: standing(
+            snapshot.offcuts,
+            {
+                number: f"{1000 * offcut.length_m:.0f} x {1000 * offcut.width_m:.0f} mm of {offcut.sheet}"
+                for number, offcut in snapshot.offcuts.items()
+            },
+        ),
+        ThingKind.BATCH: standing(
+            snapshot.batches,
+            {number: f"mixed {batch.at:%d %b %H:%M}" for number, batch in snapshot.batches.items()},
+        ),
+        ThingKind.INSTRUMENT: standing(
+            snapshot.scales, {number: scale.instrument.what for number, scale in snapshot.scales.items()}
+        ),
+        ThingKind.PIECE: tuple(
+            OpenThing(text=piece.name, says=f"tag {piece.number}")
+            for piece in reversed(tuple(snapshot.pieces.values()))
+            if piece.state is not PieceState.SCRAPPED
+        )
+        + tuple(OpenThing(text=part.name, says=part.title) for part in plan.parts),
+        **_named_by_plan(plan),
+    }
+
+
+def _named_by_plan(plan: Plan) -> dict[ThingKind, tuple[OpenThing, ...]]:
+    assemblies: dict[str, None] = {}
+    for part in plan.parts:
+        steps = part.assembly.split("/") if part.assembly else []
+        for depth in range(1, len(steps) + 1):
+            assemblies["/".join(steps[:depth])] = None
+    return {
+        ThingKind.MATERIAL: tuple(OpenThing(text=one.name, says=one.kind.value) for one in plan.materials),
+        ThingKind.LAMINATE: tuple(OpenThing(text=one.name, says="laminate") for one in plan.laminates),
+        ThingKind.ASSEMBLY: tuple(OpenThing(text=name, says="assembly") for name in assemblies),
+        ThingKind.CELL: tuple(OpenThing(text=cell.name, says="cell") for cell in plan.tanks.cells),
+        ThingKind.OPENING: tuple(OpenThing(text=one.name, says="opening") for one in plan.tanks.openings),
+    }
+
+
+def _same_day(at: datetime, now: datetime) -> bool:
+    return at.astimezone(now.tzinfo).date() == now.date()
+
+
+def _line(entry: Logged) -> LoggedLine:
+    return LoggedLine(
+        seq=entry.seq, at=entry.at, by=entry.by, kind=entry.kind, says=say(entry.kind, entry.act)
+    )

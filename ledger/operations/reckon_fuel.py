@@ -1,0 +1,111 @@
+"""What the tanks hold and what stays in them, with what the rules notice about it."""
+
+from __future__ import annotations
+
+import dataclasses
+from collections.abc import Sequence
+from dataclasses import dataclass
+from pathlib import Path
+
+from ledger.checks.facts import Facts
+from ledger.checks.run import run_rules
+from ledger.errors import Finding, Refused, Severity, Where
+from ledger.fuel.report import FuelReport
+from ledger.mass.weigh_up import weigh_up
+from ledger.model.attitude import Attitude
+from ledger.operations.open_build import Build, open_build
+from ledger.units import Display
+
+_LEVELS = 100
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Fuel:
+    """The fuel of a build. `display` is that of the current plan."""
+
+    report: FuelReport
+    findings: tuple[Finding, ...]
+    display: Display
+
+
+def reckon_fuel(
+    book: Path,
+    *,
+    attitudes: Sequence[str] = (),
+    asked: Attitude | None = None,
+    levels: int = _LEVELS,
+    temperature_k: float | None = None,
+) -> Fuel:
+    """Reckon every tank at every attitude of the plan; `attitudes` only chooses what is listed.
+
+    Raises
+        Refused: an attitude the plan does not have.
+    """
+    build = open_build(book)
+    _refuse_unknown(build, attitudes)
+    report = reckon_build(build, asked=asked, levels=levels, temperature_k=temperature_k)
+    snapshot = build.snapshot
+    planned = _listed(report, [attitude.name for attitude in snapshot.plan.attitudes])
+    facts = Facts(snapshot=snapshot, weights=weigh_up(snapshot), fuel=planned)
+    shown = (*attitudes, *(() if asked is None else (asked.name,)))
+    return Fuel(
+        report=_listed(report, shown) if attitudes else report,
+        findings=(*build.warnings, *run_rules(facts)),
+        display=snapshot.plan.display,
+    )
+
+
+def reckon_build(
+    build: Build,
+    *,
+    asked: Attitude | None = None,
+    levels: int = _LEVELS,
+    temperature_k: float | None = None,
+) -> FuelReport:
+    """The complete fuel report of an open build. A plan without tanks gives an empty one."""
+    plan = build.snapshot.plan
+    if not plan.tanks.tanks:
+        return FuelReport(tanks=(), feeds=())
+    from ledger.fuel.reckon import reckon
+
+    return reckon(
+        plan.tanks,
+        build.cells(),
+        build.displaced(),
+        plan.attitudes,
+        plan.fuel,
+        levels=levels,
+        asked=asked,
+        temperature_k=temperature_k,
+    )
+
+
+def _refuse_unknown(build: Build, attitudes: Sequence[str]) -> None:
+    names = [attitude.name for attitude in build.snapshot.plan.attitudes]
+    unknown = [name for name in attitudes if name not in names]
+    if unknown:
+        raise Refused(
+            *(
+                Finding(
+                    code="unknown-attitude",
+                    severity=Severity.STOP,
+                    where=Where(thing=name),
+                    what=f"{build.snapshot.plan.name} has no attitude of this name",
+                    do=f"choose one of: {', '.join(names) or 'it has none'}",
+                )
+                for name in unknown
+            )
+        )
+
+
+def _listed(report: FuelReport, names: Sequence[str]) -> FuelReport:
+    return dataclasses.replace(
+        report,
+        tanks=tuple(
+            dataclasses.replace(
+                tank,
+                attitudes=tuple(attitude for attitude in tank.attitudes if attitude.attitude in names),
+            )
+            for tank in report.tanks
+        ),
+    )

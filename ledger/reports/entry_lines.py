@@ -1,0 +1,61 @@
+"""What the book answers after something was logged, adopted or withdrawn."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+from typing import Any
+
+from ledger.errors import Finding
+from ledger.model.things import Minted
+from ledger.reports.figures import finding_figures
+from ledger.reports.plain import clean
+
+
+def entry_line(seq: int, kind: str, says: str) -> str:
+    """One entry in one line."""
+    return clean(f"entry {seq}  {kind}  {says}".rstrip())
+
+
+def minted_lines(minted: Iterable[Minted]) -> tuple[str, ...]:
+    """The numbers given out, to be written on tags."""
+    return tuple(
+        clean(
+            f"  {one.kind.value} {one.number}"
+            + (f"  {one.name}" if one.name and one.name != one.number else "")
+        )
+        for one in minted
+    )
+
+
+def adopted_lines(
+    iteration: str, seq: int | None, digest: str | None, no_longer_fits: Sequence[tuple[str, str, str]]
+) -> tuple[str, ...]:
+    """What taking in a plan did, or would do. Each piece that no longer fits has its state and why."""
+    entry = () if seq is None else (f"entry      {seq}",)
+    last = () if digest is None else (f"digest     {digest}",)
+    return (
+        clean(f"iteration  {iteration}"),
+        *entry,
+        *last,
+        f"no longer fits  {len(no_longer_fits)} built pieces",
+        *(clean(f"  {piece}  {state}  {why}") for piece, state, why in no_longer_fits),
+    )
+
+
+def adopted_figures(
+    iteration: str,
+    seq: int | None,
+    digest: str | None,
+    no_longer_fits: Sequence[tuple[str, str, str]],
+    findings: Sequence[Finding],
+) -> dict[str, Any]:
+    """What `start --json` and `adopt --json` print."""
+    return {
+        "iteration": iteration,
+        "seq": seq,
+        "digest": digest,
+        "no_longer_fits": [
+            {"piece": piece, "state": state, "why": why} for piece, state, why in no_longer_fits
+        ],
+        "findings": finding_figures(findings),
+    }

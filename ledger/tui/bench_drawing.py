@@ -1,0 +1,188 @@
+"""The bench's areas as ready text. Every row is cut to the room's width, never wrapped."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from rich.text import Text
+
+from ledger.errors import Finding
+from ledger.operations.clock_cups import Cup
+from ledger.operations.list_next_jobs import Job
+from ledger.operations.look_at_bench import LoggedLine
+from ledger.operations.look_at_ply import PlyInHand
+from ledger.tui.room import Room
+from ledger.tui.themes import Lines
+
+_BAR = 7
+_STROKES = "-/|\\"
+_SIGN = {"stop": "STOP", "look": "LOOK"}
+
+
+def cut(text: str, width: int) -> str:
+    """The text in `width` cells, with two dots where something is left out."""
+    words = " ".join(text.split()) if "\n" in text or "\t" in text else text
+    return words if len(words) <= width else f"{words[: max(0, width - 2)]}.."
+
+
+def filled(rows: Sequence[Text], height: int) -> Text:
+    """Rows joined, exactly as many as there is height."""
+    standing = list(rows[:height])
+    return Text("\n").join([*standing, *[Text()] * (height - len(standing))])
+
+
+def rule(width: int, lines: Lines, tees: Sequence[tuple[int, str]] = ()) -> Text:
+    """A horizontal rule with joints."""
+    characters = [lines.h] * width
+    for place, character in tees:
+        if 0 <= place < width:
+            characters[place] = character
+    return Text("".join(characters))
+
+
+def stroke_of(angle_deg: float | None) -> str:
+    """The nearest of four strokes: 0 lies across, +45 rises to the right, 90 stands, -45 falls."""
+    if angle_deg is None:
+        return ""
+    return _STROKES[round((angle_deg % 180.0) / 45.0) % 4]
+
+
+def signed(angle_deg: float | None) -> str:
+    """`+45`, `0`, `-45`, or nothing."""
+    if angle_deg is None:
+        return ""
+    return "0" if angle_deg == 0.0 else f"{angle_deg:+g}"
+
+
+def in_minutes(minutes: float) -> str:
+    """A clock's minutes in five cells."""
+    if minutes >= 600:
+        return f"{minutes / 60:.0f} h"
+    return f"{int(minutes)} min" if minutes < 100 else f"{int(minutes // 60)}h{int(minutes % 60):02d}"
+
+
+def cups_text(cups: Sequence[Cup], room: Room) -> Text:
+    """Shortest clock first: number, what, bar, minutes, grams. Past is a word."""
+    rows = [_title("CUPS", "pot life     g", room)]
+    places = room.height - 1
+    shown = cups[:places] if len(cups) <= places else cups[: places - 1]
+    rows += [_cup_row(cup, room) for cup in shown]
+    if len(shown) < len(cups):
+        rows.append(Text(f"and {len(cups) - len(shown)} more cups", style=room.signs.quiet))
+    if not cups:
+        rows.append(Text("no cup is open", style=room.signs.quiet))
+    return filled(rows, room.height)
+
+
+def jobs_text(jobs: Sequence[Job], at: int, room: Room) -> Text:
+    """Next jobs; with Tab here the mark chooses one and Enter opens its slip."""
+    rows = [_title("NEXT", str(len(jobs)) if jobs else "", room)]
+    places = room.height - 1
+    for place in _in_sight(len(jobs), at, places, room):
+        job = jobs[place]
+        words = cut(job.words, max(8, room.width - 14))
+        space = max(1, room.width - len(words) - 1)
+        name = cut(job.thing.removesuffix("/1"), space - 1)
+        rows.append(_marked(f"{name:<{space}}{words}", place == at, room))
+    if not jobs:
+        rows.append(Text("nothing left to do", style=room.signs.quiet))
+    return filled(rows, room.height)
+
+
+def today_text(today: Sequence[LoggedLine], added: str, at: int, room: Room) -> Text:
+    """Today's entries, newest first, and what they added."""
+    many = f"{len(today)} {'entry' if len(today) == 1 else 'entries'}"
+    rows = [_title("TODAY", f"{many}  +{added}", room)]
+    for place in _in_sight(len(today), at, room.height - 1, room):
+        entry = today[place]
+        rows.append(_marked(f"{entry.at:%H:%M} {entry.says}", place == at, room))
+    return filled(rows, room.height)
+
+
+def stack_text(ply: PlyInHand | None, room: Room) -> Text:
+    """The plies at their angles as they lie before the person; the first laid is the lowest row."""
+    rows = [_title("STACK", "" if ply is None else f"{ply.part} {ply.side}", room)]
+    if ply is None:
+        return filled([*rows, Text("no ply in hand", style=room.signs.quiet)], room.height)
+    rows.append(Text("top of the stack, as you see it", style=room.signs.quiet))
+    for one in reversed(ply.stack):
+        seen = ply.seen(one.angle_deg)
+        body = ((stroke_of(seen) or ".") + " ") * max(4, min(12, round(12 * one.coverage)))
+        state = "laid" if one.laid else "NOW" if one.number == ply.step else ""
+        row = Text(f"{one.number:>3} {body:<24} {signed(seen):>4}  {cut(one.material, 14):<14} {state}")
+        row.stylize(room.signs.mark if state == "NOW" else "" if one.laid else room.signs.quiet)
+        row.truncate(room.width)
+        rows.append(row)
+    return filled(rows, room.height)
+
+
+def findings_text(findings: Sequence[Finding], at: int, room: Room) -> Text:
+    """All findings with what to do, as many as there is room for."""
+    rows = [_title("FINDINGS", str(len(findings)), room)]
+    for finding in findings[at : at + room.height - 1]:
+        word = _SIGN.get(finding.severity.value, "note")
+        row = Text(word, style=room.signs.of(word))
+        row.append(f"  {cut(f'{finding.where}  {finding.what}; {finding.do}', room.width - 6)}", style="")
+        rows.append(row)
+    if not findings:
+        rows.append(Text("ok    no rule has noticed anything", style=room.signs.quiet))
+    return filled(rows, room.height)
+
+
+def where_text(ply: PlyInHand | None, room: Room) -> Text:
+    """Where the piece in hand goes on the wing: its path, and its half of the span."""
+    rows = [_title("WHERE IT GOES", "", room)]
+    if ply is None:
+        return filled([*rows, Text("no piece in hand", style=room.signs.quiet)], room.height)
+    half = max(6, (room.width - 6) // 2)
+    left, right = ("#" if ply.side == word else "." for word in ("LEFT", "RIGHT"))
+    middle = "####" if ply.side == "CENTRE" else "    "
+    rows += [
+        Text(cut(f"{ply.part}  {ply.title}", room.width)),
+        Text(cut(ply.assembly or "no assembly", room.width)),
+        Text(),
+        Text("LEFT".ljust(half) + "    " + "RIGHT".rjust(half)),
+        *[Text(left * half + middle + right * half) for _ in range(3)],
+        Text("seen from above, nose to the top", style=room.signs.quiet),
+    ]
+    return filled(rows, room.height)
+
+
+def _title(word: str, right: str, room: Room) -> Text:
+    row = Text(f"> {word}" if room.here else word, style=room.signs.mark if room.here else room.signs.head)
+    space = room.width - len(row.plain)
+    row.append(cut(right, max(0, space - 1)).rjust(space) if right else "", style=room.signs.quiet)
+    return row
+
+
+def _cup_row(cup: Cup, room: Room) -> Text:
+    signs = room.signs
+    row = Text(f"{cup.number[:6]:<7}{cup.what[:4]:<5}")
+    grams = "" if cup.left_kg is None else f"{1000 * max(0.0, cup.left_kg):.0f}"
+    if cup.held:
+        row.append("ON HOLD", style=signs.stop)
+    elif cup.minutes_left is None:
+        row.append("no pot life")
+    elif cup.past:
+        row.append(f"PAST {in_minutes(-cup.minutes_left)}", style=signs.stop)
+    else:
+        share = cup.minutes_left * 60.0 / (cup.pot_life_s or 1.0)
+        whole = max(1, min(_BAR, round(share * _BAR)))
+        row.append(room.lines.full * whole + room.lines.empty * (_BAR - whole))
+        row.append(f" {in_minutes(cup.minutes_left):>6}", style=signs.look if cup.minutes_left < 5.0 else "")
+    row.truncate(room.width - len(grams) - 1)
+    row.append(grams.rjust(room.width - len(row.plain)), style="")
+    return row
+
+
+def _in_sight(many: int, at: int, places: int, room: Room) -> range:
+    top = max(0, min(at - places + 1, many - places)) if room.here else 0
+    return range(top, min(many, top + places))
+
+
+def _marked(words: str, marked: bool, room: Room) -> Text:
+    mark = ">" if marked and room.here else " "
+    row = Text(cut(f"{mark}{words}", room.width))
+    if mark == ">":
+        row.stylize(room.signs.mark)
+    return row

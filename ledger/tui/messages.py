@@ -1,0 +1,67 @@
+"""The message lines: the newest two, each behind its sign."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from rich.text import Text
+
+from ledger.tui.themes import Signs
+
+_KEPT = 200
+_SHOWN = 2
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Message:
+    """One line said. `sign` is ok, LOOK, STOP or empty."""
+
+    sign: str
+    text: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Messages:
+    """What was said on a screen, oldest first."""
+
+    said: tuple[Message, ...] = ()
+
+    def with_one(self, message: Message) -> Messages:
+        """One more at the end."""
+        return Messages(said=(*self.said, message)[-_KEPT:])
+
+    @property
+    def last(self) -> Message | None:
+        """The newest."""
+        return self.said[-1] if self.said else None
+
+    def drawn(self, width: int, signs: Signs) -> Text:
+        """The newest lines. A long newest one takes both."""
+        rows: list[Text] = []
+        for message in reversed(self.said[-_SHOWN:]):
+            rows[:0] = _rows_of(message, width, signs)
+            if len(rows) >= _SHOWN:
+                break
+        return Text("\n").join(rows[-_SHOWN:] if len(rows) <= _SHOWN else rows[:_SHOWN])
+
+
+def _rows_of(message: Message, width: int, signs: Signs) -> list[Text]:
+    room = max(8, width - 6)
+    words = " ".join(message.text.split())
+    first, rest = _broken(words, room)
+    row = Text()
+    row.append(message.sign, style=signs.of(message.sign))
+    row.append(" " * (6 - len(message.sign)))
+    row.append(first)
+    if not rest:
+        return [row]
+    second, left = _broken(rest, room)
+    return [row, Text(" " * 6 + (f"{second[: room - 2]}.." if left else second))]
+
+
+def _broken(words: str, room: int) -> tuple[str, str]:
+    if len(words) <= room:
+        return words, ""
+    at = words.rfind(" ", 0, room + 1)
+    at = room if at <= room // 2 else at
+    return words[:at], words[at:].strip()

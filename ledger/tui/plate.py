@@ -1,0 +1,64 @@
+"""The data plate: rows 1 and 2 of every screen."""
+
+from __future__ import annotations
+
+from datetime import datetime
+
+from rich.text import Text
+
+from ledger.operations.take_stock import Plate
+from ledger.tui.crew import Crew
+from ledger.tui.themes import Signs
+from ledger.units import Dimension, Rounding, show, shown_number
+
+
+def plate_rows(
+    word: str, plate: Plate | None, crew: Crew, now: datetime, *, width: int, signs: Signs
+) -> tuple[Text, Text]:
+    """Screen, iteration and who logs; then the wing in one line with its STOP and LOOK counts."""
+    return _first(f"{who_logs(crew, now)}  {now:%a %H:%M}", word, plate, width, signs), _second(
+        plate, width, signs
+    )
+
+
+def who_logs(crew: Crew, now: datetime) -> str:
+    """Who logs and who is with them; `(badge)` where the next log asks for one."""
+    who = "nobody logs" if crew.by is None else f"logs {crew.by}"
+    if crew.others:
+        who += f" with {' '.join(crew.others)}"
+    return f"{who} (badge)" if crew.by is not None and crew.needs_badge(now) else who
+
+
+def _first(right: str, word: str, plate: Plate | None, width: int, signs: Signs) -> Text:
+    name = "" if plate is None else f"  {plate.iteration} {plate.title}"
+    room = max(0, width - len(word) - len(right) - 2)
+    row = Text(word.upper(), style=signs.head)
+    row.append(_cut(name, room).ljust(room))
+    row.append("  ")
+    row.append(right, style=signs.head)
+    row.truncate(width)
+    return row
+
+
+def _second(plate: Plate | None, width: int, signs: Signs) -> Text:
+    if plate is None:
+        return Text("reading the book")
+    display = plate.display
+    best = shown_number(plate.best_kg, Dimension.MASS, display, places=1)
+    spread = show(plate.best_u_kg, Dimension.MASS, display, places=1, rounding=Rounding.UP)
+    usable = show(plate.usable_m3, Dimension.VOLUME, display, rounding=Rounding.DOWN)
+    fs = show(plate.cg_fs_m, Dimension.LENGTH, display, places=0 if display.value == "metric" else 1)
+    left = f"now {best} +-{spread}  CG FS {fs}  usable {usable}  weighed {100 * plate.share_actual:.0f} %"
+    row = Text(left)
+    right = Text()
+    right.append(f"STOP {plate.stops}", style=signs.stop if plate.stops else signs.quiet)
+    right.append("  ")
+    right.append(f"LOOK {plate.looks}", style=signs.look if plate.looks else signs.quiet)
+    row.pad_right(max(1, width - len(left) - len(right.plain)))
+    row.append_text(right)
+    row.truncate(width)
+    return row
+
+
+def _cut(text: str, room: int) -> str:
+    return text if len(text) <= room else f"{text[: max(0, room - 2)]}.."

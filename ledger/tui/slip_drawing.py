@@ -1,0 +1,189 @@
+"""An open slip, or the thing in hand, as ready text: head, fields with their marks, and what stands below."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from datetime import datetime
+
+from rich.text import Text
+
+from ledger.model.declare import Field
+from ledger.model.things import ThingKind
+from ledger.operations.find_thing import FoundThing
+from ledger.operations.judge_reading import Judged
+from ledger.tui.bench_drawing import cut, filled, signed, stroke_of
+from ledger.tui.room import Room
+from ledger.tui.slip import Slip
+from ledger.units import Display, show_small_mass
+
+Foot = Sequence[tuple[str, str]]
+
+_WORD = 17
+_OFFERS: dict[ThingKind, str] = {
+    ThingKind.PIECE: "lay cut bond coat trim build_up fit weigh hold scrap note trace",
+    ThingKind.PART: "cut lay bond weigh note",
+    ThingKind.LOT: "mix hold release scrap note trace",
+    ThingKind.SHEET: "cut hold release scrap note trace",
+    ThingKind.OFFCUT: "cut hold release scrap note trace",
+    ThingKind.BATCH: "lay bond coat build_up hold release scrap note trace",
+    ThingKind.INSTRUMENT: "instrument hold release scrap note",
+    ThingKind.CELL: "coat note fuel",
+    ThingKind.ASSEMBLY: "weigh fit note",
+    ThingKind.MATERIAL: "receive note",
+    ThingKind.LAMINATE: "sheet note",
+    ThingKind.OPENING: "note fuel",
+    ThingKind.ITERATION: "note",
+}
+
+
+def slip_text(slip: Slip, typing: str, foot: Foot, now: datetime, room: Room) -> Text:
+    """Head, fields and foot; the fields scroll so that the marked one is in sight."""
+    head = _head(slip, now, room)
+    below = [_foot_row(sign, words, room) for sign, words in foot]
+    rows = [_field_row(slip, place, typing, room) for place in range(len(slip.fields) + 1)]
+    places = max(3, room.height - len(head) - len(below))
+    top = max(0, min(slip.at_field - places + 2, len(rows) - places))
+    shown = rows[top : top + places]
+    spare = [Text()] * (places - len(shown))
+    return filled([*head, *shown, *spare, *below], room.height)
+
+
+def hand_text(thing: FoundThing, lines: Foot, room: Room) -> Text:
+    """The thing in hand: what it is, what is expected, which words go on from here."""
+    rows = [Text(cut(f"{thing.kind.value.upper()}  {thing.name}", room.width), room.signs.head)]
+    rows += [Text(f"  {line}") for line in broken(thing.says, room.width - 2)[:3]]
+    rows.append(Text())
+    rows += [_foot_row(sign, words, room) for sign, words in lines]
+    rows.append(Text())
+    rows.append(Text("  or type a word:", room.signs.quiet))
+    rows += [Text(f"  {line}") for line in broken(_OFFERS.get(thing.kind, "note"), room.width - 2)]
+    return filled(rows, room.height)
+
+
+def idle_text(last: str, drafts: Sequence[str], room: Room) -> Text:
+    """Nothing open: how to begin, what was logged last, which drafts wait."""
+    signs = room.signs
+    rows = [
+        Text("BENCH  nothing open", signs.head),
+        Text(),
+        Text("  scan a piece, read the scale, Enter: weighed"),
+        Text("  scan any number: what it is, what can be done"),
+        Text("  type a word and Enter to open a slip:"),
+        Text("    mix lay cut bond coat weigh receive sheet", signs.mark),
+        Text("    trim fit scrap hold note and more: actions", signs.mark),
+        Text(),
+    ]
+    if last:
+        rows.append(Text("  last entry", signs.quiet))
+        rows += [Text(f"  {line}") for line in broken(last, room.width - 2)[:3]]
+        rows.append(Text("  F9 puts it right", signs.quiet))
+    if drafts:
+        rows += [Text(), Text(cut(f"  drafts kept: {', '.join(drafts)}", room.width), signs.look)]
+    return filled(rows, room.height)
+
+
+def judged_lines(judged: Judged, display: Display) -> tuple[tuple[str, str], ...]:
+    """Expected, got, off, and whom else the reading would fit."""
+    if judged.expected_kg is None or judged.off_kg is None:
+        return (("", f"got {show_small_mass(judged.got_kg, display)}, nothing to hold it against"),)
+    band = show_small_mass(judged.band_kg, display)
+    off = show_small_mass(judged.off_kg, display)
+    plus = "" if off.startswith("-") else "+"
+    lines = [
+        ("", f"expected {show_small_mass(judged.expected_kg, display)}  +-{band}"),
+        ("", f"got      {show_small_mass(judged.got_kg, display)}"),
+        ("ok" if judged.inside else "LOOK", f"off {plus}{off}"),
+    ]
+    for one in judged.fits:
+        hand = ", the opposite hand" if one.opposite else ""
+        lines.append(("LOOK", f"it fits {one.piece} ({show_small_mass(one.expected_kg, display)}){hand}"))
+    return tuple(lines)
+
+
+def broken(text: str, width: int) -> list[str]:
+    """Words broken into lines."""
+    lines: list[str] = []
+    line = ""
+    for word in text.split():
+        longer = f"{line} {word}".strip()
+        if len(longer) > width and line:
+            lines.append(line)
+            line = word[:width]
+        else:
+            line = longer[:width]
+    return [*lines, line] if line else lines
+
+
+def _head(slip: Slip, now: datetime, room: Room) -> list[Text]:
+    signs, width = room.signs, room.width
+    mark = "> " if room.here else ""
+    ply = slip.ply
+    if ply is None:
+        first = Text(cut(f"{mark}{slip.kind.upper()}  {slip.declared.tip}", width), signs.head)
+        return [first, _state_row(slip, now, room)]
+    seen = ply.seen_deg
+    angle = f"   {signed(seen)}  {stroke_of(seen)}  as you see it" if seen is not None else ""
+    step = "every ply is laid" if ply.step is None else f"ply {ply.step} of {ply.steps}{angle}"
+    named = f"{mark}{slip.kind.upper()}  {ply.part}  {ply.side}  piece {ply.running}"
+    return [
+        Text(cut(named, width), signs.head),
+        Text(cut(f"  {step}", width), signs.mark),
+        _state_row(slip, now, room),
+    ]
+
+
+def _state_row(slip: Slip, now: datetime, room: Room) -> Text:
+    if slip.corrects is not None:
+        return Text(cut(f"  corrects No. {slip.corrects}", room.width), room.signs.look)
+    if slip.stamped_at is not None:
+        minutes = int((now - slip.stamped_at).total_seconds() // 60)
+        zero = f"{slip.stamped_at.astimezone(now.tzinfo):%H:%M:%S}"
+        return Text(cut(f"  time zero {zero}, {minutes} min ago", room.width), room.signs.mark)
+    return Text(cut(f"  {slip.kept}", room.width) if slip.kept else "", room.signs.quiet)
+
+
+def _field_row(slip: Slip, place: int, typing: str, room: Room) -> Text:
+    here, signs = place == slip.at_field, room.signs
+    if place == len(slip.fields):
+        return _log_row(slip, here, room)
+    field = slip.fields[place]
+    needed = "*" if field.required else "/" if slip.in_group(field.word) else " "
+    word = cut(_labelled(slip, field), _WORD)
+    row = Text(f"{'>' if here else ' '}{needed}{word:<{_WORD}} ", signs.mark if here else "")
+    space = room.width - len(row.plain)
+    if here and typing:
+        row.append(f"..{typing[-(space - 3) :]}_" if len(typing) >= space else f"{typing}_", style="")
+        return row
+    value = slip.value(field.word)
+    note = slip.notes.get(field.word, "") or (field.tip if here and not value else "")
+    shown = cut(value or ("____" if here or field.required else ""), space)
+    row.append(shown, style="bold" if value and field.word not in slip.proposed else "")
+    left = space - len(shown) - 2
+    if note and left >= 6:
+        row.append("  " + cut(note, left), style=signs.quiet)
+    return row
+
+
+def _log_row(slip: Slip, here: bool, room: Room) -> Text:
+    row = Text(f"{'> ' if here else '  '}{'log':<{_WORD}} ", style=room.signs.mark if here else "")
+    wanting = ", ".join(_label(word) for word in slip.missing)
+    row.append(cut(f"wants {wanting}" if wanting else "Enter logs it", room.width - len(row.plain)), style="")
+    return row
+
+
+def _foot_row(sign: str, words: str, room: Room) -> Text:
+    row = Text("  ")
+    if sign:
+        row.append(sign, style=room.signs.of(sign))
+        row.append(" ", style="")
+    row.append(cut(words, room.width - len(row.plain)), style="")
+    return row
+
+
+def _labelled(slip: Slip, field: Field) -> str:
+    unit = slip.unit(field)
+    return _label(field.word) if unit is None else f"{_label(field.word)} [{unit}]"
+
+
+def _label(word: str) -> str:
+    return word.replace("_", " ")

@@ -1,0 +1,110 @@
+"""A small invented build: two ribs, a clip made four times, a skin of three plies and a bolt."""
+
+from __future__ import annotations
+
+import shutil
+from collections.abc import Callable
+from datetime import UTC, datetime, timedelta
+from pathlib import Path
+from typing import Any
+
+import pytest
+
+from ledger.operations.adopt_plan import adopt_plan
+from ledger.operations.log_entry import LoggedEntry, log_entry
+from ledger.operations.start_book import start_book
+
+NOON = datetime(2026, 3, 4, 12, 0, tzinfo=UTC)
+FILES = {
+    "plan.toml": 'format = "plan-1"\nname = "r1"\ntitle = "first"\ndisplay = "metric"\n',
+    "materials.csv": (
+        "material,kind,areal_mass [g/m2],density [kg/m3]\n"
+        "carbon 200,fabric,200,\nepoxy,resin,,1150\nslow,hardener,,950\n"
+    ),
+    "laminates.csv": (
+        "laminate,areal_mass [g/m2],step,material,orientation [deg],resin_fraction [%]\n"
+        "SANDWICH,1500,,,,\n"
+        "PLIES,,1,carbon 200,0,40\nPLIES,,2,carbon 200,45,40\nPLIES,,3,carbon 200,-45,40\n"
+    ),
+    "parts.csv": (
+        "part,title,class,side,assembly,form,made_of,geometry,geometry_unit,origin,planned_mass,quantity\n"
+        "RIB.01-L,Rib.01-L,rib,L,WING/LEFT/ribs,skin,SANDWICH,geometry/rib.obj,m,,,1\n"
+        "RIB.01-R,Rib.01-R,rib,R,WING/RIGHT/ribs,skin,SANDWICH,geometry/rib.obj,m,,,1\n"
+        "CLIP,Clip,rib,L,WING/LEFT/ribs,skin,SANDWICH,geometry/rib.obj,m,,,4\n"
+        "SKIN-L,Skin-L,skin,L,WING/LEFT/skins,skin,PLIES,geometry/skin.obj,m,,,1\n"
+        "BOLT,Bolt,fitting,L,WING,item,,,m,0 0 0,12 g,1\n"
+    ),
+    "geometry/rib.obj": "v 0 0 0\nv 0.4 0 0\nv 0.4 0 0.2\nv 0 0 0.2\nf 1 2 3\nf 1 3 4\n",
+    "geometry/skin.obj": "v 0 0 0\nv 0.5 0 0\nv 0.5 1 0\nv 0 1 0\nf 1 2 3\nf 1 3 4\n",
+}
+
+
+def write_plan(folder: Path, name: str) -> Path:
+    """The plan as a folder, under a name."""
+    for path, text in FILES.items():
+        file = folder / path
+        file.parent.mkdir(parents=True, exist_ok=True)
+        file.write_text(text.replace('name = "r1"', f'name = "{name}"'))
+    return folder
+
+
+class Shop:
+    """A book, a clock that goes on a minute an entry, and the way to log."""
+
+    def __init__(self, book: Path) -> None:
+        self.book = book
+        self.now = NOON
+
+    def log(self, kind: str, **fields: str) -> LoggedEntry:
+        """Log an entry; a trailing underscore frees words the language keeps for itself."""
+        self.now += timedelta(minutes=1)
+        named = {word.rstrip("_"): text for word, text in fields.items()}
+        return log_entry(self.book, kind, named, by="JK", now=self.now)
+
+    def adopt(self, name: str) -> None:
+        """Adopt the same plan under another name."""
+        folder = write_plan(self.book.with_name(f"plan {name}"), name)
+        adopt_plan(self.book, folder, by="JK", now=self.now)
+        shutil.rmtree(folder)
+
+
+@pytest.fixture(scope="session")
+def begun(tmp_path_factory: pytest.TempPathFactory) -> Path:
+    """A book with nothing in it but the plan, to be copied."""
+    folder = tmp_path_factory.mktemp("begun")
+    start_book(folder / "begun.book", write_plan(folder / "plan", "r1"), by="JK", now=NOON)
+    return folder / "begun.book"
+
+
+@pytest.fixture()
+def make_shop(tmp_path: Path, begun: Path) -> Callable[[str], Any]:
+    """A fresh book under a name, begun with the plan."""
+
+    def make(name: str) -> Shop:
+        shutil.copyfile(begun, tmp_path / name)
+        return Shop(tmp_path / name)
+
+    return make
+
+
+@pytest.fixture(scope="session")
+def stocked(begun: Path) -> Shop:
+    """Such a book with lots CLOTH, RESIN and HARD, sheet PLATE and scale W2, to be copied."""
+    book = begun.with_name("stocked.book")
+    shutil.copyfile(begun, book)
+    made = Shop(book)
+    made.log("receive", material="carbon 200", quantity="20 m2", lot="CLOTH")
+    made.log("receive", material="epoxy", quantity="5 kg", lot="RESIN")
+    made.log("receive", material="slow", quantity="2 kg", lot="HARD")
+    made.log("sheet", laminate="SANDWICH", length="1200 mm", width="600 mm", sheet="PLATE", mass="1.1 kg")
+    made.log("instrument", instrument="W2", what="scale", resolution="1 g")
+    return made
+
+
+@pytest.fixture()
+def shop(tmp_path: Path, stocked: Shop) -> Any:
+    """The usual book: a copy of the stocked one."""
+    shutil.copyfile(stocked.book, tmp_path / "wing.book")
+    made = Shop(tmp_path / "wing.book")
+    made.now = stocked.now
+    return made

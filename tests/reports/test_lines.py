@@ -1,0 +1,176 @@
+"""What a person reads: the build's units, words for state, and rounding that errs to the safe side."""
+
+from __future__ import annotations
+
+import dataclasses
+
+import pytest
+
+from ledger.errors import Finding, Severity, Where
+from ledger.fuel.report import FuelReport
+from ledger.mass.report import WeightReport
+from ledger.mass.trace import Trace
+from ledger.reports.demo_lines import COLUMNS, ROWS, demo_lines
+from ledger.reports.finding_lines import counted, finding_line
+from ledger.reports.fuel_lines import fuel_lines, trapped_text, usable_text
+from ledger.reports.plain import width_of
+from ledger.reports.trace_lines import trace_lines
+from ledger.reports.weight_lines import weight_lines
+from ledger.units import Display
+
+
+def finding(number: int, severity: Severity = Severity.STOP) -> Finding:
+    """A finding with a long text."""
+    return Finding(
+        code="ply-missing",
+        severity=severity,
+        where=Where(thing=f"SKIN.{number}"),
+        what=f"SKIN.{number} has no ply 3 " + "and more words " * 9,
+        do="lay it",
+    )
+
+
+def line_with(lines: tuple[str, ...], word: str) -> str:
+    """The only line that begins with a word."""
+    (line,) = [line for line in lines if line.startswith(word)]
+    return line
+
+
+def test_usable_goes_down_and_trapped_goes_up() -> None:
+    assert usable_text(0.0592599, Display.METRIC) == "59.2 L"
+    assert trapped_text(0.00101, Display.METRIC) == "1.1 L"
+
+
+def test_a_round_figure_is_not_moved_by_binary_arithmetic() -> None:
+    assert usable_text(0.1 + 0.2, Display.METRIC) == "300.0 L"
+    assert trapped_text(0.1 + 0.2, Display.METRIC) == "300.0 L"
+
+
+@pytest.mark.parametrize(("display", "usable"), [(Display.METRIC, "59.2 L"), (Display.US, "15.65 US gal")])
+def test_fuel_is_shown_in_the_units_of_the_build(fuel: FuelReport, display: Display, usable: str) -> None:
+    # 59.2599 / 3.785411784 = 15.6548...: exact definition of the US gallon
+    line = line_with(fuel_lines(fuel, display), "usable")
+    assert usable in line
+    assert "at best climb" in line
+    assert "COMPUTED" in line
+
+
+def test_fuel_says_that_a_flow_test_decides_and_never_says_unusable(fuel: FuelReport) -> None:
+    text = "\n".join(fuel_lines(fuel, Display.METRIC, tables=True))
+    assert "COMPUTED: a flow test decides" in text
+    assert "unusable" not in text
+
+
+def test_fuel_names_the_hole_that_traps_and_the_hole_that_catches_air(fuel: FuelReport) -> None:
+    text = "\n".join(fuel_lines(fuel, Display.METRIC))
+    assert "behind drain L4-L6" in text
+    assert "under vent L6-L8" in text
+
+
+def test_a_way_out_that_is_missing_is_not_said_to_be_behind_something(fuel: FuelReport) -> None:
+    text = "\n".join(fuel_lines(fuel, Display.METRIC, tables=True))
+    assert "no way out" in text
+    assert "behind no way out" not in text
+
+
+def test_a_plan_without_tanks_says_so() -> None:
+    assert fuel_lines(FuelReport(tanks=(), feeds=()), Display.METRIC) == ("no tanks in the plan",)
+
+
+def test_weights_add_up_off_plan_and_show_it_signed(weights: WeightReport) -> None:
+    lines = weight_lines(weights, Display.METRIC, "title")
+    assert line_with(lines, "in all").split()[-1] == "+0.013"
+    assert line_with(lines, "unexplained").split()[-1] == "+0.008"
+
+
+def test_weights_in_pounds_show_no_kilogram(weights: WeightReport) -> None:
+    # 0.413 kg / 0.45359237 = 0.9105 lb: exact definition of the pound
+    lines = weight_lines(weights, Display.US)
+    assert "0.91 lb" in line_with(lines, "now")
+    assert "kg" not in "\n".join(lines)
+
+
+def test_a_figure_that_does_not_exist_is_a_dash(weights: WeightReport) -> None:
+    row = line_with(weight_lines(weights, Display.METRIC), "SKIN.UPR-L")
+    assert row.split() == ["SKIN.UPR-L", "skin", "0/1", "planned", *"--------"]
+
+
+def test_weights_say_that_they_are_not_approved(weights: WeightReport) -> None:
+    assert "not approved weight and balance" in "\n".join(weight_lines(weights, Display.METRIC))
+
+
+def test_a_title_with_an_escape_code_reaches_no_terminal(weights: WeightReport) -> None:
+    lines = weight_lines(dataclasses.replace(weights, iteration="r\x1b[31m"), Display.METRIC, "a\nb")
+    assert not any(ord(char) < 32 for line in lines for char in line)
+
+
+def test_a_trace_shows_state_first_and_grams_of_each_destination(trace_of_a_cup: Trace) -> None:
+    lines = trace_lines(trace_of_a_cup, Display.METRIC)
+    assert lines[0] == "B0279  batch  ON HOLD"
+    assert any("SKIN.LWR-L/1" in line and "258.0 g" in line and "fitted" in line for line in lines)
+    assert any("not accounted for" in line and "11.0 g" in line for line in lines)
+    assert lines[-1] == "entries  12, 14"
+
+
+def test_a_trace_counts_the_pieces_near_and_far_once_each(trace_of_a_cup: Trace) -> None:
+    skin = trace_of_a_cup.went_into[0]
+    again = dataclasses.replace(skin, how="ply 6")
+    far = dataclasses.replace(skin, what="RIB.03-L/1", state="open")
+    further = dataclasses.replace(again, went_into=(far,))
+    trace = dataclasses.replace(trace_of_a_cup, went_into=(skin, further))
+    assert trace_lines(trace, Display.METRIC)[1] == "in 2 pieces: 1 fitted, 1 open"
+
+
+def test_what_is_further_away_stands_further_in(trace_of_a_cup: Trace) -> None:
+    lines = trace_lines(trace_of_a_cup, Display.METRIC)
+    lot = next(line for line in lines if "L0096" in line)
+    material = next(line for line in lines if "EPX" in line)
+    assert len(material) - len(material.lstrip()) > len(lot) - len(lot.lstrip())
+
+
+def test_a_finding_says_its_word_where_what_and_what_to_do() -> None:
+    one = Finding(
+        code="x",
+        severity=Severity.LOOK,
+        where=Where(file="parts.csv", row=14, column="planned_mass"),
+        what="'heavy' is not a mass",
+        do="write a number and a unit",
+    )
+    assert finding_line(one) == (
+        "LOOK  parts.csv:14:planned_mass  'heavy' is not a mass; write a number and a unit"
+    )
+    assert counted((one, finding(1))) == "STOP 1  LOOK 1  note 0"
+
+
+@pytest.mark.parametrize("many", [0, 1, 3, 40])
+def test_the_demo_report_fits_one_small_screen(weights: WeightReport, fuel: FuelReport, many: int) -> None:
+    findings = tuple(finding(number) for number in range(many))
+    lines = demo_lines(weights, fuel, findings, Display.METRIC)
+    assert len(lines) <= ROWS == 24
+    assert max(width_of(line) for line in lines) <= COLUMNS == 80
+    assert any("COMPUTED" in line for line in lines)
+    assert any("usable 59.2 L" in line for line in lines)
+
+
+def test_the_demo_report_shows_one_of_each_rule_before_a_second_of_any(
+    weights: WeightReport, fuel: FuelReport
+) -> None:
+    other = dataclasses.replace(finding(7), code="sheet-over-cut")
+    findings = (*(finding(number) for number in range(7)), finding(3), other)
+    lines = demo_lines(weights, fuel, findings, Display.METRIC)
+    assert lines[1].startswith("STOP  SKIN.0")
+    assert lines[2].startswith("STOP  SKIN.7")
+    assert next(line for line in lines if line.startswith("STOP  SKIN.3")).endswith("(+1)")
+
+
+def test_the_demo_report_counts_what_it_has_no_room_for(weights: WeightReport, fuel: FuelReport) -> None:
+    lines = demo_lines(weights, fuel, tuple(finding(number) for number in range(40)), Display.METRIC)
+    shown = sum(line.startswith("STOP  SKIN") for line in lines)
+    assert any(line.startswith(f"and {40 - shown} more") for line in lines)
+
+
+def test_the_demo_report_begins_with_what_is_wrong(weights: WeightReport, fuel: FuelReport) -> None:
+    lines = demo_lines(weights, fuel, (finding(1), finding(2, Severity.LOOK)), Display.METRIC)
+    assert lines[0] == "STOP 1  LOOK 1  note 0"
+    assert lines[1].startswith("STOP  SKIN.1  has no ply 3")
+    assert lines[2].startswith("LOOK  SKIN.2")
