@@ -3,7 +3,12 @@
 from __future__ import annotations
 
 import sys
-from pathlib import Path
+from typing import TYPE_CHECKING
+
+from ledger import __version__
+
+if TYPE_CHECKING:
+    from pathlib import Path
 
 
 def open_screens(book: Path) -> None:
@@ -15,6 +20,10 @@ def open_screens(book: Path) -> None:
 
 def main() -> None:
     """Run one command and end with its exit code."""
+    # Importing the reader of options takes longer than the interpreter's own start.
+    if sys.argv[1:] == ["--version"]:
+        print(f"wingledger, version {__version__}")
+        return
     from ledger.cli.app import run_command
 
     sys.exit(run_command(sys.argv[1:], open_screens))

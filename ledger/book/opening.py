@@ -216,7 +216,9 @@ def _errors_named(book: Path) -> Iterator[None]:
             raise unusable(
                 book, "book-not-writable", f"nothing could be written: {error}", "free or unlock the disk"
             ) from error
-        raise
+        raise unusable(
+            book, "book-refused", f"the book itself refused this: {error}", "run check; nothing was written"
+        ) from error
 
 
 def _primary(error: sqlite3.Error) -> int:

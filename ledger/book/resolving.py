@@ -199,7 +199,8 @@ class _Resolving:
     def _own(self, kind: ThingKind, text: str) -> str:
         number = text.strip()
         wrong = sorted({character for character in number if character in _NOT_IN_NUMBERS})
-        if wrong or number.split() != [number]:
+        # The name on an instrument is never one of several in a row, so it may be of several words.
+        if kind is not ThingKind.INSTRUMENT and (wrong or number.split() != [number]):
             raise NameRefused(
                 "number-unreadable",
                 f"{number!r} has {' '.join(wrong) if wrong else 'a space'} in it",

@@ -20,9 +20,7 @@ def dry_cell(facts: Facts) -> tuple[Finding, ...]:
             elif cell.filled_m3 is None:
                 continue
             else:
-                what = (
-                    "no fuel comes to this cell on filling, though some may run in later and stay"
-                )
+                what = "no fuel comes to this cell on filling, though some may run in later and stay"
             found.append(
                 Finding(
                     code=CODE,

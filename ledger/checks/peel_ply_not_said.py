@@ -4,9 +4,10 @@ from __future__ import annotations
 
 from ledger.checks.facts import Facts
 from ledger.errors import Finding, Severity, Where
+from ledger.mass.plan_index import Indexes, PlanIndex
 from ledger.model.acts import Bond, Weigh
 from ledger.model.entry import Logged
-from ledger.model.plan import MaterialKind, Plan
+from ledger.model.plan import MaterialKind
 from ledger.model.snapshot import PieceState, Snapshot
 
 CODE = "peel-ply-not-said"
@@ -47,24 +48,25 @@ class BaggedParts:
 
     def __init__(self, snapshot: Snapshot) -> None:
         self._snapshot = snapshot
-        self._plans = {iteration.name: iteration.plan for iteration in snapshot.iterations}
-        self._known: dict[tuple[str, str], bool] = {}
+        self._indexes = Indexes(snapshot)
+        self._known: dict[tuple[int, str | None], bool] = {}
 
     def is_bagged(self, piece: str) -> bool:
         """Whether the laminate of a piece holds process material."""
         known = self._snapshot.pieces.get(piece)
         if known is None:
             return False
-        key = (known.iteration, known.part)
+        index = self._indexes.of(piece)
+        part = index.parts.get(known.part)
+        key = (id(index), None if part is None else part.made_of)
         if key not in self._known:
-            self._known[key] = _is_bagged(known.part, self._plans.get(known.iteration, self._snapshot.plan))
+            self._known[key] = _is_bagged(index, key[1])
         return self._known[key]
 
 
-def _is_bagged(name: str, plan: Plan) -> bool:
-    part = plan.part(name)
-    laminate = None if part is None or part.made_of is None else plan.laminate(part.made_of)
+def _is_bagged(index: PlanIndex, made_of: str | None) -> bool:
+    laminate = None if made_of is None else index.laminates.get(made_of)
     if laminate is None:
         return False
-    process = {one.name for one in plan.materials if one.kind is MaterialKind.PROCESS}
-    return any(step.material in process for step in laminate.steps)
+    materials = (index.materials.get(step.material) for step in laminate.steps)
+    return any(one is not None and one.kind is MaterialKind.PROCESS for one in materials)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from ledger.checks.facts import Facts
 from ledger.errors import Finding, Severity, Where
+from ledger.mass.plan_index import Indexes, PlanIndex
 from ledger.model.acts import Lay
 from ledger.model.plan import Part, Plan, Side
 from ledger.model.snapshot import Snapshot
@@ -49,37 +50,41 @@ def turned_by(one_deg: float, other_deg: float) -> float:
 
 def is_mirrored(part: Part, plan: Plan) -> bool:
     """Whether a part is the mirrored one of its pair; of two that name each other, the right hand is."""
-    if part.mirror_of is None:
-        return False
-    other = plan.part(part.mirror_of)
+    return part.mirror_of is not None and _mirrors(part, plan.part(part.mirror_of))
+
+
+def _mirrors(part: Part, other: Part | None) -> bool:
     return other is None or other.mirror_of != part.name or part.side is Side.RIGHT
 
 
 class _Directions:
-    """The direction a step wants, by part; found once, for thousands of plies share a few laminates."""
+    """The direction a step wants, by part; found once a part, not once a ply."""
 
     def __init__(self, snapshot: Snapshot) -> None:
         self._snapshot = snapshot
-        self._plans = {iteration.name: iteration.plan for iteration in snapshot.iterations}
-        self._known: dict[tuple[str, str], dict[int, float]] = {}
+        self._indexes = Indexes(snapshot)
+        self._known: dict[tuple[int, str], dict[int, float]] = {}
 
     def wanted(self, piece: str, step: int) -> float | None:
         known = self._snapshot.pieces.get(piece)
         if known is None:
             return None
-        key = (known.iteration, known.part)
+        index = self._indexes.of(piece)
+        key = (id(index), known.part)
         if key not in self._known:
-            self._known[key] = self._read(known.part, self._plans.get(known.iteration, self._snapshot.plan))
+            self._known[key] = _directions(known.part, index)
         return self._known[key].get(step)
 
-    def _read(self, name: str, plan: Plan) -> dict[int, float]:
-        part = plan.part(name)
-        laminate = None if part is None or part.made_of is None else plan.laminate(part.made_of)
-        if part is None or laminate is None:
-            return {}
-        sign = -1.0 if is_mirrored(part, plan) else 1.0
-        return {
-            step.number: sign * step.orientation_deg
-            for step in laminate.steps
-            if step.orientation_deg is not None
-        }
+
+def _directions(name: str, index: PlanIndex) -> dict[int, float]:
+    part = index.parts.get(name)
+    laminate = None if part is None or part.made_of is None else index.laminates.get(part.made_of)
+    if part is None or laminate is None:
+        return {}
+    mirrored = part.mirror_of is not None and _mirrors(part, index.parts.get(part.mirror_of))
+    sign = -1.0 if mirrored else 1.0
+    return {
+        step.number: sign * step.orientation_deg
+        for step in laminate.steps
+        if step.orientation_deg is not None
+    }

@@ -30,6 +30,7 @@ from ledger.checks.outlet_in_no_feed import outlet_in_no_feed
 from ledger.checks.peel_ply_not_said import peel_ply_not_said
 from ledger.checks.ply_missing import ply_missing
 from ledger.checks.ply_not_in_plan import ply_not_in_plan
+from ledger.checks.ply_of_other_material import ply_of_other_material
 from ledger.checks.ply_twice import ply_twice
 from ledger.checks.ply_wrong_way import ply_wrong_way
 from ledger.checks.pocket_not_counted import pocket_not_counted
@@ -73,6 +74,7 @@ RULES: tuple[Rule, ...] = (
     peel_ply_not_said,
     ply_missing,
     ply_not_in_plan,
+    ply_of_other_material,
     ply_twice,
     ply_wrong_way,
     pocket_not_counted,

@@ -117,19 +117,19 @@ def read_table(
     columns: Mapping[str, tuple[Dimension, ...]],
     required: tuple[str, ...],
     problems: Problems,
-) -> tuple[TableRow, ...]:
+) -> tuple[TableRow, ...] | None:
     """The rows of a table whose columns are among `columns`, each with the dimensions its head may carry.
 
-    Returns no rows where a head is wrong, since the cells below it could not be told.
+    None where it is no text or a head is wrong, since the cells below it could not be told.
     """
     text = read_text(file, content, problems)
     if text is None:
-        return ()
+        return None
     lines = read_csv_rows(file, text, problems)
     begin, heads = next(lines, (1, []))
     units = _read_heads(Where(file=file, row=begin), heads, columns, required, problems)
     if units is None:
-        return ()
+        return None
     words = [unit_in_head(head)[0] for head in heads]
     rows = []
     for number, cells in lines:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import io
+import logging
 from collections import Counter
 from collections.abc import Iterator
 from dataclasses import dataclass
@@ -78,7 +79,8 @@ class Drawing:
                     f"a {kind} on layer {layer} does not lie in X and Y ({error})",
                     "draw the outline flat in the X-Y plane",
                 ) from None
-            except (ValueError, ZeroDivisionError) as error:
+            # A damaged entity makes the library trip over whatever it lacks.
+            except Exception as error:
                 raise DrawingRefused(
                     "drawing-broken", f"a {kind} on layer {layer} cannot be read ({error})", "draw it again"
                 ) from None
@@ -99,13 +101,16 @@ def read_drawing(content: bytes) -> Drawing:
     Raises
         DrawingRefused: not a drawing at all.
     """
-    from ezdxf.lldxf.const import DXFError
-
+    # Without a handler its warnings would go to the person's standard error, between the findings.
+    log = logging.getLogger("ezdxf")
+    if not log.handlers:
+        log.addHandler(logging.NullHandler())
     if not content.strip():
         raise DrawingRefused("drawing-broken", "the file is empty", "export the drawing again")
     try:
         document, recovered = _opened(content), None
-    except (DXFError, ValueError, KeyError, IndexError, AttributeError, TypeError, EOFError) as error:
+    # What the strict reader trips over may be anything; recovery then has its turn.
+    except Exception as error:
         document, recovered = _recovered(content, str(error) or type(error).__name__)
     # A drawing without a header is given one that says metres when it is opened.
     code = document.header.get("$INSUNITS", 0) if b"$INSUNITS" in content else 0
@@ -132,12 +137,11 @@ def _opened(content: bytes) -> Any:
 
 def _recovered(content: bytes, why: str) -> tuple[Any, str | None]:
     from ezdxf import recover
-    from ezdxf.lldxf.const import DXFError
 
     try:
         document, _ = recover.read(io.BytesIO(content))
     # Recovery of a file that is no drawing trips over anything.
-    except (DXFError, ValueError, KeyError, IndexError, AttributeError, TypeError, OSError) as error:
+    except Exception as error:
         raise DrawingRefused(
             "drawing-broken",
             f"the file is no drawing that can be read ({error or why})",
@@ -152,7 +156,18 @@ def _recovered(content: bytes, why: str) -> tuple[Any, str | None]:
 
 def _entities(document: Any) -> Iterator[tuple[str, Any]]:
     """Every entity of model space with the layer it counts on, blocks opened to the bottom."""
-    for count, (layer, entity) in enumerate(_opened_blocks(document.modelspace(), "0", 0)):
+    opened = enumerate(_opened_blocks(document.modelspace(), "0", 0))
+    while True:
+        try:
+            count, (layer, entity) = next(opened)
+        except StopIteration:
+            return
+        except DrawingRefused:
+            raise
+        except Exception as error:
+            raise DrawingRefused(
+                "drawing-broken", f"a block of the drawing cannot be opened ({error})", "explode it"
+            ) from None
         if count >= _MOST_ENTITIES:
             raise DrawingRefused(
                 "drawing-too-big",
@@ -162,13 +177,23 @@ def _entities(document: Any) -> Iterator[tuple[str, Any]]:
         yield layer, entity
 
 
+def _layer_of(entity: Any) -> str:
+    from ezdxf.lldxf.const import DXFError
+
+    # What another program's own kinds of entity are drawn on cannot be asked of them.
+    try:
+        return str(entity.dxf.get("layer", "0"))
+    except DXFError:
+        return "0"
+
+
 def _opened_blocks(entities: Any, outer: str, depth: int) -> Iterator[tuple[str, Any]]:
     if depth > _DEEPEST:
         raise DrawingRefused(
             "drawing-broken", "a block holds itself", "explode the blocks and export the drawing again"
         )
     for entity in entities:
-        own = entity.dxf.get("layer", "0")
+        own = _layer_of(entity)
         # What a block has on layer 0 counts on the layer that the block is put on.
         layer = outer if own == "0" and depth else own
         if entity.dxftype() != "INSERT":

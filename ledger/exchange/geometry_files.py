@@ -70,9 +70,9 @@ class GeometryFiles:
         """
         path, picked = split_object(geometry)
         key = key_for(kind, self._hash(path), _ending(path), picked, unit, offset_m)
-        kept = self._cache.get(key)
-        if kept is not None:
-            return figures_from(kept)
+        known = _as_kept(self._cache.get(key), figures_from)
+        if known is not None:
+            return known
         figures = _told_plainly(lambda: self._compute(kind, path, picked, unit, offset_m))
         self._cache.put(key, figures_bytes(figures))
         return figures
@@ -81,9 +81,9 @@ class GeometryFiles:
         """The proved solid of a cell. Raises GeometryRefused, FileRefused."""
         path, picked = split_object(geometry)
         key = self._cell_key(path, picked, unit)
-        kept = self._cache.get(key)
-        if kept is not None:
-            return cell_from(kept)
+        known = _as_kept(self._cache.get(key), cell_from)
+        if known is not None:
+            return known
         cell = _told_plainly(lambda: self._proved(path, picked, unit))
         self._cache.put(key, cell_bytes(cell))
         return cell
@@ -91,17 +91,17 @@ class GeometryFiles:
     def cell_digest(self, geometry: str, unit: str | None) -> str:
         """The digest of a proved cell, without its arrays where the cache has it."""
         path, picked = split_object(geometry)
-        kept = self._cache.get(self._cell_key(path, picked, unit))
-        if kept is not None:
-            return cell_head(kept)[0]
+        known = _as_kept(self._cache.get(self._cell_key(path, picked, unit)), cell_head)
+        if known is not None:
+            return known[0]
         return self.cell(geometry, unit).digest
 
     def cell_volume_m3(self, geometry: str, unit: str | None) -> float:
         """The volume of a cell that `cell_digest` was asked of before."""
         path, picked = split_object(geometry)
-        kept = self._cache.get(self._cell_key(path, picked, unit))
-        if kept is not None:
-            return cell_head(kept)[1]
+        known = _as_kept(self._cache.get(self._cell_key(path, picked, unit)), cell_head)
+        if known is not None:
+            return known[1]
         return self.cell(geometry, unit).volume_m3
 
     def loops(self, geometry: str, unit: str | None) -> tuple[Loop, ...]:
@@ -275,6 +275,16 @@ class GeometryFiles:
             do="nothing to do" if writing else "draw them as lines, arcs or splines if they belong to it",
         )
         return drawn, (remark,)
+
+
+def _as_kept(kept: bytes | None, read: Callable[[bytes], _T]) -> _T | None:
+    """What was kept, or None where nothing was or it is damaged: it is then computed again."""
+    if kept is None:
+        return None
+    try:
+        return read(kept)
+    except (ValueError, KeyError, TypeError, IndexError):
+        return None
 
 
 def _told_plainly(compute: Callable[[], _T]) -> _T:

@@ -3,12 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from dataclasses import dataclass
 from itertools import groupby
+from typing import Generic, TypeVar
 
 from ledger.exchange.csv_table import TableRow, read_table
 from ledger.exchange.problems import Problems
 from ledger.model.plan import Laminate, Material, MaterialKind, Step
 from ledger.units import Dimension, UnitError, read_ratio
+
+_R = TypeVar("_R")
 
 MATERIALS = "materials.csv"
 LAMINATES = "laminates.csv"
@@ -39,9 +43,23 @@ _LAMINATE_COLUMNS: dict[str, tuple[Dimension, ...]] = {
 _STEP_COLUMNS = ("material", "orientation", "coverage", "resin_fraction")
 
 
-def read_materials(content: bytes, problems: Problems) -> tuple[Material, ...]:
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Named(Generic[_R]):
+    """Records by name. `names` are those of rows with a problem too, None where no row could be read."""
+
+    records: Mapping[str, _R]
+    names: frozenset[str] | None
+
+    def may_have(self, name: str) -> bool:
+        """Whether the name is there, or was in what could not be read: then nothing more is said of it."""
+        return self.names is None or name in self.names
+
+
+def read_materials(content: bytes, problems: Problems) -> Named[Material]:
     """The materials of a plan; each problem at its cell."""
     rows = read_table(MATERIALS, content, _MATERIAL_COLUMNS, ("material", "kind"), problems)
+    if rows is None:
+        return Named(records={}, names=None)
     found: dict[str, TableRow] = {}
     materials = []
     for row in rows:
@@ -63,7 +81,8 @@ def read_materials(content: bytes, problems: Problems) -> tuple[Material, ...]:
             continue
         if kind is not None:
             materials.append(Material(name=name, kind=MaterialKind(kind), **figures))
-    return tuple(materials)
+    names = frozenset(row.cells["material"] for row in rows if "material" in row.cells)
+    return Named(records={material.name: material for material in materials}, names=names)
 
 
 def is_new(row: TableRow, column: str, name: str, found: dict[str, TableRow]) -> bool:
@@ -86,11 +105,11 @@ def _ratio(row: TableRow) -> float | None:
         return None
 
 
-def read_laminates(
-    content: bytes, materials: Mapping[str, Material], problems: Problems
-) -> tuple[Laminate, ...]:
+def read_laminates(content: bytes, materials: Named[Material], problems: Problems) -> Named[Laminate]:
     """The laminates of a plan, their steps in order; each problem at its cell."""
     rows = read_table(LAMINATES, content, _LAMINATE_COLUMNS, ("laminate",), problems)
+    if rows is None:
+        return Named(records={}, names=None)
     named = [(name, row) for row in rows if (name := row.wanted("laminate", "the name of the laminate"))]
     by_name: dict[str, list[TableRow]] = {}
     spelt: dict[str, str] = {}
@@ -100,7 +119,8 @@ def read_laminates(
             row.stop("name-twice", "laminate", f"{name!r} is spelt {first!r} above", f"write {first}")
         by_name.setdefault(first, []).append(row)
     _refuse_split(named)
-    return tuple(_laminate(name, each, materials) for name, each in by_name.items())
+    records = {name: _laminate(name, each, materials) for name, each in by_name.items()}
+    return Named(records=records, names=frozenset(by_name))
 
 
 def _refuse_split(named: list[tuple[str, TableRow]]) -> None:
@@ -117,7 +137,7 @@ def _refuse_split(named: list[tuple[str, TableRow]]) -> None:
         seen.add(name)
 
 
-def _laminate(name: str, rows: list[TableRow], materials: Mapping[str, Material]) -> Laminate:
+def _laminate(name: str, rows: list[TableRow], materials: Named[Material]) -> Laminate:
     plain = [row for row in rows if row.text("areal_mass") is not None]
     if plain:
         return _plain_laminate(name, rows, plain[0])
@@ -159,15 +179,15 @@ def _plain_laminate(name: str, rows: list[TableRow], plain: TableRow) -> Laminat
     return Laminate(name=name, areal_mass_kg_m2=areal_mass)
 
 
-def _step(row: TableRow, materials: Mapping[str, Material]) -> Step | None:
+def _step(row: TableRow, materials: Named[Material]) -> Step | None:
     before = row.problems.count
     text = row.wanted("step", "the number of the step, or an areal_mass for the whole laminate")
     number = _whole(text)
     if text is not None and number is None:
         row.stop("cell-unreadable", "step", f"{text!r} is not a whole number", "write for example 2")
     name = row.wanted("material", "the material of the step")
-    material = None if name is None else materials.get(name)
-    if name is not None and material is None:
+    material = None if name is None else materials.records.get(name)
+    if name is not None and not materials.may_have(name):
         row.stop(
             "material-unknown",
             "material",

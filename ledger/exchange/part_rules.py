@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 
-from ledger.exchange.materials_table import LAMINATES, MATERIALS
+from ledger.exchange.materials_table import LAMINATES, MATERIALS, Named
 from ledger.exchange.part_row import PartRow, made_of_part
 from ledger.model.plan import Form, Laminate, Material, Side
 from ledger.model.vectors import Vector
@@ -25,34 +25,24 @@ def check_mirror(part: PartRow, by_name: Mapping[str, PartRow], names: set[str])
         )
         return
     other = by_name.get(part.mirror_of.casefold())
-    if other is None:
-        return
+    wrong = None if other is None else _mirror_trouble(part, other)
+    if wrong is not None:
+        part.row.stop("mirror-wrong", "mirror_of", *wrong)
+
+
+def _mirror_trouble(part: PartRow, other: PartRow) -> tuple[str, str] | None:
+    """Why a part cannot be the other side of another, and what to do."""
     if other is part:
-        part.row.stop(
-            "mirror-wrong", "mirror_of", "a part cannot mirror itself", "name the part on the other side"
-        )
-    elif other.side is part.side and part.side is not Side.CENTRE:
-        part.row.stop(
-            "mirror-wrong",
-            "mirror_of",
-            f"{other.name} is on side {other.side.value} too",
-            "correct one of the two sides",
-        )
-    elif other.form is not part.form:
-        part.row.stop(
-            "mirror-wrong",
-            "mirror_of",
-            f"{other.name} is a {other.form.value}, this part a {part.form.value}",
-            "give both the same form",
-        )
-    elif part.takes_mirrored_geometry and other.takes_mirrored_geometry:
+        return "a part cannot mirror itself", "name the part on the other side"
+    if other.side is part.side and part.side is not Side.CENTRE:
+        return f"{other.name} is on side {other.side.value} too", "correct one of the two sides"
+    if other.form is not part.form:
+        what = f"{other.name} is {_a(other.form)}, this part {_a(part.form)}"
+        return what, "give both the same form"
+    if part.takes_mirrored_geometry and other.takes_mirrored_geometry:
         place = "origin" if part.form is Form.ITEM else "geometry"
-        part.row.stop(
-            "mirror-wrong",
-            "mirror_of",
-            f"{other.name} has no {place} of its own to mirror",
-            f"give one of the two its {place}",
-        )
+        return f"{other.name} has no {place} of its own to mirror", f"give one of the two its {place}"
+    return None
 
 
 def check_geometry(part: PartRow) -> None:
@@ -119,6 +109,10 @@ def _check_placed(part: PartRow) -> None:
         _check_square(part, part.across, part.up_axis)
 
 
+def _a(form: Form) -> str:
+    return f"an {form.value}" if form is Form.ITEM else f"a {form.value}"
+
+
 _PLACE_WORDS = {
     "origin": "where the outline's origin lies, three numbers",
     "across": "where its X runs, for example 1 0 0",
@@ -142,8 +136,8 @@ def _check_square(part: PartRow, across: Vector, up_axis: Vector) -> None:
 def check_made_of(
     part: PartRow,
     by_name: Mapping[str, PartRow],
-    materials: Mapping[str, Material],
-    laminates: Mapping[str, Laminate],
+    materials: Named[Material],
+    laminates: Named[Laminate],
 ) -> None:
     """Note a part made of nothing, of something unknown, or of something whose mass is unknown."""
     made_of = made_of_part(part, by_name)
@@ -155,7 +149,7 @@ def check_made_of(
     if made_of is None:
         row.stop("cell-empty", "made_of", "made_of is empty", f"write the {kind} the part is made of")
         return
-    if made_of not in (laminates if laminated else materials):
+    if not (laminates.may_have(made_of) if laminated else materials.may_have(made_of)):
         row.stop(
             f"{kind}-unknown",
             "made_of",
@@ -163,12 +157,11 @@ def check_made_of(
             "add it there or correct the name",
         )
         return
-    if laminated:
+    material = materials.records.get(made_of)
+    if laminated or material is None:
         return
     column = "density" if part.form is Form.SOLID else "linear_mass"
-    figure = (
-        materials[made_of].density_kg_m3 if part.form is Form.SOLID else materials[made_of].linear_mass_kg_m
-    )
+    figure = material.density_kg_m3 if part.form is Form.SOLID else material.linear_mass_kg_m
     if figure is None:
         row.stop(
             "material-without-mass",

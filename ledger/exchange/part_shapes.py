@@ -58,6 +58,7 @@ class _Shaping:
         self._geometry = geometry
         self._materials = materials
         self._laminates = laminates
+        self._broken: set[tuple[str, str]] = set()
         densities = {
             material.density_kg_m3
             for material in materials.values()
@@ -105,13 +106,20 @@ class _Shaping:
             figures = self._geometry.figures(row.form.value, str(row.geometry), row.geometry_unit, offset)
         except (GeometryRefused, FileRefused) as refused:
             column = "geometry_unit" if refused.code in ("unit-missing", "unit-contradicts") else "geometry"
-            row.row.stop(refused.code, column, refused.what, refused.do)
+            self._refuse(row, column, refused)
             return None
         _tell(row, figures)
         origin = origin_m(row, figures.unit)
         if row.origin is not None and origin is None:
             return None
         return self._placed(row, figures, origin, thickness)
+
+    def _refuse(self, row: PartRow, column: str, refused: GeometryRefused | FileRefused) -> None:
+        # A broken file is broken for every part in it: said once, at the first.
+        told = (str(row.geometry).partition("#")[0], refused.what)
+        if refused.code not in ("drawing-broken", "mesh-broken") or told not in self._broken:
+            row.row.stop(refused.code, column, refused.what, refused.do)
+        self._broken.add(told)
 
     def _placed(
         self, row: PartRow, figures: Figures, origin: Vector | None, thickness: float

@@ -3,10 +3,9 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping
 
 from ledger.exchange.csv_table import TableRow, read_table
-from ledger.exchange.materials_table import is_new
+from ledger.exchange.materials_table import Named, is_new
 from ledger.exchange.part_row import PartRow
 from ledger.exchange.part_rules import check_geometry, check_made_of, check_mirror
 from ledger.exchange.problems import Problems
@@ -39,10 +38,12 @@ _ASSEMBLY_STEP = re.compile(r"[^/;,=\"'#]+")
 
 
 def read_parts(
-    content: bytes, materials: Mapping[str, Material], laminates: Mapping[str, Laminate], problems: Problems
+    content: bytes, materials: Named[Material], laminates: Named[Laminate], problems: Problems
 ) -> tuple[PartRow, ...]:
     """The rows of parts.csv; a row with a problem is left out, its problem noted."""
     rows = read_table(PARTS, content, _COLUMNS, _REQUIRED, problems)
+    if rows is None:
+        return ()
     found: dict[str, TableRow] = {}
     parts = [part for row in rows if (part := _part(row, found)) is not None]
     names = {row.cells.get("part", "").casefold() for row in rows}

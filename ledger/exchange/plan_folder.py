@@ -9,7 +9,7 @@ from pathlib import Path
 from ledger.errors import Finding, Severity, Where, WrongUse
 from ledger.exchange.geometry_cache import GeometryCache, MemoryCache
 from ledger.exchange.geometry_files import GeometryFiles, GeometryRefused
-from ledger.exchange.materials_table import LAMINATES, MATERIALS, read_laminates, read_materials
+from ledger.exchange.materials_table import LAMINATES, MATERIALS, Named, read_laminates, read_materials
 from ledger.exchange.part_shapes import read_shapes
 from ledger.exchange.parts_table import PARTS, read_parts
 from ledger.exchange.plan_files import FileRefused, FolderFiles, PlanFiles, StoredFiles
@@ -73,8 +73,8 @@ def _read(files: PlanFiles, cache: GeometryCache | None) -> ReadPlan:
             name=head.name,
             title=head.title,
             display=head.display,
-            materials=tuple(materials.values()),
-            laminates=tuple(laminates.values()),
+            materials=tuple(materials.records.values()),
+            laminates=tuple(laminates.records.values()),
             parts=parts,
             shapes=shapes,
             tanks=tanks,
@@ -111,20 +111,23 @@ def _head(files: PlanFiles, problems: Problems) -> PlanHead | None:
     return read_plan_head(content, problems)
 
 
-def _tables(files: PlanFiles, problems: Problems) -> tuple[dict[str, Material], dict[str, Laminate]]:
+def _tables(files: PlanFiles, problems: Problems) -> tuple[Named[Material], Named[Laminate]]:
     content = _fetched(files, MATERIALS, problems)
-    materials = () if content is None else read_materials(content, problems)
-    by_name = {material.name: material for material in materials}
+    materials: Named[Material] = Named(records={}, names=frozenset())
+    if content is not None:
+        materials = read_materials(content, problems)
     content = _fetched(files, LAMINATES, problems)
-    laminates = () if content is None else read_laminates(content, by_name, problems)
-    return by_name, {laminate.name: laminate for laminate in laminates}
+    laminates: Named[Laminate] = Named(records={}, names=frozenset())
+    if content is not None:
+        laminates = read_laminates(content, materials, problems)
+    return materials, laminates
 
 
 def _parts(
     files: PlanFiles,
     geometry: GeometryFiles,
-    materials: Mapping[str, Material],
-    laminates: Mapping[str, Laminate],
+    materials: Named[Material],
+    laminates: Named[Laminate],
     problems: Problems,
 ) -> tuple[tuple[Part, ...], tuple[Shape, ...]]:
     content = _fetched(files, PARTS, problems)
@@ -134,11 +137,11 @@ def _parts(
         )
         return (), ()
     rows = read_parts(content, materials, laminates, problems)
-    return read_shapes(rows, geometry, materials, laminates)
+    return read_shapes(rows, geometry, materials.records, laminates.records)
 
 
 def _tanks(
-    files: PlanFiles, geometry: GeometryFiles, materials: Mapping[str, Material], problems: Problems
+    files: PlanFiles, geometry: GeometryFiles, materials: Named[Material], problems: Problems
 ) -> tuple[Tanks, tuple[str, ...]]:
     content = _fetched(files, TANKS, problems)
     read = None if content is None else read_tanks(content, materials, problems)
@@ -167,8 +170,7 @@ def _cell_digests(read: ReadTanks, geometry: GeometryFiles) -> tuple[str, ...]:
 
 def _note_mesh(table: TomlTable, key: str, cell: Cell, refused: GeometryRefused | FileRefused) -> None:
     if refused.code == "unit-missing":
-        do = 'write length_unit = "mm" at the top of the file, or mesh_unit at the cell'
-        table.stop(refused.code, key, f"nothing says the unit of cell {cell.name!r}", do)
+        table.stop_for_length_unit()
         return
     table.stop(refused.code, key, f"cell {cell.name!r}: {refused.what}", refused.do)
 

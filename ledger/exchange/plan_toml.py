@@ -32,6 +32,7 @@ class PlanHead:
     fuel: FuelGrade | None
     tolerances: tuple[tuple[PartClass, float], ...]
     growths: tuple[tuple[PartClass, float], ...]
+    says_where_filled: bool
 
 
 def read_plan_head(content: bytes, problems: Problems) -> PlanHead | None:
@@ -58,12 +59,13 @@ def read_plan_head(content: bytes, problems: Problems) -> PlanHead | None:
         fuel=_fuel(whole),
         tolerances=_shares(whole, "tolerance"),
         growths=_shares(whole, "growth"),
+        says_where_filled=any(table.values.get("fill") is True for table in whole.tables("attitude")),
     )
 
 
 def check_filling(head: PlanHead, has_tanks: bool, problems: Problems) -> None:
     """Note a plan with tanks that says no attitude to fill them in."""
-    if has_tanks and not any(attitude.fill for attitude in head.attitudes):
+    if has_tanks and not head.says_where_filled:
         from ledger.errors import Where
 
         problems.stop(

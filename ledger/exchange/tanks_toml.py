@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass
 
+from ledger.exchange.materials_table import Named
 from ledger.exchange.openings_toml import read_opening
 from ledger.exchange.problems import Problems
 from ledger.exchange.toml_text import TomlTable, read_toml
@@ -33,7 +34,7 @@ class ReadTanks:
     cell_tables: tuple[TomlTable, ...]
 
 
-def read_tanks(content: bytes, materials: Mapping[str, Material], problems: Problems) -> ReadTanks | None:
+def read_tanks(content: bytes, materials: Named[Material], problems: Problems) -> ReadTanks | None:
     """The whole of tanks.toml but for the meshes; None where it is no TOML."""
     whole = read_toml(TANKS, content, problems)
     if whole is None:
@@ -61,7 +62,8 @@ def read_tanks(content: bytes, materials: Mapping[str, Material], problems: Prob
 
 def _length_unit(whole: TomlTable) -> str | None:
     text = whole.text("length_unit")
-    return None if text is None else _unit(whole, "length_unit", text)
+    # After one wrong unit at the top, every length below would be told to have none.
+    return None if text is None else _unit(whole, "length_unit", text) or "m"
 
 
 def _unit(table: TomlTable, key: str, text: str) -> str | None:
@@ -85,51 +87,61 @@ def new_name(table: TomlTable, kind: str, found: dict[str, str]) -> str | None:
 
 
 def _cells(
-    whole: TomlTable, unit: str | None, materials: Mapping[str, Material]
+    whole: TomlTable, unit: str | None, materials: Named[Material]
 ) -> tuple[tuple[TomlTable, Cell], ...]:
     found: dict[str, str] = {}
-    cells = []
-    for table in whole.tables("cell"):
-        before = table.problems.count
-        table.refuse_others(_CELL_KEYS)
-        name = new_name(table, "cell", found)
-        if name is not None and name in tuple(Outside):
-            table.stop("name-wrong", "name", f"{name!r} is a way out of a cell", "give the cell another name")
-        mesh = table.text("mesh", wanted='"geometry/L1.obj"')
-        said = table.text("mesh_unit")
-        mesh_unit = unit if said is None else _unit(table, "mesh_unit", said)
-        material = table.text("sealant_material")
-        if material is not None and material not in materials:
-            table.stop(
-                "material-unknown",
-                "sealant_material",
-                f"there is no material {material!r} in materials.csv",
-                "add it there or correct the name",
-            )
-        displaced = table.quantity("displaced", Dimension.VOLUME, zero=True)
-        displaced_mesh = table.text("displaced_mesh")
-        if displaced is not None and displaced_mesh is not None:
-            table.stop(
-                "displaced-twice",
-                "displaced_mesh",
-                "displaced is given as a volume and as a mesh",
-                "give one of them",
-            )
-        thickness = table.quantity("sealant", Dimension.LENGTH, bare_unit=unit)
-        fillet = table.quantity("sealant_fillet", Dimension.LENGTH, bare_unit=unit)
-        if table.problems.count == before and name is not None and mesh is not None:
-            cell = Cell(
-                name=name,
-                mesh=mesh,
-                mesh_unit=mesh_unit,
-                displaced_m3=displaced,
-                displaced_mesh=displaced_mesh,
-                sealant_thickness_m=thickness,
-                sealant_fillet_m=fillet,
-                sealant_material=material,
-            )
-            cells.append((table, cell))
-    return tuple(cells)
+    read = [(table, _cell(table, unit, materials, found)) for table in whole.tables("cell")]
+    return tuple((table, cell) for table, cell in read if cell is not None)
+
+
+def _cell(
+    table: TomlTable, unit: str | None, materials: Named[Material], found: dict[str, str]
+) -> Cell | None:
+    before = table.problems.count
+    table.refuse_others(_CELL_KEYS)
+    name = new_name(table, "cell", found)
+    if name is not None and name in tuple(Outside):
+        table.stop("name-wrong", "name", f"{name!r} is a way out of a cell", "give the cell another name")
+    mesh = table.text("mesh", wanted='"geometry/L1.obj"')
+    said = table.text("mesh_unit")
+    mesh_unit = unit if said is None else _unit(table, "mesh_unit", said)
+    displaced, displaced_mesh = _displaced(table)
+    thickness = table.quantity("sealant", Dimension.LENGTH, bare_unit=unit)
+    fillet = table.quantity("sealant_fillet", Dimension.LENGTH, bare_unit=unit)
+    material = _sealant_material(table, materials)
+    if table.problems.count != before or name is None or mesh is None:
+        return None
+    return Cell(
+        name=name,
+        mesh=mesh,
+        mesh_unit=mesh_unit,
+        displaced_m3=displaced,
+        displaced_mesh=displaced_mesh,
+        sealant_thickness_m=thickness,
+        sealant_fillet_m=fillet,
+        sealant_material=material,
+    )
+
+
+def _displaced(table: TomlTable) -> tuple[float | None, str | None]:
+    volume = table.quantity("displaced", Dimension.VOLUME, zero=True)
+    mesh = table.text("displaced_mesh")
+    if volume is not None and mesh is not None:
+        what = "displaced is given as a volume and as a mesh"
+        table.stop("displaced-twice", "displaced_mesh", what, "give one of them")
+    return volume, mesh
+
+
+def _sealant_material(table: TomlTable, materials: Named[Material]) -> str | None:
+    material = table.text("sealant_material")
+    if material is not None and not materials.may_have(material):
+        table.stop(
+            "material-unknown",
+            "sealant_material",
+            f"there is no material {material!r} in materials.csv",
+            "add it there or correct the name",
+        )
+    return material
 
 
 def names_in(table: TomlTable, key: str, example: str) -> tuple[str, ...] | None:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import io
 import zipfile
+import zlib
 from typing import Any
 
 import numpy as np
@@ -49,7 +50,7 @@ def _model(content: bytes) -> Any:
             if archive.getinfo(name).file_size > _MOST_BYTES:
                 raise _broken(f"the model unpacks to more than {_MOST_BYTES // 1024**2} MB")
             xml = archive.read(name)
-    except (zipfile.BadZipFile, KeyError, OSError, EOFError, RuntimeError) as error:
+    except (zipfile.BadZipFile, KeyError, OSError, EOFError, RuntimeError, zlib.error) as error:
         raise _broken(f"the archive cannot be opened ({error})") from None
     # Entities could read other files or swell without bound.
     parser = etree.XMLParser(resolve_entities=False, no_network=True, load_dtd=False, huge_tree=True)

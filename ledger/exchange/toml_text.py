@@ -47,6 +47,15 @@ class TomlTable:
         """A problem at a key of this table."""
         self.problems.stop(code, self.where(key), what, do)
 
+    def stop_for_length_unit(self) -> None:
+        """Say, once a file, that its bare lengths have no unit."""
+        self.problems.stop(
+            "unit-missing",
+            Where(file=self.file, column="length_unit"),
+            "nothing says the unit of the lengths",
+            'write length_unit = "mm" at the top of the file',
+        )
+
     def refuse_others(self, known: Iterable[str]) -> None:
         """Note every key that is not known here."""
         words = tuple(known)
@@ -150,12 +159,14 @@ class TomlTable:
             number = self._finite(key, value)
             if number is None:
                 return None
-            text, unit = repr(number), bare_unit
-            text = text.removesuffix(".0")
+            if bare_unit is None and dimension is Dimension.LENGTH:
+                self.stop_for_length_unit()
+                return None
+            text, unit = repr(number).removesuffix(".0"), bare_unit
         try:
             return read_quantity(text, dimension, unit=unit)
         except UnitError as error:
-            self.stop("value-unreadable", key, error.what, error.do.replace("write ", f"write {key} = ", 1))
+            self.stop("value-unreadable", key, error.what, _quoted(error.do, key, text))
             return None
 
     def _finite(self, key: str, value: object) -> float | None:
@@ -259,6 +270,12 @@ def _open_after(line: str, depth: int, quote: str | None) -> tuple[int, str | No
         at += 1
     # A plain string cannot run over the end of a line.
     return depth, quote if quote is not None and len(quote) == 3 else None
+
+
+def _quoted(do: str, key: str, text: str) -> str:
+    """`write 715 kg/m3 or …` as it stands in this file: `write density_15C = "715 kg/m3"`."""
+    wanted = do.removeprefix("write ").split(" or ")[0]
+    return f'write {key} = "{wanted}"' if wanted.startswith(text) else do
 
 
 def _shown(value: object) -> str:

@@ -7,7 +7,7 @@ from dataclasses import replace
 from ledger.fuel.draining import drain
 from ledger.fuel.rims import widened
 from ledger.fuel.stood import Stood
-from ledger.fuel.ways import Way, way_at
+from ledger.fuel.ways import Network, Way, way_at
 
 LOWER_M = 0.001
 WIDER = 1.1
@@ -33,11 +33,15 @@ def freed_wider(stood: Stood, opening: str) -> float:
 def _freed(stood: Stood, changed: Way) -> float:
     known = stood.freed.get(changed)
     if known is None:
-        moved = drain(stood.network.with_way(changed), stood.system.pulls, stood.dry)
+        joined = stood.system.joined_with(changed.cells[0])
+        network = Network(
+            joined, (changed if way.name == changed.name else way for way in stood.network.ways)
+        )
+        moved = drain(network, stood.system.pulls, stood.dry.intersection(joined))
         known = 0.0
-        for cell, bay in stood.bays.items():
+        for cell in joined:
             before, after = stood.kept[cell].level_m, moved[cell].level_m
-            if before != after:
-                known += bay.volume(before) - bay.volume(after)
+            if before != after and cell in stood.bays:
+                known += stood.bays[cell].volume(before) - stood.bays[cell].volume(after)
         stood.freed[changed] = known
     return known

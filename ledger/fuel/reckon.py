@@ -54,16 +54,19 @@ def reckon(
     shown = [stood for stood in stoods if listed is None or stood.attitude.name in listed]
     if asked is not None:
         shown.append(Stood(system, replace(asked, flight=False, fill=False)))
-    ground = next((stood for stood in stoods if stood.attitude.fill), None)
-    flights = tuple(stood for stood in stoods if stood.attitude.flight)
     wanted = Wanted(
         steps=levels,
         density_kg_m3=density_at(fuel, temperature_k),
-        ground=ground,
-        flights=flights,
+        ground=next((stood for stood in stoods if stood.attitude.fill), None),
+        flights=tuple(stood for stood in stoods if stood.attitude.flight),
         listed=tuple(shown),
         any_stood=next(iter((*stoods, *shown)), None) or Stood(system, Attitude(name="level")),
     )
+    return _report(system, wanted)
+
+
+def _report(system: System, wanted: Wanted) -> FuelReport:
+    tanks, ground, flights = system.tanks, wanted.ground, wanted.flights
     filled = {
         tank.name: None if ground is None else fill_tank(tank, system.group_of(tank), ground)
         for tank in tanks.tanks
@@ -73,8 +76,8 @@ def reckon(
             tank_fuel(tank, system.group_of(tank), filled[tank.name], wanted) for tank in tanks.tanks
         ),
         feeds=feed_rows(system, filled, flights),
-        far_openings=far_openings(tanks, cells),
-        overlaps=overlaps(cells),
+        far_openings=far_openings(tanks, system.cells),
+        overlaps=overlaps(system.cells),
         airless=_airless(flights, tanks),
         pocketed=_pocketed(flights, tanks),
     )

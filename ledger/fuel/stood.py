@@ -11,7 +11,7 @@ from ledger.fuel.layout import Group, all_pulls, groups_of
 from ledger.fuel.ways import Network, Way, ways_at
 from ledger.geometry.closed_cell import ClosedCell
 from ledger.model.attitude import Attitude
-from ledger.model.tanks import Tank, Tanks
+from ledger.model.tanks import Outside, Tank, Tanks
 from ledger.model.vectors import Vector
 
 
@@ -32,6 +32,16 @@ class System:
         return System(
             tanks=tanks, cells=cells, displaced=displaced, groups=groups, pulls=all_pulls(tanks, groups)
         )
+
+    def joined_with(self, cell: str) -> tuple[str, ...]:
+        """Cells whose fuel has to do with that of one cell: of its group, and of groups on a tee with it."""
+        groups = [group for group in self.groups if cell in group.cells]
+        # Once over for each: a tee may join a group to one that another tee has only just brought in.
+        for pull in self.pulls * len(self.pulls):
+            drawn = [group for group in self.groups if set(pull).intersection(group.named(Outside.OUTLET))]
+            if any(group in groups for group in drawn):
+                groups += [group for group in drawn if group not in groups]
+        return tuple(name for group in groups for name in group.cells)
 
     def group_of(self, tank: Tank) -> Group:
         """The tanks that one belongs with."""

@@ -14,7 +14,7 @@ from ledger.fuel.report import DrainedRow, TableRow
 from ledger.geometry.standing import Floats
 
 _HALVINGS = 44
-_PASSES = 4
+_PASSES = 40
 # A quantity met to this share is near enough for the last step between rows, less for a small one.
 _CLOSE_SHARE = 2e-6
 _SMALL_SHARE = 1e-3
@@ -126,7 +126,7 @@ class Draining:
         if self._pool is None or self._table is None:
             return self._centres_of_still(len(quantities))
         held, _, _, surface = self._table
-        levels = _levels_between(self._grid, held, surface, quantities)
+        low, high, levels = _levels_between(self._grid, held, surface, quantities)
         got, volume, moment, surface = self._held(levels, self._pool.at(levels))
         close = _CLOSE_SHARE * np.maximum(quantities, _SMALL_SHARE * held[-1])
         for _ in range(_PASSES):
@@ -134,8 +134,12 @@ class Draining:
             wide = np.flatnonzero(np.abs(off) > close)
             if len(wide) == 0:
                 break
-            step = np.divide(off, surface, out=np.zeros_like(off), where=surface > 0.0)
-            levels = np.clip(levels + step, self._grid[0], self._grid[-1])
+            low[wide] = np.where(off[wide] > 0.0, levels[wide], low[wide])
+            high[wide] = np.where(off[wide] > 0.0, high[wide], levels[wide])
+            step = np.divide(off, surface, out=np.full_like(off, np.inf), where=surface > 0.0)[wide]
+            newton = levels[wide] + step
+            inside = (low[wide] < newton) & (newton < high[wide])
+            levels[wide] = np.where(inside, newton, 0.5 * (low[wide] + high[wide]))
             again = self._held(levels[wide], self._pool.at(levels[wide]))
             got[wide], volume[wide], moment[wide], surface[wide] = again
         return _centred(quantities, got, volume, moment)
@@ -170,8 +174,10 @@ def _centred(quantities: Floats, got: Floats, volume: Floats, moment: Floats) ->
     return np.asarray(centres, dtype=np.float64)
 
 
-def _levels_between(levels: Floats, held: Floats, surface: Floats, quantities: Floats) -> Floats:
-    """Lowest levels that hold the quantities, read from a table with its slopes."""
+def _levels_between(
+    levels: Floats, held: Floats, surface: Floats, quantities: Floats
+) -> tuple[Floats, Floats, Floats]:
+    """Levels of a table on either side of each quantity, and one between read from its slopes."""
     at = np.clip(np.searchsorted(held, quantities, side="left"), 1, len(levels) - 1)
     low, high = levels[at - 1], levels[at]
     step = high - low
@@ -184,4 +190,4 @@ def _levels_between(levels: Floats, held: Floats, surface: Floats, quantities: F
         curve = t * t * (3.0 - 2.0 * t) * rise + t * (1.0 - t) * ((1.0 - t) * slope_low - t * slope_high)
         short = curve < wanted
         under, over = np.where(short, t, under), np.where(short, over, t)
-    return np.asarray(low + over * step, dtype=np.float64)
+    return low, high, low + over * step

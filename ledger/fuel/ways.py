@@ -62,10 +62,6 @@ class Network:
                 self.beside[one].append((two, way))
                 self.beside[two].append((one, way))
 
-    def with_way(self, changed: Way) -> Network:
-        """The same network with one way replaced by another of its name."""
-        return Network(self.cells, (changed if way.name == changed.name else way for way in self.ways))
-
 
 def ways_at(openings: Iterable[Opening], up: Vector) -> tuple[Way, ...]:
     """Every opening as it stands along `up`."""

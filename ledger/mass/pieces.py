@@ -10,7 +10,7 @@ from ledger.mass.magnitudes import BOUND_TO_U, CLASS_ALLOWANCE, GEOMETRY_TOLERAN
 from ledger.mass.plan_index import Nominal, PlanIndex
 from ledger.mass.report import CAUSES, CauseMass, PartMass, PieceMass
 from ledger.mass.settle import NOW, Differences, Settled, Settlement
-from ledger.mass.spread import Spread, add_sources, add_spread, u_of
+from ledger.mass.spread import Source, Spread, add_sources, add_spread, u_of
 from ledger.model.plan import PartClass, Shape, Side
 from ledger.model.snapshot import Piece
 from ledger.model.vectors import Vector
@@ -45,20 +45,9 @@ def named_causes(causes: tuple[float, ...]) -> tuple[CauseMass, ...]:
 def planned_piece(nominal: Nominal, index: PlanIndex, number: int) -> PieceFigures:
     """A piece of which nothing has been logged."""
     estimated = nominal.estimated_kg
-    sources: list[tuple[tuple[object, ...], float]] = []
-    if estimated is not None:
-        thing = f"{nominal.part.name} planned {number}"
-        sources.append((("class", nominal.part.part_class.value), CLASS_ALLOWANCE * BOUND_TO_U * estimated))
-        if (
-            nominal.part.planned_mass_kg is None
-            and nominal.layers is not None
-            and nominal.measure is not None
-        ):
-            sources += planned_sources(nominal.measure, nominal.layers, index, thing)
-        else:
-            sources.append((("drawing", thing), GEOMETRY_TOLERANCE * estimated))
     spread: Spread = {}
-    add_sources(spread, sources)
+    if estimated is not None:
+        add_sources(spread, _planned_unsureness(nominal, index, estimated, number))
     u_kg = None if estimated is None else u_of(spread)
     return PieceFigures(
         mass=PieceMass(
@@ -83,6 +72,15 @@ def planned_piece(nominal: Nominal, index: PlanIndex, number: int) -> PieceFigur
         causes=NO_CAUSES,
         spread=spread,
     )
+
+
+def _planned_unsureness(nominal: Nominal, index: PlanIndex, estimated: float, number: int) -> list[Source]:
+    part = nominal.part
+    thing = f"{part.name} planned {number}"
+    allowance: Source = (("class", part.part_class.value), CLASS_ALLOWANCE * BOUND_TO_U * estimated)
+    if part.planned_mass_kg is None and nominal.layers is not None and nominal.measure is not None:
+        return [allowance, *planned_sources(nominal.measure, nominal.layers, index, thing)]
+    return [allowance, (("drawing", thing), GEOMETRY_TOLERANCE * estimated)]
 
 
 def settled_piece(
@@ -242,29 +240,51 @@ def cell_part(
     cell: str, home: str, settlement: Settlement, place_m: Vector | None
 ) -> tuple[PartMass, PieceFigures]:
     """The coats inside a cell, shown beside the parts: the plan has no part that holds them."""
+    figures = _cell_figures(cell, settlement)
+    mass = figures.mass
+    part = PartMass(
+        part=f"coats in {cell}",
+        title=f"sealant and other coats inside cell {cell}",
+        part_class=PartClass.FINISH,
+        side=Side.CENTRE,
+        assembly=home,
+        quantity=1,
+        estimated_kg=None,
+        calculated_kg=mass.calculated_kg,
+        actual_kg=None,
+        built_kg=mass.built_kg,
+        best_kg=mass.best_kg,
+        best_u_kg=mass.best_u_kg,
+        state="finished",
+        cg_m=place_m,
+        area_m2=None,
+        pieces=(mass,),
+        off_plan=mass.off_plan,
+    )
+    return part, figures
+
+
+def _cell_figures(cell: str, settlement: Settlement) -> PieceFigures:
     thing = settlement.things[cell]
     built = thing.kg_at(NOW)
     spread, links = thing.sources_now(), links_of(thing)
-    u_kg = settlement.differences.u_with(spread, links)
     causes = (*NO_CAUSES[:5], thing.composition.built_kg, 0.0, thing.correction_kg)
-    name = f"coats in {cell}"
-    mass = PieceMass(
-        piece=cell,
-        number=None,
-        state="finished",
-        known_by="C",
-        estimated_kg=None,
-        calculated_kg=thing.composition.built_kg,
-        actual_kg=None,
-        built_kg=built,
-        best_kg=built,
-        best_u_kg=u_kg,
-        expected_kg=None,
-        expected_u_kg=None,
-        off_plan=named_causes(causes),
-    )
-    figures = PieceFigures(
-        mass=mass,
+    return PieceFigures(
+        mass=PieceMass(
+            piece=cell,
+            number=None,
+            state="finished",
+            known_by="C",
+            estimated_kg=None,
+            calculated_kg=thing.composition.built_kg,
+            actual_kg=None,
+            built_kg=built,
+            best_kg=built,
+            best_u_kg=settlement.differences.u_with(spread, links),
+            expected_kg=None,
+            expected_u_kg=None,
+            off_plan=named_causes(causes),
+        ),
         running=1,
         counts=True,
         begun=True,
@@ -274,23 +294,3 @@ def cell_part(
         in_group=thing.in_group,
         links=links,
     )
-    part = PartMass(
-        part=name,
-        title=f"sealant and other coats inside cell {cell}",
-        part_class=PartClass.FINISH,
-        side=Side.CENTRE,
-        assembly=home,
-        quantity=1,
-        estimated_kg=None,
-        calculated_kg=thing.composition.built_kg,
-        actual_kg=None,
-        built_kg=built,
-        best_kg=built,
-        best_u_kg=u_kg,
-        state="finished",
-        cg_m=place_m,
-        area_m2=None,
-        pieces=(mass,),
-        off_plan=named_causes(causes),
-    )
-    return part, figures

@@ -15,7 +15,6 @@ from ledger.model.plan import (
     PartClass,
     Plan,
     Shape,
-    Step,
 )
 from ledger.model.snapshot import Snapshot
 
@@ -119,20 +118,12 @@ class PlanIndex:
         return None if per is None else (_single(material.name, material.kind, per),)
 
     def _is_wet(self, part: Part) -> bool:
-        if part.made_of is not None and part.made_of in self.laminates and part.form in _FLAT:
-            return False
         material = self.materials.get(part.made_of) if part.made_of is not None else None
-        if material is not None and material.kind in WET_KINDS:
-            return True
-        return part.part_class in (PartClass.JOINT, PartClass.FINISH) and part.form in (Form.RUN, Form.ITEM)
-
-    def step_of(self, part: str, number: int) -> Step | None:
-        """A step of the part's laminate by its number."""
-        known = self.parts.get(part)
-        laminate = None if known is None or known.made_of is None else self.laminates.get(known.made_of)
-        if laminate is None:
-            return None
-        return next((step for step in laminate.steps if step.number == number), None)
+        if part.form in _FLAT and part.made_of in self.laminates:
+            return False
+        if material is not None:
+            return material.kind in WET_KINDS
+        return part.form is Form.RUN and part.part_class in (PartClass.JOINT, PartClass.FINISH)
 
 
 def _single(name: str, kind: MaterialKind, per_measure: float) -> Layer:

@@ -92,7 +92,9 @@ def look_at_ply(stock: Stock, piece: str, now: datetime, step: int | None = None
         else {layer.number: layer.resin * layer.coverage * area for layer in nominal.layers}
     )
     lot, lot_note = (None, "") if chosen is None else _lot_for(snapshot, chosen)
-    mass = next((one for found in stock.weights.parts for one in found.pieces if one.piece in (known_as, name)), None)
+    mass = next(
+        (one for found in stock.weights.parts for one in found.pieces if one.piece in (known_as, name)), None
+    )
     return PlyInHand(
         piece=known_as,
         part=name,

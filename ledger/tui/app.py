@@ -20,11 +20,14 @@ from ledger.operations.take_stock import Plate, Stock, take_stock
 from ledger.tui.actions import SCREENS, Action
 from ledger.tui.bench_screen import BenchScreen
 from ledger.tui.crew import Crew, read_badge
+from ledger.tui.fuel_screen import FuelScreen
 from ledger.tui.list_screen import ListScreen, actions_listed, findings_listed, help_listed
 from ledger.tui.listening import ListeningScreen
 from ledger.tui.lock_screen import LockScreen
 from ledger.tui.scan import ScanLine
 from ledger.tui.themes import DRAWN, PLAIN, THEMES, is_plain
+from ledger.tui.trace_screen import TraceScreen
+from ledger.tui.weights_screen import WeightsScreen
 from ledger.tui.work_screen import WorkScreen, first_words
 
 _POLL_S = 0.7
@@ -36,7 +39,12 @@ class LedgerApp(App[None], inherit_bindings=False):
     """One book, one scan line, one crew; a mode for each screen."""
 
     ENABLE_COMMAND_PALETTE = False
-    MODES: ClassVar[dict[str, Callable[[], WorkScreen]]] = {"bench": BenchScreen}  # type: ignore[assignment, type-arg]
+    MODES: ClassVar[dict[str, Callable[[], WorkScreen]]] = {  # type: ignore[assignment, type-arg]
+        "bench": BenchScreen,
+        "weights": WeightsScreen,
+        "fuel": FuelScreen,
+        "trace": TraceScreen,
+    }
     DEFAULT_MODE = "bench"
 
     def __init__(

@@ -50,7 +50,7 @@ def known_text(total: TotalMass, room: Room) -> Text:
     shares = (total.share_actual, total.share_calculated, total.share_estimated)
     words = [f" {100 * share:.0f} %  " for share in shares]
     lead = "known by   "
-    space = room.width - len(lead) - sum(len(f"{letter} {word}") for letter, word in zip("ACE", words))
+    space = room.width - len(lead) - sum(2 + len(word) for word in words)
     lengths = _whole_parts(shares, max(3, space))
     text = Text(lead, style=room.signs.head)
     for letter, length, word in zip(_LETTERS, lengths, words, strict=True):

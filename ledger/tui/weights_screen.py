@@ -63,7 +63,7 @@ class WeightsScreen(WorkScreen[WeightsView]):
         self.opened: set[str] = set()
         self.at = 0
         self.seen: tuple[int, ...] = ()
-        self._begun = False
+        self._key: str | None = None
 
     def compose_body(self) -> ComposeResult:
         """Headline and bar, the tree, causes below; the chosen row beside them where there is room."""
@@ -86,12 +86,10 @@ class WeightsScreen(WorkScreen[WeightsView]):
 
     def show(self, view: WeightsView) -> None:
         """The new view; the mark stays on the thing it was on."""
-        if not self._begun:
-            self._begun = True
+        if self._key is None:
             self.opened = {row.key for row in view.rows if row.kind == "assembly" and row.depth < 2}
-        key = self._key_at(self.at)
         self.seen = seen_rows(view.rows, self.opened)
-        self._put_mark_on(key)
+        self._put_mark_on(self._key)
         self.draw_all()
 
     def draw_all(self) -> None:
@@ -112,11 +110,13 @@ class WeightsScreen(WorkScreen[WeightsView]):
         self._draw_tree(view)
 
     def _draw_tree(self, view: WeightsView) -> None:
+        row = self.chosen
+        self._key = None if row is None else row.key
         room = self._room(self._tree_width(), self._tree_height())
         self.query_one("#weights-tree", Area).draw(tree_text(view, self.seen, self.at, self.opened, room))
         if self.wide:
             beside = self._room(_SIDE, self._tree_height() + _CAUSES + 2)
-            self.query_one("#weights-chosen", Area).draw(chosen_text(view, self.chosen, beside))
+            self.query_one("#weights-chosen", Area).draw(chosen_text(view, row, beside))
 
     @property
     def chosen(self) -> WeightRow | None:
@@ -212,7 +212,7 @@ class WeightsScreen(WorkScreen[WeightsView]):
         """Every branch open."""
         if self.view is not None:
             self.opened = {row.key for row in self.view.rows if row.kind != "piece"}
-            self._fold_anew(self._key_at(self.at))
+            self._fold_anew(self._key)
 
     def do_fold_all(self) -> None:
         """Every branch closed."""
@@ -258,10 +258,6 @@ class WeightsScreen(WorkScreen[WeightsView]):
             if self.view.rows[at].key == key:
                 self.at = place
                 return
-
-    def _key_at(self, place: int) -> str | None:
-        row = self.chosen if self.seen else None
-        return None if row is None or place >= len(self.seen) else row.key
 
     def _room(self, width: int, height: int) -> Room:
         return Room(width=width, height=height, signs=self.signs, lines=self.lines, here=True)

@@ -68,20 +68,20 @@ def first_shown(many: int, at: int, height: int) -> int:
 
 def bar_of(off_kg: float | None, widest_kg: float, half: int) -> str:
     """`<<<|` light or `|>>>` heavy. What is off by a figure that shows has at least one mark."""
-    if off_kg is None or widest_kg <= 0.0:
+    if off_kg is None or _shows_as_nothing(off_kg) or widest_kg <= 0.0:
         return f"{'':<{half}}|{'':<{half}}"
-    marks = round(half * abs(off_kg) / widest_kg)
-    if marks == 0 and float(f"{off_kg:.{_PLACES}f}") != 0.0:
-        marks = 1
+    marks = max(1, round(half * abs(off_kg) / widest_kg))
     marks = min(half, marks)
     if off_kg < 0.0:
         return f"{'<' * marks:>{half}}|{'':<{half}}"
     return f"{'':<{half}}|{'>' * marks:<{half}}"
 
 
-def _row_text(
-    view: WeightsView, row: WeightRow, marked: bool, opened: AbstractSet[str], room: Room
-) -> Text:
+def _shows_as_nothing(off_kg: float) -> bool:
+    return float(f"{off_kg:.{_PLACES}f}") == 0.0
+
+
+def _row_text(view: WeightsView, row: WeightRow, marked: bool, opened: AbstractSet[str], room: Room) -> Text:
     display = view.display
     flag = row.flag
     if row.key not in opened and row.inside == "STOP":
@@ -126,7 +126,7 @@ def _spread(u_kg: float | None, display: Display) -> str:
 
 
 def _half(room: Room) -> int:
-    return _HALF if room.width < 100 else 10
+    return _HALF if room.width < 90 else 10
 
 
 def _name_width(room: Room) -> int:

@@ -227,6 +227,10 @@ def test_a_number_is_not_given_again_after_a_withdrawal(stocked: Any) -> None:
 def test_a_scale_entered_again_is_the_same_scale(stocked: Any) -> None:
     again = _body(stocked.enter("instrument", Instrument(instrument="w2", what="scale", resolution=GRAM)))
     assert again["instrument"] == "W2"
+    bench = Instrument(instrument="bench scale", what="scale", resolution=GRAM)
+    assert _body(stocked.enter("instrument", bench))["instrument"] == "bench scale"
+    weigh = Weigh(what="SKIN-L", reading_kg=(1.0,), scale="Bench Scale")
+    assert _body(stocked.enter("weigh", weigh))["scale"] == "bench scale"
 
 
 def test_a_piece_sits_in_one_place_at_a_time(stocked: Any) -> None:

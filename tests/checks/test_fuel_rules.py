@@ -242,8 +242,8 @@ def test_every_rule_about_fuel_is_run_and_in_order() -> None:
 def test_air_above_a_hole_bored_clear_of_the_skin_is_a_note() -> None:
     high = {**GOOD, "high": slot("high", "A B", 0.80, 0.895, 1.0)}
     (found,) = findings("caught_air", facts(high))
-    assert (found.severity, found.where.thing) == (Severity.NOTE, "B")
-    assert "high" in found.what
+    assert (found.severity, found.where.thing) == (Severity.NOTE, "tank A")
+    assert "B under high" in found.what
 
 
 def test_a_cell_with_no_way_to_the_drain_is_named_by_itself() -> None:

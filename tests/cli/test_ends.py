@@ -32,6 +32,10 @@ def test_the_version_is_that_of_the_package() -> None:
     assert (done.returncode, done.stdout, done.stderr) == (0, f"wingledger, version {__version__}\n", "")
 
 
+def test_the_version_is_the_same_among_other_options(run: Any) -> None:
+    assert run("--version").out == in_child("--version").stdout
+
+
 def test_help_lists_every_command(run: Any) -> None:
     ran = run("--help")
     assert ran.code == 0

@@ -8,7 +8,10 @@ import sqlite3
 from pathlib import Path
 from typing import Any
 
+import jsonschema
 import pytest
+
+from ledger.reports.schemas import all_schemas
 
 
 def last_entry(book: Path) -> dict[str, Any]:
@@ -51,6 +54,7 @@ def test_rows_of_a_file_are_all_entered(run: Any, book: Path, tmp_path: Path) ->
     ran = run("enter", book, "--from", rows, "--json")
     read = json.loads(ran.out)
     assert ran.code == 0
+    jsonschema.validate(read, all_schemas()["output/enter.json"])
     assert (read["seq"], [entry["seq"] for entry in read["entries"]]) == (4, [2, 3, 4])
     assert read["digest"] == last_entry(book)["digest"]
 
@@ -127,8 +131,10 @@ def test_a_changed_entry_is_named_by_check_and_the_figures_still_come(run: Any, 
 def test_start_and_adopt_say_the_iteration_and_its_digest(run: Any, plan: Path, tmp_path: Path) -> None:
     book = tmp_path / "new.wingledger"
     ran = run("start", book, plan, "--json")
-    assert (ran.code, json.loads(ran.out)["iteration"], json.loads(ran.out)["seq"]) == (0, "r1", 1)
-    assert last_entry(book)["digest"] == json.loads(ran.out)["digest"]
+    read = json.loads(ran.out)
+    jsonschema.validate(read, all_schemas()["output/adopt.json"])
+    assert (ran.code, read["iteration"], read["seq"]) == (0, "r1", 1)
+    assert last_entry(book)["digest"] == read["digest"]
 
 
 def test_a_preview_of_a_plan_writes_nothing_and_names_what_no_longer_fits(
@@ -144,6 +150,7 @@ def test_a_preview_of_a_plan_writes_nothing_and_names_what_no_longer_fits(
     before = last_entry(book)
     ran = run("adopt", book, second, "--preview", "--json")
     read = json.loads(ran.out)
+    jsonschema.validate(read, all_schemas()["output/adopt.json"])
     assert (ran.code, read["iteration"], read["seq"], read["digest"]) == (0, "r2", None, None)
     assert [one["piece"] for one in read["no_longer_fits"]] == ["SKIN-L/1"]
     assert last_entry(book) == before

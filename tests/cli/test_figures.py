@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import shutil
 from pathlib import Path
 from typing import Any
 
@@ -83,6 +84,16 @@ def test_fuel_of_the_box_is_the_closed_form(run: Any, book: Path) -> None:
     assert tank["governing_attitude"] == "climb"
     assert [attitude["attitude"] for attitude in tank["attitudes"]] == ["ground", "climb"]
     assert len(tank["attitudes"][1]["table"]) == 101
+
+
+def test_a_plan_without_tanks_has_an_empty_list_of_them(run: Any, plan: Path, tmp_path: Path) -> None:
+    dry = Path(shutil.copytree(plan, tmp_path / "dry"))
+    (dry / "tanks.toml").unlink()
+    book = tmp_path / "dry.wingledger"
+    assert run("start", book, dry).code == 0
+    assert figures(run, "fuel", book) == {"tanks": [], "feeds": []}
+    ran = run("fuel", book)
+    assert (ran.code, ran.out) == (0, "no tanks in the plan\n")
 
 
 def test_an_attitude_asked_for_is_listed_and_never_enters_usable(run: Any, book: Path) -> None:

@@ -17,12 +17,12 @@ from ledger.exchange.geometry_cache import MemoryCache
 from ledger.exchange.geometry_files import GeometryFiles, GeometryRefused
 from ledger.exchange.plan_files import StoredFiles
 
-Draw = Callable[[Any, Any], None]
+Draw = Callable[[Any, Any], object]
 
 
 def drawn(draw: Draw, *, code: int = units.MM, version: str = "R2010") -> bytes:
     """The bytes of a drawing whose model space and document `draw` fills."""
-    document = ezdxf.new(version)  # type: ignore[attr-defined]
+    document = ezdxf.new(version)
     if version != "R12":
         document.header["$INSUNITS"] = code
     draw(document.modelspace(), document)
@@ -211,9 +211,9 @@ def test_seen_from_below_arcs_run_the_other_way() -> None:
         space.add_lwpolyline([(30, 0, 0, 0, 1), (50, 0, 0, 0, 0)], close=True, dxfattribs=below)
 
     figures = panel(drawn(draw))
-    # The second half disc lies about x = -40, on the other side of its chord.
+    # The second half disc lies about x = -40 and still below its chord.
     assert figures.measure * 1e6 == pytest.approx(100 * math.pi, rel=1e-12)
-    assert figures.centroid[0] == pytest.approx(-0.020, rel=1e-12)
+    assert figures.centroid == pytest.approx((-0.020, 0.0), abs=1e-14)
 
 
 def test_a_layer_is_picked_and_blocks_on_layer_0_take_that_of_their_insert() -> None:
@@ -303,7 +303,7 @@ def test_a_drawing_without_a_header_says_no_unit() -> None:
         tags += ["0", "VERTEX", "8", "0", "10", f"{x:.1f}", "20", f"{y:.1f}"]
     content = "\n".join([*tags, "0", "SEQEND", "0", "ENDSEC", "0", "EOF", ""]).encode()
     assert area_mm2(content) == pytest.approx(50.0)
-    with pytest.raises(GeometryRefused, match="neither the plan nor a.dxf says the unit"):
+    with pytest.raises(GeometryRefused, match="neither the plan nor"):
         panel(content, unit=None)
 
 
@@ -330,7 +330,7 @@ def test_what_is_no_drawing_is_refused(content: bytes) -> None:
 
 
 def test_a_binary_drawing_is_read() -> None:
-    document = ezdxf.new("R2010")  # type: ignore[attr-defined]
+    document = ezdxf.new("R2010")
     document.header["$INSUNITS"] = 4
     document.modelspace().add_circle((0, 0), 10)
     stream = io.BytesIO()

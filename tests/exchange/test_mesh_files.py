@@ -212,6 +212,14 @@ def test_3mf_components_are_placed_and_its_unit_counts() -> None:
     assert volume_m3("a.3mf", placed, "in") == pytest.approx(2 * inch3, rel=1e-12)
 
 
+def test_a_component_is_moved_first_by_its_own_place_and_then_by_that_of_its_item() -> None:
+    # The tetrahedron's centroid is at (1.5, 0.25, 0.25); the second one is twice as long and 10 along.
+    content = threemf('<item objectid="2" transform="2 0 0 0 1 0 0 0 1 0 0 100"/>')
+    figures = GeometryFiles(StoredFiles({"a.3mf": content}), MemoryCache()).figures("solid", "a.3mf", None)
+    x = (1 * 2 * 1.5 + 2 * 2 * (2 * 1.5 + 10)) / 3
+    assert [value / 0.0254 for value in figures.centroid] == pytest.approx([x, 0.25, 100.25])
+
+
 def test_3mf_objects_are_picked_by_name() -> None:
     both = threemf('<item objectid="1"/><item objectid="2" transform="1 0 0 0 1 0 0 0 1 50 0 0"/>')
     assert volume_m3("a.3mf", both, None, "#pair") == pytest.approx(3 * 0.0254**3, rel=1e-12)

@@ -27,7 +27,7 @@ Box = Callable[..., str]
 
 def outline(*points: tuple[float, float], circle: tuple[float, float, float] | None = None) -> bytes:
     """A drawing in mm of one closed polyline, with a round hole."""
-    document = ezdxf.new("R2010")  # type: ignore[attr-defined]
+    document = ezdxf.new("R2010")
     document.header["$INSUNITS"] = 4
     document.modelspace().add_lwpolyline(points, close=True, dxfattribs={"layer": "CUT"})
     if circle is not None:
@@ -254,6 +254,21 @@ def test_a_second_reading_opens_no_drawing_and_no_mesh(
     assert tuple(cell.digest for cell in cells.values()) == plan_of(first).cell_digests
     with pytest.raises(RuntimeError, match="opened again"):
         read_plan(folder, MemoryCache())
+
+
+def test_a_damaged_cache_is_computed_again(
+    write_plan: Callable[..., Path], tank_files: dict[str, str]
+) -> None:
+    class Damaged(MemoryCache):
+        def get(self, key: str) -> bytes | None:
+            kept = super().get(key)
+            return None if kept is None else kept[: len(kept) // 2].replace(b'"', b"?", 1)
+
+    folder = write_plan({**tank_files, "g/rib.dxf": RIB}, parts=MIRRORED)
+    cache = Damaged()
+    first = read_plan(folder, cache)
+    assert read_plan(folder, cache) == first
+    assert set(read_cells(plan_of(first), first.files, cache)) == {"L1", "L2"}
 
 
 def test_the_cells_are_proved_from_the_files_without_a_cache(

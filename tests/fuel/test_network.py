@@ -91,7 +91,10 @@ def cases(draw: st.DrawFn, *, one_way: bool) -> Case:
             cell = draw(st.sampled_from(names))
             heights = rim((cell,))
             assert heights is not None
-            ways.append(way(f"{outside.value}{next(numbers)}", (cell,), outside, *heights))
+            low, high = heights
+            # A dam before an outlet may stand higher than the outlet itself.
+            dam = draw(st.integers(0, 2)) if outside is Outside.OUTLET else 0
+            ways.append(way(f"{outside.value}{next(numbers)}", (cell,), outside, low + dam, high))
     return Case(floor=floor, top=top, ways=tuple(ways), tee=draw(st.booleans()))
 
 
@@ -459,3 +462,23 @@ def test_two_outlets_stop_at_the_higher_limit_on_a_tee_and_each_at_its_own_on_a_
     )
     levels = {cell: one.level_m for cell, one in drain(case.network, case.pulls, set()).items()}
     assert levels == ({"A": 3, "B": 3} if tee else {"A": 1, "B": 2})
+
+
+def test_air_comes_through_a_dry_cell_over_a_hole_that_would_be_covered_in_a_wet_one() -> None:
+    case = Case(
+        floor={"A": 0, "B": 0},
+        top={"A": 4, "B": 4},
+        ways=(
+            way("out", ("A",), Outside.OUTLET, 0, 0),
+            # Only air and fuel from the dry cell B pass into A, at B's floor.
+            way("flap", ("A", "B"), None, 0, 0, one_way="A"),
+            way("fill", ("A",), Outside.FILLER, 4, 4),
+            way("vent", ("B",), Outside.VENT, 4, 4),
+        ),
+        tee=False,
+    )
+    dry = dry_cells(case.network, case.pulls)
+    assert dry == {"B"}
+    kept = drain(case.network, case.pulls, dry)
+    assert (kept["A"].level_m, kept["A"].by) == (0, "outlet")
+    assert (kept["B"].level_m, kept["B"].by) == (-math.inf, "dry")

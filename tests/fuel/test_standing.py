@@ -106,3 +106,39 @@ def test_an_attitude_on_its_back_is_refused(pair: Any) -> None:
     system, tanks, _ = pair
     with pytest.raises(LedgerError):
         tank_at(system, tanks.tanks[0], Attitude(name="over", roll_deg=180.0))
+
+
+@pytest.mark.parametrize(
+    ("floors", "heights", "pitch", "roll", "steps"),
+    [
+        ((0.0, 0.5, 0.0), (0.02, 0.02, 0.02), 0.1, -3.0, 3),
+        ((0.3, 0.05, 0.5), (0.1, 0.3, 0.3), 1.0, -3.0, 7),
+        ((0.2, 0.5, 0.2), (0.02, 0.3, 0.1), 1.0, 0.0, 4),
+        ((0.2, 0.2, 0.05), (0.1, 0.1, 0.02), 9.0, 0.0, 3),
+        ((0.0, 0.31, 0.62), (0.3, 0.3, 0.3), 0.0, 0.0, 1),
+    ],
+)
+def test_a_coarse_table_over_cells_apart_in_height_meets_its_quantities_all_the_same(  # noqa: PLR0917
+    build: Any, floors: Any, heights: Any, pitch: float, roll: float, steps: int
+) -> None:
+    cells = {
+        name: build.box((0.0, float(k), floors[k]), (1.0, k + 1.0, floors[k] + heights[k]))
+        for k, name in enumerate("ABC")
+    }
+    top = max(floor + height for floor, height in zip(floors, heights, strict=True))
+    openings = (
+        build.slot("outlet", "A outlet", floors[0], floors[0]),
+        build.slot("A-B", "A B", 0.0, 2.0, at=(0.5, 1.0)),
+        build.slot("B-C", "B C", 0.0, 2.0, at=(0.5, 2.0)),
+        build.slot("filler", "C filler", top - 0.01, top - 0.01, at=(0.5, 2.5)),
+        build.slot("vent", "C vent", top, top, at=(0.5, 2.5)),
+    )
+    ground = Attitude(name="ground", fill=True, flight=False)
+    now = Attitude(name="now", pitch_deg=pitch, roll_deg=roll)
+    tanks = build.tanks(cells, openings)
+    listed = reckon(tanks, cells, {}, (ground, now), None, levels=steps).tanks[0].attitudes[1]
+    at = tank_at(System.of(tanks, cells, {}), tanks.tanks[0], now)
+    assert len(listed.drained) == steps + 1
+    for row in listed.drained:
+        if row.quantity_m3 > 1e-9:
+            assert row.cg_m == pytest.approx(stand(at, row.quantity_m3).cg_m, abs=2e-6)

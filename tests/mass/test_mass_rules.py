@@ -21,6 +21,7 @@ from ledger.checks.mix_ratio_unprovable import mix_ratio_unprovable
 from ledger.checks.peel_ply_not_said import peel_ply_not_said
 from ledger.checks.ply_missing import ply_missing
 from ledger.checks.ply_not_in_plan import ply_not_in_plan
+from ledger.checks.ply_of_other_material import ply_of_other_material
 from ledger.checks.ply_twice import ply_twice
 from ledger.checks.ply_wrong_way import ply_wrong_way
 from ledger.checks.pot_life_exceeded import pot_life_exceeded
@@ -154,6 +155,14 @@ def test_a_step_the_laminate_does_not_have_is_looked_at(shop: Any) -> None:
     assert say(shop, ply_not_in_plan) == []
     seq = shop.log(lay(7))
     assert say(shop, ply_not_in_plan) == [("look", "SKIN/1", seq)]
+
+
+def test_a_ply_from_a_lot_of_another_material_is_looked_at(shop: Any) -> None:
+    shop.receive("LF", "foam")
+    shop.log(lay(1))
+    assert say(shop, ply_of_other_material) == []
+    seq = shop.log(lay(2, lots=(Share(what="LF"),)))
+    assert say(shop, ply_of_other_material) == [("look", "SKIN/1", seq)]
 
 
 def test_a_ply_at_the_other_hands_angle_is_the_wrong_way(shop: Any) -> None:

@@ -8,8 +8,8 @@ from typing import Any
 import pytest
 
 from ledger.mass.report import CAUSES
-from ledger.model.acts import BuildUp, Coat, Cut, Fit, Lay, Trim, Weigh
-from ledger.model.plan import Form, PartClass
+from ledger.model.acts import Bond, BuildUp, Coat, Cut, Fit, Lay, Trim, Weigh
+from ledger.model.plan import Form, Material, MaterialKind, PartClass
 from ledger.model.things import Share
 
 PLY_KG = 0.6
@@ -139,3 +139,15 @@ def test_a_coat_stands_for_the_planned_step_of_the_same_material(make: Any) -> N
     part_now = shop.part("SKIN")
     assert part_now.calculated_kg == pytest.approx(0.4 + 0.9)
     only(make.causes(part_now), "bond_coat", 0.1)
+
+
+def test_adhesive_on_a_metal_strip_adds_to_the_strip(make: Any) -> None:
+    strip = Material(name="strip", kind=MaterialKind.SOLID, linear_mass_kg_m=0.2)
+    run = make.part("HINGE", Form.RUN, "strip", PartClass.JOINT)
+    shop = make.shop(make.plan((run, make.shape(2.0)), materials=(*make.materials, strip)))
+    shop.receive("LR", "resin")
+    shop.receive("LH", "hardener")
+    shop.mix("B1", 0.4, 0.1)
+    shop.log(Bond(pieces=("HINGE/1",), batches=(Share(what="B1"),), mass_kg=0.03))
+    assert shop.part("HINGE").best_kg == pytest.approx(0.43)
+    only(make.causes(shop.part("HINGE")), "bond_coat", 0.03)

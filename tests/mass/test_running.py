@@ -6,7 +6,7 @@ from dataclasses import fields, is_dataclass, replace
 from typing import Any
 
 import pytest
-from hypothesis import Phase, given, settings
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from ledger.mass.report import WeightReport
@@ -69,7 +69,7 @@ def assert_alike(one: Any, other: Any, where: str = "report") -> None:
         assert one == other, where
 
 
-@settings(max_examples=300, deadline=None, phases=[Phase.generate])
+@settings(max_examples=60, deadline=None)
 @given(words=st.lists(st.tuples(st.sampled_from(_WORDS), st.integers(0, 40)), max_size=25))
 def test_taking_entries_in_one_by_one_is_weighing_up_the_whole(make: Any, words: Any) -> None:
     shop = make.shop(make.plan(*make.standard_parts()))

@@ -7,7 +7,7 @@ from typing import Any
 
 import pytest
 
-from ledger.errors import Refused, WrongUse
+from ledger.errors import BookUnusable, Refused, WrongUse
 from ledger.model.acts import Coat, Cut, Lay, Mix, Receive, Weigh
 from ledger.operations.check_book import check_book
 from ledger.operations.correct_entry import Corrected, correct_entry, fields_of
@@ -184,7 +184,7 @@ def test_both_halves_are_written_or_none(shop: Any) -> None:
     )
     connection.close()
     before = newest_entry(shop.book)
-    with pytest.raises(sqlite3.IntegrityError):
+    with pytest.raises(BookUnusable, match="refused"):
         correct_entry(shop.book, 2, {"quantity": "9 m2"})
     assert newest_entry(shop.book) == before
     assert isinstance(_act(shop, 2), Receive)

@@ -19,6 +19,11 @@ def modules_after(code: str) -> set[str]:
     return {name.partition(".")[0] for name in done.stdout.splitlines()}
 
 
+def test_the_version_needs_not_even_the_reader_of_options() -> None:
+    code = "import sys\nsys.argv = ['wingledger', '--version']\nfrom ledger.__main__ import main\nmain()"
+    assert modules_after(code) & {*HEAVY, "click", "sqlite3"} == set()
+
+
 @pytest.mark.parametrize("option", ["--version", "--help"])
 def test_version_and_help_load_nothing_heavy(option: str) -> None:
     code = f"from ledger.cli.app import run_command\nassert run_command(['{option}'], lambda book: None) == 0"

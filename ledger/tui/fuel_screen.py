@@ -1,0 +1,207 @@
+"""Fuel: where the fuel is at any tilt, what stays behind which hole. Every figure here is computed."""
+
+from __future__ import annotations
+
+from datetime import datetime
+
+from textual.app import ComposeResult
+from textual.containers import Horizontal, Vertical
+
+from ledger.operations.look_at_tank import TankNow, TanksView, look_at_tanks
+from ledger.operations.open_build import Build
+from ledger.reports.plain import clean, shortened
+from ledger.tui.area import Area
+from ledger.tui.bench_drawing import rule
+from ledger.tui.fuel_figures import figures_text, gains_text, map_text, small_volume, tilt_words
+from ledger.tui.fuel_outline import outline_text
+from ledger.tui.fuel_plan_view import plan_text
+from ledger.tui.fuel_section import scale_of, section_text
+from ledger.tui.fuel_turning import PITCHES_DEG, ROLLS_DEG, FuelTurning
+from ledger.tui.room import Room
+from ledger.units import Dimension, show
+
+_LEFT, _WIDE_LEFT = 51, 104
+_PLAN, _WIDE_PLAN, _WIDE_OUTLINE = 7, 10, 9
+_FIGURES = 14
+_MAP = 12
+_KEYS = (
+    "arrows tilt 1 deg   PgUp PgDn 1 L   Tab arrows move: tilt, fuel, cut, cell",
+    "Home level   End next attitude   Enter openings by litres   Space map   tank",
+)
+
+
+class FuelScreen(FuelTurning):
+    """One tank at a time: from above, cut, and in figures."""
+
+    DEFAULT_CSS = f"""
+    FuelScreen .one-row {{ height: 1; }}
+    FuelScreen .bar {{ width: 1; }}
+    FuelScreen #fuel-left {{ width: {_LEFT}; }}
+    FuelScreen.-wide #fuel-left {{ width: {_WIDE_LEFT}; }}
+    FuelScreen #fuel-plan {{ height: {_PLAN}; }}
+    FuelScreen.-wide #fuel-plan {{ height: {_WIDE_PLAN}; }}
+    FuelScreen #fuel-outline {{ height: {_WIDE_OUTLINE}; }}
+    FuelScreen #fuel-cut {{ height: 1fr; }}
+    FuelScreen #fuel-figures {{ height: {_FIGURES}; }}
+    FuelScreen #fuel-keys {{ height: 2; }}
+    FuelScreen .wide-only {{ display: none; }}
+    FuelScreen.-wide .wide-only {{ display: block; }}
+    FuelScreen #fuel-listed {{ display: none; height: 1fr; }}
+    FuelScreen.-listed #fuel-listed {{ display: block; }}
+    FuelScreen.-listed .drawing {{ display: none; }}
+    FuelScreen #fuel-map {{ height: 12; }}
+    """
+
+    def compose_body(self) -> ComposeResult:
+        """Drawing on the left, figures on the right, keys below."""
+        yield Area(id="fuel-headline", classes="one-row")
+        yield Area(id="fuel-rule-top", classes="one-row")
+        with Horizontal():
+            with Vertical(id="fuel-left"):
+                yield Area(id="fuel-listed")
+                yield Area(id="fuel-above", classes="one-row drawing")
+                yield Area(id="fuel-ends", classes="one-row drawing")
+                yield Area(id="fuel-plan", classes="drawing")
+                yield Area(id="fuel-outline-title", classes="one-row drawing wide-only")
+                yield Area(id="fuel-outline", classes="drawing wide-only")
+                yield Area(id="fuel-cut-title", classes="one-row drawing")
+                yield Area(id="fuel-cut", classes="drawing")
+            yield Area(classes="bar", id="fuel-bar")
+            with Vertical():
+                yield Area(id="fuel-figures")
+                yield Area(id="fuel-rule-gains", classes="one-row wide-only")
+                yield Area(id="fuel-gains", classes="wide-only")
+                yield Area(id="fuel-rule-map", classes="one-row wide-only")
+                yield Area(id="fuel-map", classes="wide-only")
+        yield Area(id="fuel-rule-bottom", classes="one-row")
+        yield Area(id="fuel-keys")
+
+    def look(self, build: Build, now: datetime) -> TanksView:  # noqa: ARG002
+        """In a thread: proved cells and the report, kept as long as the plan stands."""
+        stock = self.ledger_app.stock
+        return look_at_tanks(build if stock is None else stock)
+
+    def show(self, view: TanksView) -> None:
+        """The same tank as before where it is still there, at the same tilt and quantity."""
+        self.tank_at = min(self.tank_at, max(0, len(view.tanks) - 1))
+        self.map = {}
+        if view.tanks:
+            self.take_tank(keep=self.asked is not None)
+        self.draw_still()
+
+    # -- drawing
+
+    def area_changed(self) -> None:
+        """Tab says what the arrows move now."""
+        self.draw_still()
+
+    def draw_still(self) -> None:
+        """What no key but Tab changes."""
+        if not self.is_mounted:
+            return
+        width, left = self.app.size.width, self._left_width()
+        drawn, many = self.drawn, 0 if self.view is None else len(self.view.tanks)
+        words = "no tanks in the plan"
+        if drawn is not None:
+            words = f"{clean(drawn.tank.name).upper()} tank, {self.tank_at + 1} of {many}"
+        headline = f"{words}   COMPUTED: a flow test decides   measured: none yet"
+        self.query_one("#fuel-headline", Area).draw(shortened(headline, width))
+        self.query_one("#fuel-rule-top", Area).draw(rule(width, self.lines, [(left, self.lines.tee_down)]))
+        self.query_one("#fuel-rule-bottom", Area).draw(rule(width, self.lines, [(left, self.lines.tee_up)]))
+        self.query_one("#fuel-bar", Area).draw("\n".join([self.lines.v] * self.app.size.height))
+        for name in ("gains", "map"):
+            self.query_one(f"#fuel-rule-{name}", Area).draw(rule(width - left - 1, self.lines))
+        self.query_one("#fuel-keys", Area).draw("\n".join(_KEYS))
+        moves = f"arrows move: {self.area.upper()}"
+        head = f"FROM ABOVE, nose to the top{moves:>{left - 28}}"
+        self.query_one("#fuel-above", Area).draw(head)
+        self.query_one("#fuel-ends", Area).draw(self._ends(left))
+
+    def _ends(self, width: int) -> str:
+        """Which end is the tip: the one farther from the middle of the aircraft."""
+        drawn = self.drawn
+        if drawn is None:
+            return ""
+        low, high = drawn.low_m[1], drawn.high_m[1]
+        first, last = ("tip", "root") if high <= abs(low) and high <= 0.0 else ("root", "tip")
+        if low < 0.0 < high:
+            first, last = "left", "right"
+        legend = "d v holes low, high  o air"
+        return f"{first}{legend:^{max(0, width - len(first) - len(last))}}{last}"
+
+    def draw_tank(self) -> None:
+        """All that changes with tilt, quantity, cut or cell."""
+        drawn, now, arrangement = self.drawn, self.now_stands, self.arrangement
+        if drawn is None or now is None or arrangement is None or not self.is_mounted:
+            return
+        if now.cells[0].cell not in drawn.tank.cells:
+            return
+        left = self._left_width()
+        room = self._room(left, _WIDE_PLAN if self.wide else _PLAN)
+        plan = plan_text(arrangement, drawn, now, chosen=self.cell, room=room)
+        self.query_one("#fuel-plan", Area).draw(plan)
+        cut = self._room(left, self._cut_height())
+        self.query_one("#fuel-cut", Area).draw(section_text(now.cut, cut))
+        self.query_one("#fuel-cut-title", Area).draw(self._cut_title(now, cut))
+        figures = self._room(self.app.size.width - left - 1, _FIGURES)
+        self.query_one("#fuel-figures", Area).draw(figures_text(drawn, now, self.shown_in, figures))
+        if self.wide:
+            self.query_one("#fuel-outline-title", Area).draw("TRUE OUTLINE, holes where they are")
+            outline = outline_text(drawn.outlines, drawn.marks, self._room(left, _WIDE_OUTLINE))
+            self.query_one("#fuel-outline", Area).draw(outline)
+        self.draw_beside()
+
+    def _cut_title(self, now: TankNow, room: Room) -> str:
+        cut = now.cut
+        through = " ".join(cell.cell for cell in cut.cells) or "no cell"
+        place = f"{'BL' if cut.axis == 1 else 'FS'} {show(cut.at_m, Dimension.LENGTH, self.shown_in)}"
+        ends = "front, rear" if cut.axis == 1 else "left, right"
+        stretch = scale_of(cut, room.width, room.height).stretch
+        tall = f", height x{stretch:.1f}" if abs(stretch - 1.0) > 0.05 else ""
+        return shortened(f"CUT {place} {through} ({ends}{tall})", room.width)
+
+    def draw_beside(self) -> None:
+        """Openings and map: beside the drawing where there is room, else in its place."""
+        drawn = self.drawn
+        if drawn is None or not self.is_mounted:
+            return
+        found = self.map.get(drawn.tank.name)
+        if self.wide:
+            side, height = self.app.size.width - self._left_width() - 1, self.app.size.height
+            gains = gains_text(self.gains, self.shown_in, self._room(side, height - 5 - 5 - _FIGURES - 14))
+            self.query_one("#fuel-gains", Area).draw(gains)
+            if found is not None:
+                drawing = map_text(PITCHES_DEG, ROLLS_DEG, found, self.shown_in, self._room(side, 12))
+                self.query_one("#fuel-map", Area).draw(drawing)
+        if self.listed == "openings":
+            listed = self._room(self._left_width(), self.app.size.height - 10)
+            self.query_one("#fuel-listed", Area).draw(gains_text(self.gains, self.shown_in, listed))
+        elif self.listed == "map":
+            listed = self._room(self._left_width(), self.app.size.height - 10)
+            words = "reckoning the map"
+            text = words if found is None else map_text(PITCHES_DEG, ROLLS_DEG, found, self.shown_in, listed)
+            self.query_one("#fuel-listed", Area).draw(text)
+
+    def _left_width(self) -> int:
+        return _WIDE_LEFT if self.wide else _LEFT
+
+    def _cut_height(self) -> int:
+        rows = self.app.size.height - 5 - 5 - 3
+        return max(1, rows - (_WIDE_PLAN + _WIDE_OUTLINE + 1 if self.wide else _PLAN))
+
+    def _room(self, width: int, height: int) -> Room:
+        return Room(width=max(1, width), height=max(1, height), signs=self.signs, lines=self.lines)
+
+    def large_lines(self) -> tuple[str, ...]:
+        """Tilt, what is in the tank, what stays."""
+        now = self.now_stands
+        if now is None:
+            return super().large_lines()
+        nose, roll = tilt_words(now.asked.attitude.pitch_deg, now.asked.attitude.roll_deg)
+        worst = now.worst
+        return (
+            f"{nose.lower()} {roll.lower()}",
+            f"in {show(now.asked.quantity_m3, Dimension.VOLUME, self.shown_in)}",
+            "" if now.trapped_m3 is None else f"trapped {small_volume(now.trapped_m3, self.shown_in)}",
+            "" if worst is None else worst.cell,
+        )
