@@ -85,11 +85,19 @@ class BookUnusable(FindingsError):
     exit_code = 3
 
 
-class MeshRefused(LedgerError):
-    """A mesh that cannot be integrated as a solid. The message says why and names places."""
+class Unplaced(LedgerError):
+    """What is wrong and what to do, raised where nobody knows the place; who knows it makes a finding."""
 
     def __init__(self, code: str, what: str, do: str) -> None:
         super().__init__(f"{what}; {do}")
         self.code = code
         self.what = what
         self.do = do
+
+    def at(self, where: Where) -> Finding:
+        """The finding at that place."""
+        return Finding(code=self.code, severity=Severity.STOP, where=where, what=self.what, do=self.do)
+
+
+class MeshRefused(Unplaced):
+    """A mesh that cannot be integrated as a solid. The message says why and names places."""

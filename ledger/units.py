@@ -79,6 +79,8 @@ _EXAMPLE: dict[Dimension, tuple[str, str]] = {
 _NUMBER = re.compile(
     r"^\s*(?P<sign>[+-]?)\s*(?P<digits>[0-9][0-9.,]*|[.,][0-9]+)(?P<exponent>[eE][+-]?[0-9]{1,3})?\s*"
 )
+_GALLONS = re.compile(r"gal(lons?)?(/h)?")
+_LEAST_SI, _MOST_SI = 1e-18, 1e15
 _SPOKEN = {
     "grams": "g",
     "gram": "g",
@@ -138,6 +140,8 @@ def read_any_quantity(
     for dimension in dimensions:
         if _known_unit(written, dimension) is not None:
             return _in_si(number, _unit_of(rest, unit, text, dimension), dimension, text), dimension
+    if Dimension.VOLUME in dimensions and _GALLONS.fullmatch(written):
+        raise UnitError(f"{written!r} can be US or imperial", "write US gal or imp gal")
     choices = " or ".join(
         f"{text.strip().split(' ')[0]} {_EXAMPLE[dimension][0]}" for dimension in dimensions
     )
@@ -201,6 +205,10 @@ def _in_si(number: float, unit: str, dimension: Dimension, text: str) -> float:
         value = math.inf
     if not math.isfinite(value):
         raise UnitError(f"{text.strip()!r} is not a finite number", "write the number you read")
+    if value != 0 and not _LEAST_SI <= abs(value) <= _MOST_SI:
+        # Products of a few such numbers would leave what a float holds, far from where they were typed.
+        size = "small" if abs(value) < 1 else "large"
+        raise UnitError(f"{text.strip()!r} is too {size} to be measured", "write the number you read")
     if dimension is Dimension.TEMPERATURE and value < 0:
         raise UnitError(f"{text.strip()!r} is below absolute zero", "write the temperature you read")
     return value
@@ -266,7 +274,7 @@ def _unit_of(rest: str, unit: str | None, text: str, dimension: Dimension) -> st
             else f"write {stripped} {first} or {stripped} {second}"
         )
         raise UnitError(f"{stripped!r} has no unit", wanted)
-    if re.fullmatch(r"gal(lons?)?(/h)?", written):
+    if _GALLONS.fullmatch(written):
         raise UnitError(f"{written!r} can be US or imperial", "write US gal or imp gal")
     known = _known_unit(written, dimension)
     if known is None:

@@ -155,7 +155,7 @@ def _replay_findings(
                 code="replay-differs",
                 severity=Severity.STOP,
                 where=Where(thing=table),
-                what=f"table {table} is not what the entries say: {lost} rows lacking, {extra} too many",
+                what=f"table {table} is not what the entries say: rows lacking {lost}, too many {extra}",
                 do="withdraw or enter nothing yet; " + _RESTORE,
             )
 

@@ -44,6 +44,13 @@ def copy_book(connection: sqlite3.Connection, target: Path) -> tuple[int, str]:
     return last
 
 
+def in_the_way(target: Path) -> Path | None:
+    """What stands where a new book is to be, or beside it as if it were a part of it."""
+    # A side file left of an earlier book would be folded into the new one when that is first opened.
+    beside = (target.with_name(target.name + ending) for ending in ("-wal", "-shm", "-journal"))
+    return next((path for path in (target, *beside) if os.path.lexists(path)), None)
+
+
 def settle(path: Path) -> None:
     """Wait until the file is on the disk."""
     descriptor = os.open(path, os.O_RDONLY)

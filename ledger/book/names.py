@@ -10,7 +10,7 @@ from functools import cached_property
 
 from ledger.book.mint import check_character_fits, kind_by_look
 from ledger.book.project import key_of
-from ledger.errors import LedgerError
+from ledger.errors import Unplaced
 from ledger.model.gather import split_piece_name
 from ledger.model.plan import Part, Plan
 from ledger.model.things import ThingKind
@@ -49,14 +49,8 @@ _NAMED_BY_PLAN = (
 _MOST_COMPARED = 5000
 
 
-class NameRefused(LedgerError):
+class NameRefused(Unplaced):
     """A name that stands for nothing, for the wrong kind of thing, or for several."""
-
-    def __init__(self, code: str, what: str, do: str) -> None:
-        super().__init__(f"{what}; {do}")
-        self.code = code
-        self.what = what
-        self.do = do
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -7,6 +7,7 @@ path with nothing at it never becomes an empty database.
 from __future__ import annotations
 
 import contextlib
+import os
 import sqlite3
 import time
 from collections.abc import Callable, Iterator
@@ -165,7 +166,8 @@ def _connect(book: Path) -> sqlite3.Connection:
 
 
 def _address(book: Path, how: str) -> str:
-    return f"file:{quote(str(book.absolute()))}?{how}"
+    # A name that is not UTF-8 is a name all the same.
+    return f"file:{quote(os.fsencode(book.absolute()))}?{how}"
 
 
 def _side_file(book: Path) -> Path:

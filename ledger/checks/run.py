@@ -11,6 +11,7 @@ from ledger.checks.caught_air import caught_air
 from ledger.checks.cell_not_aired import cell_not_aired
 from ledger.checks.cells_overlap import cells_overlap
 from ledger.checks.cut_turned import cut_turned
+from ledger.checks.cut_twice import cut_twice
 from ledger.checks.density_out_of_range import density_out_of_range
 from ledger.checks.dry_cell import dry_cell
 from ledger.checks.facts import Facts, Rule
@@ -56,6 +57,7 @@ RULES: tuple[Rule, ...] = (
     cell_not_aired,
     cells_overlap,
     cut_turned,
+    cut_twice,
     density_out_of_range,
     dry_cell,
     feed_flow_unknown,

@@ -17,10 +17,14 @@ def weighed_with_nothing_fitted(facts: Facts) -> tuple[Finding, ...]:
             where=Where(entry=weighed.seq, thing=weighed.what),
             what=(
                 "nothing had been fitted into it; taken to hold "
-                + (f"{len(weighed.contents)} planned pieces begun by then" if weighed.contents else "nothing")
+                + (_planned(len(weighed.contents)) if weighed.contents else "nothing")
             ),
             do="log what was fitted, with its true time, or name what was missing",
         )
         for weighed in facts.weights.weighed
         if weighed.presumed
     )
+
+
+def _planned(count: int) -> str:
+    return f"{count} planned piece{'' if count == 1 else 's'} begun by then"

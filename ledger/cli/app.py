@@ -35,6 +35,8 @@ COMMANDS: dict[str, str] = {
     "trace": "ledger.cli.trace",
     "check": "ledger.cli.check",
     "backup": "ledger.cli.backup",
+    "restore": "ledger.cli.backup",
+    "rescue": "ledger.cli.backup",
 }
 
 

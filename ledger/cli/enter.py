@@ -13,6 +13,7 @@ from ledger.cli.options import book_argument, by_option, json_option, read_field
 from ledger.cli.say import print_findings, print_json, print_lines
 
 if TYPE_CHECKING:
+    from ledger.errors import Finding
     from ledger.operations.log_entry import LoggedEntry
 
 
@@ -78,9 +79,9 @@ def print_entered(entered: tuple[LoggedEntry, ...], as_json: bool, *, many: bool
     from ledger.reports.entry_lines import entry_line, minted_lines
     from ledger.reports.figures import entry_figures
 
-    findings = tuple(dict.fromkeys(finding for one in entered for finding in one.findings))
+    findings = _findings(entered)
     if as_json:
-        each = [entry_figures(one.seq, one.digest, one.minted, one.findings) for one in entered]
+        each = [entry_figures(one.seq, one.digest, one.minted, _findings((one,))) for one in entered]
         if many:
             print_json(_all_entries(entered, each))
         else:
@@ -99,12 +100,16 @@ def _all_entries(entered: tuple[LoggedEntry, ...], each: list[dict[str, object]]
     from ledger.reports.figures import entry_figures
 
     minted = tuple(number for one in entered for number in one.minted)
-    findings = tuple(dict.fromkeys(finding for one in entered for finding in one.findings))
     last = entered[-1] if entered else None
     whole = entry_figures(
-        0 if last is None else last.seq, "" if last is None else last.digest, minted, findings
+        0 if last is None else last.seq, "" if last is None else last.digest, minted, _findings(entered)
     )
     return {**whole, "entries": each}
+
+
+def _findings(entered: tuple[LoggedEntry, ...]) -> tuple[Finding, ...]:
+    """What is wrong with the book itself, then what arose; each once."""
+    return tuple(dict.fromkeys(finding for one in entered for finding in (*one.warnings, *one.findings)))
 
 
 def _kinds_with_fields() -> list[tuple[str, str]]:

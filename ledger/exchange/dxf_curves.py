@@ -9,7 +9,8 @@ from __future__ import annotations
 import math
 from typing import Any
 
-from ledger.geometry.curves import Arc, Curve, EllipseArc, Line, Point, Spline
+from ledger.geometry.curves import Arc, Curve, EllipseArc, Line, Spline
+from ledger.geometry.sectors import Point
 
 DRAWN = frozenset({"LINE", "LWPOLYLINE", "POLYLINE", "ARC", "CIRCLE", "ELLIPSE", "SPLINE"})
 _FLAT_WITHIN = 1e-6

@@ -9,7 +9,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Any
 
-from ledger.errors import LedgerError
+from ledger.errors import Unplaced
 from ledger.exchange.dxf_curves import DRAWN, NotFlat, curves_of
 from ledger.geometry.curves import Curve
 
@@ -20,14 +20,8 @@ _DEEPEST = 32
 _MOST_ENTITIES = 200_000
 
 
-class DrawingRefused(LedgerError):
+class DrawingRefused(Unplaced):
     """A drawing that cannot be read."""
-
-    def __init__(self, code: str, what: str, do: str) -> None:
-        super().__init__(f"{what}; {do}")
-        self.code = code
-        self.what = what
-        self.do = do
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -85,6 +85,9 @@ class _Reading:
             self._stop("field-twice", word, f"{word} is given twice", "give it once")
             return
         self._tried.add(word)
+        if not _is_text(given):
+            self._stop("not-text", word, f"{word} holds what is not text", "type it with plain characters")
+            return
         if word in COMMON_FIELDS:
             self._take_common(word, given)
             return
@@ -177,6 +180,13 @@ class _Reading:
 
     def _stop(self, code: str, word: str, what: str, do: str) -> None:
         self.problems.stop(code, dataclasses.replace(self._where, column=word), what, do)
+
+
+def _is_text(given: object) -> bool:
+    # Bytes of another encoding reach a command as half characters that no file of ours can hold.
+    if isinstance(given, (list, tuple)):
+        return all(_is_text(one) for one in given)
+    return not (isinstance(given, str) and any("\ud800" <= character <= "\udfff" for character in given))
 
 
 def _nearest(word: str, words: object) -> str | None:

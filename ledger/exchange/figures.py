@@ -9,6 +9,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from ledger.errors import Severity
+from ledger.model.vectors import Vector
 
 if TYPE_CHECKING:
     from ledger.exchange.mesh_files import MeshObject
@@ -109,6 +110,7 @@ def cell_bytes(cell: ClosedCell) -> bytes:
     head = {
         "digest": cell.digest,
         "volume_m3": cell.volume_m3,
+        "centroid_m": cell.centroid_m,
         "vertices": len(cell.vertices_m),
         "faces": len(cell.faces),
     }
@@ -120,6 +122,12 @@ def cell_head(kept: bytes) -> tuple[str, float]:
     """Digest and volume (m3) of a cell that `cell_bytes` made, without its arrays."""
     head = json.loads(kept[: kept.index(b"\n")])
     return str(head["digest"]), float(head["volume_m3"])
+
+
+def cell_place(kept: bytes) -> Vector:
+    """The centroid (m) of a cell that `cell_bytes` made, without its arrays."""
+    x, y, z = json.loads(kept[: kept.index(b"\n")])["centroid_m"]
+    return (float(x), float(y), float(z))
 
 
 def cell_from(kept: bytes) -> ClosedCell:

@@ -6,16 +6,18 @@ belong to it, so that a second reading opens no drawing and no mesh.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable
 from typing import TYPE_CHECKING, TypeVar
 
-from ledger.errors import LedgerError, MeshRefused, Severity
+from ledger.errors import MeshRefused, Severity, Unplaced
 from ledger.exchange.figures import (
     Figures,
     Remark,
     cell_bytes,
     cell_from,
     cell_head,
+    cell_place,
     curves_digest,
     figures_bytes,
     figures_from,
@@ -23,6 +25,7 @@ from ledger.exchange.figures import (
 )
 from ledger.exchange.geometry_cache import GeometryCache, content_hash, key_for
 from ledger.exchange.plan_files import PlanFiles, split_object
+from ledger.model.vectors import Vector
 from ledger.units import Dimension, check_unit, to_si
 
 if TYPE_CHECKING:
@@ -34,6 +37,7 @@ if TYPE_CHECKING:
 
 # Ends of curves this near to one another were drawn to meet.
 JOIN_WITHIN_M = 1e-5
+_FARTHEST_M = 1e6
 _WRITING = frozenset(
     {"TEXT", "MTEXT", "DIMENSION", "POINT", "LEADER", "MULTILEADER", "ATTDEF", "ARC_DIMENSION"}
 )
@@ -42,14 +46,8 @@ _WRITING = frozenset(
 _T = TypeVar("_T")
 
 
-class GeometryRefused(LedgerError):
-    """A piece of geometry that cannot be used; `row` is the line of its own file where known."""
-
-    def __init__(self, code: str, what: str, do: str) -> None:
-        super().__init__(f"{what}; {do}")
-        self.code = code
-        self.what = what
-        self.do = do
+class GeometryRefused(Unplaced):
+    """A piece of geometry that cannot be used."""
 
 
 class GeometryFiles:
@@ -103,6 +101,14 @@ class GeometryFiles:
         if known is not None:
             return known[1]
         return self.cell(geometry, unit).volume_m3
+
+    def cell_centroid_m(self, geometry: str, unit: str | None) -> Vector:
+        """Where the middle of a cell is. Raises GeometryRefused, FileRefused."""
+        path, picked = split_object(geometry)
+        known = _as_kept(self._cache.get(self._cell_key(path, picked, unit)), cell_place)
+        if known is not None:
+            return known
+        return self.cell(geometry, unit).centroid_m
 
     def loops(self, geometry: str, unit: str | None) -> tuple[Loop, ...]:
         """The closed loops of a panel's outline in metres. Raises GeometryRefused, FileRefused."""
@@ -222,8 +228,20 @@ class GeometryFiles:
     ) -> MeshObject:
         from ledger.exchange.mesh_files import pick_object
 
-        self._mesh_unit(path, unit)
-        return pick_object(self._mesh(path), picked, lines=lines)
+        scale = _scale_of(self._mesh_unit(path, unit))
+        mesh = pick_object(self._mesh(path), picked, lines=lines)
+        farthest_m = scale * abs(mesh.vertices).max(initial=0.0)
+        if math.isnan(farthest_m):
+            raise GeometryRefused(
+                "mesh-not-finite", "a corner of the mesh is not a number", "export the mesh again"
+            )
+        if farthest_m > _FARTHEST_M:
+            raise GeometryRefused(
+                "mesh-too-far",
+                f"a corner of the mesh lies {farthest_m:.3g} m from the datum",
+                "check the unit and that corner, and export the mesh again",
+            )
+        return mesh
 
     def _mesh(self, path: str) -> MeshFile:
         from ledger.exchange.mesh_files import read_mesh_file
@@ -288,12 +306,16 @@ def _as_kept(kept: bytes | None, read: Callable[[bytes], _T]) -> _T | None:
 
 
 def _told_plainly(compute: Callable[[], _T]) -> _T:
+    import numpy as np
+
     from ledger.exchange.dxf_drawing import DrawingRefused
     from ledger.exchange.mesh_files import MeshFileRefused
     from ledger.geometry.loops import OutlineRefused
 
     try:
-        return compute()
+        # What overflows is refused by its figures; a warning would only stand between the findings.
+        with np.errstate(all="ignore"):
+            return compute()
     except MeshFileRefused as refused:
         line = "" if refused.row is None else f"line {refused.row} of the file: "
         raise GeometryRefused(refused.code, f"{line}{refused.what}", refused.do) from None

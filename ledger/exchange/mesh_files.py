@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from ledger.errors import LedgerError
+from ledger.errors import Unplaced
 
 Floats = NDArray[np.float64]
 Indices = NDArray[np.intp]
@@ -16,14 +16,11 @@ MESH_ENDINGS = (".obj", ".stl", ".ply", ".3mf")
 _NAMED = 8
 
 
-class MeshFileRefused(LedgerError):
+class MeshFileRefused(Unplaced):
     """A mesh file that cannot be read. `row` is the line of a text file where that is known."""
 
     def __init__(self, code: str, what: str, do: str, row: int | None = None) -> None:
-        super().__init__(f"{what}; {do}")
-        self.code = code
-        self.what = what
-        self.do = do
+        super().__init__(code, what, do)
         self.row = row
 
 

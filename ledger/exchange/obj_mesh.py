@@ -67,7 +67,7 @@ class _WrongIndex(ValueError):
 
 def _indices(words: list[str], count: int, *, least: int) -> list[int]:
     if len(words) < least:
-        raise _WrongIndex(f"a face or line has only {len(words)} corners")
+        raise _WrongIndex(f"a face or line has only {len(words)} corner{'' if len(words) == 1 else 's'}")
     found = []
     for word in words:
         index = int(word.split("/", 1)[0])

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from ledger.exchange.csv_table import TableRow
 from ledger.model.plan import Face, Form, PartClass, Side
 from ledger.model.vectors import Vector
-from ledger.units import Dimension, read_quantity
+from ledger.units import Dimension, UnitError, read_quantity
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -57,7 +57,11 @@ def origin_m(part: PartRow, geometry_unit: str | None) -> Vector | None:
         return None
     if unit is None:
         return part.origin
-    x, y, z = (read_quantity(repr(value), Dimension.LENGTH, unit=unit) for value in part.origin)
+    try:
+        x, y, z = (read_quantity(repr(value), Dimension.LENGTH, unit=unit) for value in part.origin)
+    except UnitError as error:
+        part.row.stop("cell-unreadable", "origin", error.what, error.do)
+        return None
     return (x, y, z)
 
 

@@ -124,9 +124,10 @@ class _Shaping:
     def _placed(
         self, row: PartRow, figures: Figures, origin: Vector | None, thickness: float
     ) -> tuple[Part, Shape]:
-        from ledger.geometry.moments import Moments, matrix, placed, vector
+        from ledger.geometry.moments import Moments, matrix, placed
         from ledger.geometry.outlines import PlaneMoments
         from ledger.geometry.placement import panel_moments, placement_of
+        from ledger.geometry.vectors import vector
 
         if origin is None or row.across is None or row.up_axis is None:
             moments = Moments(

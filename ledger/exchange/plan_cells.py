@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+import contextlib
+from collections.abc import Collection, Mapping
 from typing import TYPE_CHECKING
 
-from ledger.errors import Finding, Refused, Severity, Where
+from ledger.errors import Refused, Where
 from ledger.exchange.geometry_cache import GeometryCache, MemoryCache
 from ledger.exchange.geometry_files import GeometryFiles, GeometryRefused
 from ledger.exchange.plan_files import FileRefused, StoredFiles
 from ledger.model.plan import Plan
+from ledger.model.vectors import Vector
 
 if TYPE_CHECKING:
     from ledger.geometry.closed_cell import ClosedCell
@@ -38,6 +40,20 @@ def read_displaced(
     return _read(wanted, files, cache)
 
 
+def read_cell_places(
+    plan: Plan, files: Mapping[str, bytes], cache: GeometryCache, wanted: Collection[str]
+) -> Mapping[str, Vector]:
+    """The centroids of some cells in metres, build axes; from the cache without loading any array."""
+    geometry = GeometryFiles(StoredFiles(files), cache)
+    found = {}
+    for cell in plan.tanks.cells:
+        if cell.name in wanted:
+            # A mesh that can no longer be read is for `check` to name; its coats then have no place.
+            with contextlib.suppress(GeometryRefused, FileRefused):
+                found[cell.name] = geometry.cell_centroid_m(cell.mesh, cell.mesh_unit)
+    return found
+
+
 def _read(
     wanted: Mapping[str, tuple[str, str | None]], files: Mapping[str, bytes], cache: GeometryCache | None
 ) -> Mapping[str, ClosedCell]:
@@ -48,15 +64,7 @@ def _read(
         try:
             found[name] = geometry.cell(mesh, unit)
         except (GeometryRefused, FileRefused) as refused:
-            problems.append(
-                Finding(
-                    code=refused.code,
-                    severity=Severity.STOP,
-                    where=Where(file="tanks.toml", thing=name),
-                    what=refused.what,
-                    do=refused.do,
-                )
-            )
+            problems.append(refused.at(Where(file="tanks.toml", thing=name)))
     if problems:
         raise Refused(*problems)
     return found

@@ -7,17 +7,11 @@ from collections.abc import Mapping
 from pathlib import Path, PurePosixPath
 from typing import Protocol
 
-from ledger.errors import LedgerError
+from ledger.errors import Unplaced
 
 
-class FileRefused(LedgerError):
+class FileRefused(Unplaced):
     """A file of a plan that cannot be had: `what` is wrong with its path, and what to `do`."""
-
-    def __init__(self, code: str, what: str, do: str) -> None:
-        super().__init__(f"{what}; {do}")
-        self.code = code
-        self.what = what
-        self.do = do
 
 
 class PlanFiles(Protocol):

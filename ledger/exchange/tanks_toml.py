@@ -217,11 +217,8 @@ def _openings(
 def _feeds(whole: TomlTable, openings: tuple[Opening, ...]) -> tuple[Feed, ...]:
     found: dict[str, str] = {}
     outlets = {opening.name for opening in openings if opening.outside is Outside.OUTLET}
-    listed = {
-        table.values.get("name")
-        for table in whole.tables("opening")
-        if "outlet" in (table.values.get("between") or ())
-    }
+    # An outlet that has another problem is named all the same, so a feed that names it is not at fault.
+    listed = [table.values.get("name") for table in whole.tables("opening") if _is_outlet(table)]
     feeds = []
     for table in whole.tables("feed"):
         table.refuse_others(("name", "outlets", "join"))
@@ -241,3 +238,8 @@ def _feeds(whole: TomlTable, openings: tuple[Opening, ...]) -> tuple[Feed, ...]:
         if name is not None and named is not None:
             feeds.append(Feed(name=name, outlets=named, join=Join(join) if join is not None else Join.TEE))
     return tuple(feeds)
+
+
+def _is_outlet(table: TomlTable) -> bool:
+    between = table.values.get("between")
+    return isinstance(between, list) and Outside.OUTLET.value in between

@@ -42,11 +42,7 @@ def reckon(
     Raises
         ValueError: levels below 1, or a listed name that is no attitude of the plan.
     """
-    if levels < 1:
-        raise ValueError("a table needs at least one step")
-    unknown = set(listed or ()) - {attitude.name for attitude in attitudes}
-    if unknown:
-        raise ValueError(f"no attitude is named {', '.join(sorted(unknown))}")
+    _refuse_wrong_use(attitudes, levels, listed)
     if not tanks.tanks:
         return FuelReport(tanks=(), feeds=())
     system = System.of(tanks, cells, displaced)
@@ -63,6 +59,14 @@ def reckon(
         any_stood=next(iter((*stoods, *shown)), None) or Stood(system, Attitude(name="level")),
     )
     return _report(system, wanted)
+
+
+def _refuse_wrong_use(attitudes: Sequence[Attitude], levels: int, listed: tuple[str, ...] | None) -> None:
+    if levels < 1:
+        raise ValueError("a table needs at least one step")
+    unknown = set(listed or ()) - {attitude.name for attitude in attitudes}
+    if unknown:
+        raise ValueError(f"no attitude is named {', '.join(sorted(unknown))}")
 
 
 def _report(system: System, wanted: Wanted) -> FuelReport:

@@ -6,6 +6,7 @@ import math
 from dataclasses import dataclass, replace
 from itertools import pairwise
 
+from ledger.geometry.vectors import cross, dot, less, mean_of, plus, times, unit_of
 from ledger.model.tanks import Circle, Opening, Outside, Pipe, Polygon, Rim
 from ledger.model.vectors import Vector
 
@@ -63,7 +64,7 @@ def normal_of(rim: Circle | Polygon) -> Vector:
     around = (*rim.points_m[1:], rim.points_m[0])
     area = (0.0, 0.0, 0.0)
     for here, there in zip(rim.points_m, around, strict=True):
-        area = _sum(area, cross(_less(here, rim.points_m[0]), _less(there, rim.points_m[0])))
+        area = plus(area, cross(less(here, rim.points_m[0]), less(there, rim.points_m[0])))
     return unit_of(area)
 
 
@@ -78,7 +79,7 @@ def rim_points(rim: Rim, count: int = 8) -> tuple[Vector, ...]:
     for step in range(count):
         angle = 2.0 * math.pi * step / count
         c, s = 0.5 * rim.diameter_m * math.cos(angle), 0.5 * rim.diameter_m * math.sin(angle)
-        points.append(_sum(rim.centre_m, _sum(_times(first, c), _times(second, s))))
+        points.append(plus(rim.centre_m, plus(times(first, c), times(second, s))))
     return tuple(points)
 
 
@@ -103,7 +104,7 @@ def _edges_of_pipe(pipe: Pipe, up: Vector) -> tuple[list[float], list[float]]:
     """Lower and upper surface of the bore at each point of the axis; between points both run straight."""
     points = [pipe.points_m[0]]
     points += [there for here, there in pairwise(pipe.points_m) if there != here]
-    tangents = [unit_of(_less(there, here)) for here, there in pairwise(points)] or [up]
+    tangents = [unit_of(less(there, here)) for here, there in pairwise(points)] or [up]
     radius = 0.5 * pipe.bore_m
     reaches = [
         radius * _reach_of_bend(before, after, up)
@@ -121,11 +122,11 @@ def _reach_of_bend(before: Vector, after: Vector, up: Vector) -> float:
     The section lies in the mitre plane. A real bend is round, so it never reaches farther than the
     bore itself would lying level.
     """
-    both = _sum(before, after)
+    both = plus(before, after)
     if dot(both, both) < 1e-12:
         return 1.0
     mitre = unit_of(both)
-    lifted = _less(up, _times(mitre, dot(before, up) / dot(before, mitre)))
+    lifted = less(up, times(mitre, dot(before, up) / dot(before, mitre)))
     return min(1.0, math.sqrt(dot(lifted, lifted)))
 
 
@@ -135,44 +136,8 @@ def _scaled(rim: Rim, factor: float) -> Rim:
     if isinstance(rim, Pipe):
         return replace(rim, bore_m=rim.bore_m * factor)
     middle = mean_of(rim.points_m)
-    points = tuple(_sum(middle, _times(_less(point, middle), factor)) for point in rim.points_m)
+    points = tuple(plus(middle, times(less(point, middle), factor)) for point in rim.points_m)
     return replace(rim, points_m=points)
-
-
-def dot(a: Vector, b: Vector) -> float:
-    """Inner product."""
-    return a[0] * b[0] + a[1] * b[1] + a[2] * b[2]
-
-
-def cross(a: Vector, b: Vector) -> Vector:
-    """Outer product."""
-    return (a[1] * b[2] - a[2] * b[1], a[2] * b[0] - a[0] * b[2], a[0] * b[1] - a[1] * b[0])
-
-
-def unit_of(a: Vector) -> Vector:
-    """The vector made one long. Raises ValueError for a vector of no length."""
-    length = math.sqrt(dot(a, a))
-    if length == 0.0:
-        raise ValueError("a direction must have a length")
-    return (a[0] / length, a[1] / length, a[2] / length)
-
-
-def mean_of(points: tuple[Vector, ...]) -> Vector:
-    """The mean of some points."""
-    x, y, z = (sum(axis) / len(points) for axis in zip(*points, strict=True))
-    return (x, y, z)
-
-
-def _sum(a: Vector, b: Vector) -> Vector:
-    return (a[0] + b[0], a[1] + b[1], a[2] + b[2])
-
-
-def _less(a: Vector, b: Vector) -> Vector:
-    return (a[0] - b[0], a[1] - b[1], a[2] - b[2])
-
-
-def _times(a: Vector, factor: float) -> Vector:
-    return (a[0] * factor, a[1] * factor, a[2] * factor)
 
 
 def _least_axis(normal: Vector) -> Vector:

@@ -60,11 +60,8 @@ class Draining:
         self._holding = [bay for bay in moving if self._levels[bay.cell.name] > bay.lowest_m]
         still = [bay for bay in wet if self._levels[bay.cell.name] == math.inf]
         # Sealant is not taken off what is trapped.
-        self._more = sum(
-            bay.volume(level) - bay.net(level)
-            for bay in self._holding
-            for level in (self._levels[bay.cell.name],)
-        )
+        own = [(bay, self._levels[bay.cell.name]) for bay in self._holding]
+        self._more = sum(bay.volume(level) - bay.net(level) for bay, level in own)
         self._still = [bay.lying(math.inf) for bay in still]
         self._more += sum(lying.volume_m3 for lying in self._still)
         pool, levels, sums = whole

@@ -9,10 +9,10 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from ledger.geometry.crossings import refuse_overlap
-from ledger.geometry.moments import Vector, vector
 from ledger.geometry.proof import checked_arrays, closed_form, refuse_flat
 from ledger.geometry.solids import volume_integrals
 from ledger.geometry.standing import Floats, Indices
+from ledger.geometry.vectors import Vector, vector
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)

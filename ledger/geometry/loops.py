@@ -6,20 +6,15 @@ import math
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 
-from ledger.errors import LedgerError
-from ledger.geometry.curves import Curve, Line, Point
+from ledger.errors import Unplaced
+from ledger.geometry.curves import Curve, Line
+from ledger.geometry.sectors import Point
 
 NAMED = 3
 
 
-class OutlineRefused(LedgerError):
+class OutlineRefused(Unplaced):
     """An outline that encloses no area that can be told. Codes: outline-open, -crosses, -doubled, -empty."""
-
-    def __init__(self, code: str, what: str, do: str) -> None:
-        super().__init__(f"{what}; {do}")
-        self.code = code
-        self.what = what
-        self.do = do
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -14,8 +14,8 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from ledger.geometry.closed_cell import ClosedCell
-from ledger.geometry.moments import Vector, vector
 from ledger.geometry.standing import Floats, Indices, stand, unit_up
+from ledger.geometry.vectors import Vector, vector
 
 # Depth of a pocket too shallow to hold anything: a micrometre.
 IGNORE_DEPTH_M = 1e-6

@@ -11,7 +11,8 @@ import math
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 
-Vector = tuple[float, float, float]
+from ledger.geometry.vectors import Vector, vector
+
 Matrix = tuple[Vector, Vector, Vector]
 
 
@@ -38,12 +39,6 @@ class Moments:
             raise ValueError("moments must be finite")
         if self.measure < 0.0:
             raise ValueError("a measure cannot be negative")
-
-
-def vector(values: Iterable[float]) -> Vector:
-    """Three plain floats of any sequence of three numbers."""
-    x, y, z = values
-    return (float(x), float(y), float(z))
 
 
 def matrix(rows: Iterable[Iterable[float]]) -> Matrix:

@@ -6,8 +6,9 @@ import math
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from ledger.geometry.curves import Arc, Curve, EllipseArc, Line, Point, Sector, Spline, add_sectors
+from ledger.geometry.curves import Arc, Curve, EllipseArc, Line, Spline
 from ledger.geometry.loops import Loop, OutlineRefused, chain, named_point, polygon
+from ledger.geometry.sectors import Point, Sector, add_sectors
 
 if TYPE_CHECKING:
     from shapely import Polygon

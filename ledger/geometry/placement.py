@@ -9,9 +9,10 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import ArrayLike
 
-from ledger.geometry.moments import Moments, Vector, moved, turned, vector
+from ledger.geometry.moments import Moments, moved, turned
 from ledger.geometry.outlines import PlaneMoments
 from ledger.geometry.standing import Floats
+from ledger.geometry.vectors import Vector, cross, dot, unit_of, vector
 
 SQUARE_WITHIN_DEG = 0.1
 FACES = ("mid", "+normal", "-normal")
@@ -32,10 +33,9 @@ def angle_error_deg(across: Sequence[float], up_axis: Sequence[float]) -> float:
 
     Raises ValueError for an axis that has no length or is not finite.
     """
-    a, b = _unit(across), _unit(up_axis)
-    dot = sum(p * q for p, q in zip(a, b, strict=True))
+    a, b = unit_of(vector(across)), unit_of(vector(up_axis))
     # The arc sine of the dot product keeps its precision near square, where the arc cosine has none.
-    return abs(math.degrees(math.asin(max(-1.0, min(1.0, dot)))))
+    return abs(math.degrees(math.asin(max(-1.0, min(1.0, dot(a, b))))))
 
 
 def axes_square(across: Sequence[float], up_axis: Sequence[float]) -> bool:
@@ -51,9 +51,9 @@ def axes_of(across: Sequence[float], up_axis: Sequence[float]) -> tuple[Vector, 
     error = angle_error_deg(across, up_axis)
     if error > SQUARE_WITHIN_DEG:
         raise ValueError(f"across and up_axis are {error:.3f} degrees from square")
-    x, rough = _unit(across), _unit(up_axis)
-    z = _unit(_cross(x, rough))
-    return x, _cross(z, x), z
+    x, rough = unit_of(vector(across)), unit_of(vector(up_axis))
+    z = unit_of(cross(x, rough))
+    return x, cross(z, x), z
 
 
 def placement_of(origin_m: Sequence[float], across: Sequence[float], up_axis: Sequence[float]) -> Placement:
@@ -103,15 +103,3 @@ def panel_moments(
         second=((xx, xy, 0.0), (xy, yy, 0.0), (0.0, 0.0, through)),
     )
     return moved(turned(flat, (placement.across, placement.up_axis, placement.normal)), placement.origin_m)
-
-
-def _unit(axis: Sequence[float]) -> Vector:
-    x, y, z = vector(axis)
-    length = math.hypot(x, y, z)
-    if not (math.isfinite(length) and length > 0.0):
-        raise ValueError("an axis must have a direction")
-    return (x / length, y / length, z / length)
-
-
-def _cross(a: Vector, b: Vector) -> Vector:
-    return (a[1] * b[2] - a[2] * b[1], a[2] * b[0] - a[0] * b[2], a[0] * b[1] - a[1] * b[0])

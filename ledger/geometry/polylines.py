@@ -5,7 +5,8 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import ArrayLike
 
-from ledger.geometry.moments import Moments, matrix, vector
+from ledger.geometry.moments import Moments, matrix
+from ledger.geometry.vectors import vector
 
 
 def moments_of_polyline(points_m: ArrayLike) -> Moments:

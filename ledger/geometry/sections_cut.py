@@ -7,11 +7,11 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import ArrayLike
 
-from ledger.geometry.moments import Vector, vector
 from ledger.geometry.standing import Floats, unit_up
+from ledger.geometry.vectors import Vector, vector
 
 if TYPE_CHECKING:
-    from ledger.geometry.curves import Point
+    from ledger.geometry.sectors import Point
 
 Segment = tuple[Vector, Vector]
 

@@ -6,8 +6,9 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from ledger.geometry.moments import Moments, matrix, vector
+from ledger.geometry.moments import Moments, matrix
 from ledger.geometry.standing import Floats, Indices
+from ledger.geometry.vectors import vector
 
 if TYPE_CHECKING:
     from ledger.geometry.closed_cell import ClosedCell

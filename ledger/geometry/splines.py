@@ -7,7 +7,8 @@ from itertools import pairwise
 
 import numpy as np
 
-from ledger.geometry.curves import Point, Sector, Spline
+from ledger.geometry.curves import Spline
+from ledger.geometry.sectors import Point, Sector
 from ledger.geometry.standing import Floats
 
 # Halvings of a span of knots when it is flattened for a drawing.

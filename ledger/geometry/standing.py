@@ -91,16 +91,7 @@ def stand(vertices_m: ArrayLike, faces: ArrayLike, up: ArrayLike) -> Standing:
         Away from the pull felt; any length.
     Raises ValueError for wrong shapes, an index out of range, or an up that is zero or not finite.
     """
-    vertices = np.asarray(vertices_m, dtype=np.float64)
-    triangles = np.asarray(faces)
-    if vertices.ndim != 2 or vertices.shape[1] != 3 or len(vertices) == 0:
-        raise ValueError("vertices_m must be n rows of three coordinates")
-    if triangles.ndim != 2 or triangles.shape[1] != 3 or len(triangles) == 0:
-        raise ValueError("faces must be rows of three corner numbers")
-    if triangles.dtype.kind not in "iu":
-        raise ValueError("faces must be whole numbers")
-    if triangles.min() < 0 or triangles.max() >= len(vertices):
-        raise ValueError("a face names a corner that does not exist")
+    vertices, triangles = _checked(vertices_m, faces)
     axes = frame_of(up)
     # Rows of one coordinate each: a reduction along the columns of (n, 3) costs twenty times as much.
     local = np.array(vertices.T, order="C")
@@ -119,6 +110,21 @@ def stand(vertices_m: ArrayLike, faces: ArrayLike, up: ArrayLike) -> Standing:
         x=local[0],
         y=local[1],
         z=local[2],
-        faces=triangles.astype(np.intp, copy=False),
+        faces=triangles,
         tolerance_m=HEIGHT_SHARE * float(np.linalg.norm(high - low) + np.abs(middle).max()),
     )
+
+
+def _checked(vertices_m: ArrayLike, faces: ArrayLike) -> tuple[Floats, Indices]:
+    """Both arrays in the shapes and types a mesh has, or ValueError."""
+    vertices = np.asarray(vertices_m, dtype=np.float64)
+    triangles = np.asarray(faces)
+    if vertices.ndim != 2 or vertices.shape[1] != 3 or len(vertices) == 0:
+        raise ValueError("vertices_m must be n rows of three coordinates")
+    if triangles.ndim != 2 or triangles.shape[1] != 3 or len(triangles) == 0:
+        raise ValueError("faces must be rows of three corner numbers")
+    if triangles.dtype.kind not in "iu":
+        raise ValueError("faces must be whole numbers")
+    if triangles.min() < 0 or triangles.max() >= len(vertices):
+        raise ValueError("a face names a corner that does not exist")
+    return vertices, triangles.astype(np.intp, copy=False)

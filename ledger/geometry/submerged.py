@@ -17,8 +17,9 @@ from numpy.typing import ArrayLike
 
 from ledger.geometry.closed_cell import ClosedCell
 from ledger.geometry.levels import AX, AXZ, AY, AYZ, AZZ, LevelTable, table_of, triangle_integrals
-from ledger.geometry.moments import Moments, Vector, vector
+from ledger.geometry.moments import Moments
 from ledger.geometry.standing import Floats, Indices, Standing, stand
+from ledger.geometry.vectors import Vector, vector
 from ledger.geometry.wet_part import free_surface_moments, wet_moments
 
 # Steps of the table that brackets a level before Newton's method closes in on it.

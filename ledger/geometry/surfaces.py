@@ -6,9 +6,10 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from ledger.errors import MeshRefused
-from ledger.geometry.moments import Moments, matrix, vector
+from ledger.geometry.moments import Moments, matrix
 from ledger.geometry.proof import checked_arrays
 from ledger.geometry.standing import Floats, Indices
+from ledger.geometry.vectors import vector
 
 
 def moments_of_surface(vertices_m: ArrayLike, faces: ArrayLike, offset_m: float = 0.0) -> Moments:

@@ -8,8 +8,9 @@ from __future__ import annotations
 
 import numpy as np
 
-from ledger.geometry.moments import Moments, matrix, vector
+from ledger.geometry.moments import Moments, matrix
 from ledger.geometry.standing import Floats, Standing
+from ledger.geometry.vectors import vector
 
 
 def wet_triangles(standing: Standing, level: float) -> Floats:

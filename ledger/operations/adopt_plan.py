@@ -83,7 +83,7 @@ def adopt_plan(
         iteration=wanted.plan.name,
         seq=entry.seq,
         digest=entry.digest,
-        findings=wanted.findings,
+        findings=(*build.warnings, *wanted.findings),
         no_longer_fits=unfit,
     )
 

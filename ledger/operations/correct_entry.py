@@ -62,8 +62,9 @@ def correct_entry(
                 raise OnlyLooked
     except OnlyLooked:
         arising = would_arise(build, (withdrawn.logged, entered.logged), moment)
-        return Corrected(withdrawn=withdrawn.told(), entered=entered.told(arising))
-    return Corrected(withdrawn=withdrawn.told(), entered=entered.told(arisen_since(book, before, moment)))
+        return Corrected(withdrawn=withdrawn.told(), entered=entered.told(arising, build.warnings))
+    arisen = arisen_since(book, before, moment)
+    return Corrected(withdrawn=withdrawn.told(), entered=entered.told(arisen, build.warnings))
 
 
 def fields_of(entry: Logged) -> dict[str, str]:

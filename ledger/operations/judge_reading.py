@@ -17,7 +17,7 @@ _MOST_FITTING = 4
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Fitting:
-    """Another open piece whose expected mass the reading fits. `opposite` is the same part of the other side."""
+    """Another open piece whose expected mass the reading fits; `opposite` is its other hand."""
 
     piece: str
     expected_kg: float

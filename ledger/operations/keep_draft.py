@@ -80,17 +80,30 @@ def _write(book: Path, drafts: tuple[Draft, ...]) -> None:
             # Without this a power cut can leave the new name on an empty file.
             os.fsync(file.fileno())
         os.replace(temporary, place)
+        _settle_folder(place.parent)
     except OSError as error:
         raise DraftNotKept(f"the draft could not be kept in {place.parent}: {error.strerror}") from error
+
+
+def _settle_folder(folder: Path) -> None:
+    # The new name is in the folder, and on most disks a folder is written later than its files.
+    if sys.platform == "win32":
+        return
+    number = os.open(folder, os.O_RDONLY)
+    try:
+        os.fsync(number)
+    finally:
+        os.close(number)
 
 
 def _place(book: Path) -> Path:
     # Not beside the book: on a shared disk two benches would write each other's drafts.
     name = hashlib.sha256(str(book.absolute()).encode()).hexdigest()[:16]
-    return _state_folder() / "drafts" / f"{name}.json"
+    return state_folder() / "drafts" / f"{name}.json"
 
 
-def _state_folder() -> Path:
+def state_folder() -> Path:
+    """Where this computer keeps what belongs to no book."""
     chosen = os.environ.get("WINGLEDGER_STATE")
     if chosen:
         return Path(chosen)

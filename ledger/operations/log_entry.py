@@ -36,7 +36,10 @@ _WRONG_USE = {"unknown-kind", "unknown-field"}
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class LoggedEntry:
-    """An entry as written (as it would be, in a preview), with the numbers it gave out and what arose."""
+    """An entry as written (as it would be, in a preview), with the numbers it gave out and what arose.
+
+    `warnings` say what was wrong with the book itself before it.
+    """
 
     seq: int
     digest: str
@@ -46,6 +49,7 @@ class LoggedEntry:
     minted: tuple[Minted, ...]
     findings: tuple[Finding, ...]
     says: str
+    warnings: tuple[Finding, ...] = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -55,7 +59,7 @@ class Written:
     entry: Entry
     logged: Logged
 
-    def told(self, findings: tuple[Finding, ...] = ()) -> LoggedEntry:
+    def told(self, findings: tuple[Finding, ...] = (), warnings: tuple[Finding, ...] = ()) -> LoggedEntry:
         """The row as an operation returns it."""
         return LoggedEntry(
             seq=self.entry.seq,
@@ -66,6 +70,7 @@ class Written:
             minted=self.logged.act.minted,
             findings=findings,
             says=say(self.entry.kind, self.logged.act),
+            warnings=warnings,
         )
 
 
@@ -100,8 +105,8 @@ def log_entry(
             if preview:
                 raise OnlyLooked
     except OnlyLooked:
-        return written.told(would_arise(build, (written.logged,), moment))
-    return written.told(arisen_since(book, before, moment))
+        return written.told(would_arise(build, (written.logged,), moment), build.warnings)
+    return written.told(arisen_since(book, before, moment), build.warnings)
 
 
 class Writing:

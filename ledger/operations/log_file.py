@@ -31,7 +31,7 @@ def log_file(
 ) -> tuple[LoggedEntry, ...]:
     """Log every row of a CSV or JSON Lines file in order; later rows may use the numbers of earlier ones.
 
-    The findings that arose from the whole file are on its last entry.
+    The findings that arose from the whole file, and the warnings, are on its last entry.
 
     Raises
         Refused: every problem of every row, by row and column; nothing was written.
@@ -56,7 +56,7 @@ def log_file(
         return ()
     arisen = arisen_since(book, before, moment)
     told = [one.told() for one in written]
-    return (*told[:-1], dataclasses.replace(told[-1], findings=arisen))
+    return (*told[:-1], dataclasses.replace(told[-1], findings=arisen, warnings=build.warnings))
 
 
 def _log_rows(

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from datetime import datetime
 from pathlib import Path
@@ -85,9 +85,10 @@ def look_at_bench(book: Path | Stock, now: datetime) -> BenchView:
     snapshot, weights = stock.build.snapshot, stock.weights
     todays = [entry for entry in snapshot.logged if _same_day(entry.at, now)]
     seqs = {entry.seq for entry in todays}
+    cups = cups_on_bench(snapshot, weights, now)
     return BenchView(
         plate=stock.plate,
-        cups=cups_on_bench(snapshot, weights, now),
+        cups=cups,
         jobs=list_next_jobs(snapshot, weights)[:_MOST_JOBS],
         today=tuple(_line(entry) for entry in reversed(todays)),
         today_kg=sum(
@@ -99,16 +100,21 @@ def look_at_bench(book: Path | Stock, now: datetime) -> BenchView:
         else 0.0,
         last=_line(snapshot.logged[-1]) if snapshot.logged else None,
         findings=stock.findings,
-        open_things=open_things(snapshot),
+        open_things=open_things(snapshot, tuple(cup.number for cup in cups)),
         expected={piece.piece: piece for part in weights.parts for piece in part.pieces},
     )
 
 
-def open_things(snapshot: Snapshot) -> Mapping[ThingKind, tuple[OpenThing, ...]]:
-    """What a field of each kind can be completed with, newest first; scrapped things are left out."""
+def open_things(
+    snapshot: Snapshot, on_bench: tuple[str, ...] = ()
+) -> Mapping[ThingKind, tuple[OpenThing, ...]]:
+    """What a field of each kind can be completed with, newest first; scrapped things are left out.
+
+    Cups that stand on the bench come before all others, in the order they stand there.
+    """
     plan, gone = snapshot.plan, snapshot.gone
 
-    def standing(numbers: Mapping[str, object], says: Mapping[str, str]) -> tuple[OpenThing, ...]:
+    def standing(numbers: Iterable[str], says: Mapping[str, str]) -> tuple[OpenThing, ...]:
         return tuple(
             OpenThing(text=number, says=says[number])
             for number in reversed(tuple(numbers))
@@ -130,7 +136,8 @@ def open_things(snapshot: Snapshot) -> Mapping[ThingKind, tuple[OpenThing, ...]]
             },
         ),
         ThingKind.BATCH: standing(
-            snapshot.batches,
+            # Turned round below, where the newest comes first.
+            [*(number for number in snapshot.batches if number not in on_bench), *reversed(on_bench)],
             {number: f"mixed {batch.at:%d %b %H:%M}" for number, batch in snapshot.batches.items()},
         ),
         ThingKind.INSTRUMENT: standing(

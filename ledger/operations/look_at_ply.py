@@ -157,14 +157,14 @@ def _lot_for(snapshot: Snapshot, step: Step) -> tuple[str | None, str]:
         for share in entry.act.lots:
             lot = snapshot.lots.get(share.what)
             if lot is not None and lot.receive.material == step.material and lot.number not in snapshot.gone:
-                return lot.number, f"{step.material}, as ply {entry.act.step} of {entry.act.piece}"
+                return lot.number, f"as ply {entry.act.step}, {step.material}"
     standing = [
         lot.number
         for lot in snapshot.lots.values()
         if lot.receive.material == step.material and lot.number not in snapshot.gone
     ]
     if len(standing) == 1:
-        return standing[0], f"{step.material}, the only lot"
+        return standing[0], f"the only lot, {step.material}"
     return None, f"{step.material}: {' '.join(standing) or 'no lot received'}"
 
 

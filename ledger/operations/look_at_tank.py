@@ -8,7 +8,7 @@ from __future__ import annotations
 import math
 from collections import OrderedDict
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from functools import cached_property, lru_cache
 from typing import TYPE_CHECKING
 
@@ -16,17 +16,17 @@ from ledger.fuel.report import FuelReport, TankFuel
 from ledger.model.attitude import Attitude
 from ledger.model.tanks import Opening, Outside, Pipe, Tank
 from ledger.model.vectors import Vector
+from ledger.operations.cut_tank import Cut, X, Y, Z, cut_tank
 from ledger.operations.open_build import Build
 from ledger.operations.reckon_fuel import reckon_build
 from ledger.operations.take_stock import Stock
 from ledger.units import Display
 
 if TYPE_CHECKING:
-    from ledger.fuel.standing import TankAt
+    from ledger.fuel.standing import StandingCell, TankAt
     from ledger.fuel.stood import System
 
 _MOST_KEPT = 64
-X, Y, Z = 0, 1, 2
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -54,26 +54,6 @@ class HoleMark:
     cells: tuple[str, ...]
     at_m: Vector
     sign: str
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class CutCell:
-    """One cell in the section. Segments are (u, w, u, w) in metres: u along the cut, w the water line."""
-
-    cell: str
-    segments: tuple[tuple[float, float, float, float], ...]
-    level_m: float
-    kept_level_m: float
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Cut:
-    """A section through the tank at BL (`axis` 1) or FS (`axis` 0). Levels are along `up`."""
-
-    axis: int
-    at_m: float
-    up: Vector
-    cells: tuple[CutCell, ...]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -113,16 +93,21 @@ class Asked:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class TankNow:
-    """One tank as asked. `attitude` is the plan's name for it, or None for one of the screen's own."""
+    """One tank as asked. `attitude` is the plan's name for it, or None for one of the screen's own.
+
+    `outlet_wl_m` is the water line of the surface at the outlet; `frees_wider_10pc_m3` what the opening
+    of the worst cell would free over the tank, below 0 where it would trap more.
+    """
 
     asked: Asked
     attitude: str | None
     mass_kg: float | None
     cg_m: Vector | None
-    level_at_outlet_m: float | None
+    outlet_wl_m: float | None
     trapped_m3: float | None
     cells: tuple[CellNow, ...]
     cut: Cut
+    frees_wider_10pc_m3: float | None
 
     @property
     def worst(self) -> CellNow | None:
@@ -292,40 +277,45 @@ def look_at_tank(drawn: TankDrawn, asked: Asked) -> TankNow:
     Raises
         NotUpward: the attitude has no upper side.
     """
+    from ledger.fuel.freeing import freed_wider
     from ledger.fuel.standing import stand
 
     at = drawn.turned(asked.attitude)
     standing = stand(at, asked.quantity_m3, density_kg_m3=drawn.density_kg_m3)
-    cells = []
-    for cell, foot in zip(standing.cells, drawn.footprints, strict=True):
-        gross = foot.gross_m3 or math.inf
-        kept = cell.trapped_m3
-        share = None if cell.percent_full is None else cell.percent_full / 100.0
-        cells.append(
-            CellNow(
-                cell=cell.cell,
-                share=share,
-                # Trapped is reckoned without sealant and may come out a hair above what the cell holds.
-                trapped_share=None if kept is None else min(kept / gross, 1.0 if share is None else share),
-                air_share=foot.caught_air_m3 / gross,
-                trapped_m3=kept,
-                trapped_by=cell.trapped_by,
-                opening=cell.opening,
-                frees_lower_1mm_m3=cell.frees_lower_1mm_m3,
-                pockets=cell.pockets,
-            )
-        )
     levels = {cell.cell: -math.inf if cell.level_m is None else cell.level_m for cell in standing.cells}
     unknown = all(cell.volume_m3 is None for cell in standing.cells)
-    return TankNow(
+    now = TankNow(
         asked=asked,
         attitude=next((one.name for one in drawn.attitudes if one.up == asked.attitude.up), None),
         mass_kg=standing.mass_kg,
         cg_m=standing.cg_m,
-        level_at_outlet_m=standing.level_at_outlet_m,
+        outlet_wl_m=_water_line(drawn, at, standing.level_at_outlet_m),
         trapped_m3=standing.trapped_m3,
-        cells=tuple(cells),
+        cells=tuple(map(_cell_now, standing.cells, drawn.footprints)),
         cut=_cut(drawn, at, asked, at.levels if unknown else levels),
+        frees_wider_10pc_m3=None,
+    )
+    worst = now.worst
+    if worst is None or worst.frees_lower_1mm_m3 is None or worst.opening is None:
+        return now
+    return replace(now, frees_wider_10pc_m3=freed_wider(at.stood, worst.opening))
+
+
+def _cell_now(cell: StandingCell, foot: Footprint) -> CellNow:
+    gross = foot.gross_m3 or math.inf
+    kept = cell.trapped_m3
+    share = None if cell.percent_full is None else cell.percent_full / 100.0
+    return CellNow(
+        cell=cell.cell,
+        share=share,
+        # Trapped is reckoned without sealant and may come out a hair above what the cell holds.
+        trapped_share=None if kept is None else min(kept / gross, 1.0 if share is None else share),
+        air_share=foot.caught_air_m3 / gross,
+        trapped_m3=kept,
+        trapped_by=cell.trapped_by,
+        opening=cell.opening,
+        frees_lower_1mm_m3=cell.frees_lower_1mm_m3,
+        pockets=cell.pockets,
     )
 
 
@@ -362,24 +352,31 @@ def trapped_over(
 
 
 def _cut(drawn: TankDrawn, at: TankAt, asked: Asked, levels: Mapping[str, float]) -> Cut:
-    from ledger.geometry.sections_cut import segments_by_plane
+    axis = asked.axis
+    solids = {
+        foot.cell: drawn.system.cells[foot.cell]
+        for foot in drawn.footprints
+        if foot.low_m[axis] <= asked.at_m <= foot.high_m[axis]
+    }
+    return cut_tank(solids, axis, asked.at_m, asked.attitude.up, levels=levels, kept_levels=at.levels)
 
-    axis, other = asked.axis, X if asked.axis == Y else Y
-    normal = tuple(float(one == axis) for one in (X, Y, Z))
-    point = tuple(asked.at_m if one == axis else 0.0 for one in (X, Y, Z))
-    cells = []
-    for foot in drawn.footprints:
-        if not foot.low_m[axis] <= asked.at_m <= foot.high_m[axis]:
-            continue
-        solid = drawn.system.cells[foot.cell]
-        segments = segments_by_plane(solid.vertices_m, solid.faces, point, normal)
-        rows = segments[:, :, [other, Z]].reshape(-1, 4).tolist()
-        cells.append(
-            CutCell(
-                cell=foot.cell,
-                segments=tuple((row[0], row[1], row[2], row[3]) for row in rows),
-                level_m=levels[foot.cell],
-                kept_level_m=at.levels[foot.cell],
-            )
-        )
-    return Cut(axis=axis, at_m=asked.at_m, up=asked.attitude.up, cells=tuple(cells))
+
+def _water_line(drawn: TankDrawn, at: TankAt, level_m: float | None) -> float | None:
+    """The water line of the fuel's surface at the outlet that `level_at_outlet_m` is beside.
+
+    A level along up tells nobody anything once the tank is tilted; a water line can be measured.
+    """
+    if level_m is None:
+        return None
+    from ledger.fuel.rims import middle_of
+
+    own = set(drawn.tank.cells)
+    x, y, _ = next(
+        middle_of(opening.rim)
+        for opening in drawn.system.tanks.openings
+        if opening.outside is Outside.OUTLET
+        and opening.cells[0] in own
+        and at.levels[opening.cells[0]] != -math.inf
+    )
+    up = at.stood.up
+    return (level_m - up[X] * x - up[Y] * y) / up[Z]

@@ -26,7 +26,7 @@ class InPiece:
 
     piece: str
     mass_kg: float | None
-    closed_in: bool
+    fitted: bool
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -69,9 +69,9 @@ class TraceView:
     suspects: tuple[Suspect, ...]
 
     @property
-    def closed_in(self) -> tuple[InPiece, ...]:
-        """Those already fitted."""
-        return tuple(one for one in self.pieces if one.closed_in)
+    def fitted(self) -> tuple[InPiece, ...]:
+        """Those already fitted into something."""
+        return tuple(one for one in self.pieces if one.fitted)
 
 
 def look_at_trace(stock: Stock, what: str | None) -> TraceView:
@@ -154,15 +154,15 @@ def _ratio_words(weights: WeightReport, what: str) -> str:
     if account is None or account.ratio_low is None or account.ratio_high is None:
         return ""
     low, high = 100.0 * account.ratio_low, 100.0 * account.ratio_high
-    got = f"{low:.1f}" if f"{low:.1f}" == f"{high:.1f}" else f"{low:.1f} to {high:.1f}"
+    got = f"{low:.1f}" if f"{low:.1f}" == f"{high:.1f}" else f"{low:.1f}-{high:.1f}"
     wanted = "" if account.ratio_wanted is None else f", wants {100.0 * account.ratio_wanted:.1f}"
-    return f"hardener {got} to 100{wanted}: {account.ratio_verdict}"
+    return f"hardener {got} to 100{wanted}: {account.ratio_verdict.upper()}"
 
 
 def pieces_with(snapshot: Snapshot, traced: Trace) -> tuple[InPiece, ...]:
     """Every live piece the thing is in, near or by way of others, with the mass that went straight in.
 
-    A piece fitted into another or into an assembly is closed in.
+    Whether it can still be reached no entry of this release says: fitted is all that is known.
     """
     straight: dict[str, list[float | None]] = {}
     for link in traced.went_into:
@@ -175,7 +175,7 @@ def pieces_with(snapshot: Snapshot, traced: Trace) -> tuple[InPiece, ...]:
         InPiece(
             piece=name,
             mass_kg=_sum(straight.get(name, [None])),
-            closed_in=snapshot.pieces[name].fitted_into is not None,
+            fitted=snapshot.pieces[name].fitted_into is not None,
         )
         for name in inside
     )

@@ -35,6 +35,7 @@ class Reading:
 class WeightRow:
     """One row of the tree. `end` is the place after the last row inside it.
 
+    `key` is its own in the tree, `thing` the name a slip knows it by: of a piece not begun its part's.
     `kind` is assembly, part or piece. `flag` is its own STOP or LOOK, `inside` the gravest below it.
     """
 
@@ -54,6 +55,7 @@ class WeightRow:
     off_plan: tuple[CauseMass, ...]
     flag: str = ""
     inside: str = ""
+    thing: str = ""
 
     @property
     def off_kg(self) -> float | None:
@@ -174,17 +176,18 @@ class _Growing:
                 flag=_gravest(self.about.get(part.part, ())),
             )
         )
-        for piece in part.pieces:
-            self._piece(piece, depth + 1)
+        for number, piece in enumerate(part.pieces, start=1):
+            self._piece(piece, depth + 1, f"{part.part} {number}")
         self._close(place)
 
-    def _piece(self, piece: PieceMass, depth: int) -> None:
+    def _piece(self, piece: PieceMass, depth: int, place: str) -> None:
         counts = piece.state not in ("scrapped", "spare")
         self.done.append(
             WeightRow(
-                key=piece.piece,
-                name=piece.piece,
-                title=f"tag {piece.number}" if piece.number else "not begun",
+                key=piece.piece if piece.number else place,
+                name=piece.piece if piece.number else "not begun",
+                title=f"tag {piece.number}" if piece.number else piece.piece,
+                thing=piece.piece,
                 kind="piece",
                 depth=depth,
                 end=len(self.done) + 1,
@@ -196,7 +199,7 @@ class _Growing:
                 best_u_kg=piece.best_u_kg,
                 known_by=piece.known_by,
                 off_plan=piece.off_plan,
-                flag=_gravest(self.about.get(piece.piece, ())),
+                flag=_gravest(self.about.get(piece.piece, ())) if piece.number else "",
             )
         )
 

@@ -15,11 +15,12 @@ from ledger.book.project import needs_rebuild
 from ledger.book.reading import StoredFiles, StoredGeometry, last_of, read_on
 from ledger.book.schema import GUARDS, objects_of
 from ledger.errors import BookUnusable, Finding, Severity, Where
-from ledger.model.acts import Adopt
+from ledger.model.acts import Adopt, Coat
 from ledger.model.entry import FIRST_PREVIOUS, Logged
 from ledger.model.gather import Gathering, tags_of, what_counts
 from ledger.model.plan import Plan
 from ledger.model.snapshot import Snapshot
+from ledger.model.vectors import Vector
 from ledger.operations.stored_plan import UNREADABLE, plan_key, stored_plan
 
 if TYPE_CHECKING:
@@ -50,6 +51,15 @@ class Build:
         from ledger.exchange.plan_cells import read_displaced
 
         return _once(self, "displaced", lambda cache: read_displaced(self.snapshot.plan, self.files, cache))
+
+    def cell_places(self) -> Mapping[str, Vector]:
+        """Where the middle of each cell is that something was coated in; metres, build axes."""
+        coated = {entry.act.cell for entry in self.snapshot.logged if isinstance(entry.act, Coat)} - {None}
+        if not coated:
+            return {}
+        from ledger.exchange.plan_cells import read_cell_places
+
+        return read_cell_places(self.snapshot.plan, self.files, self.cache, frozenset(map(str, coated)))
 
 
 @dataclass(slots=True)
@@ -88,7 +98,7 @@ def open_build(book: Path, *, now: datetime | None = None) -> Build:
         snapshot = state.gathering.snapshot(
             last_seq=state.last_seq, last_digest=state.last_digest, now=moment
         )
-        missing = sorted(set(GUARDS) - {found.name for found in objects_of(connection)})
+        missing = guards_missing(connection)
         everything = tuple(state.everything)
     adopted = next(entry for entry in reversed(snapshot.logged) if isinstance(entry.act, Adopt))
     trouble = () if state.trouble is None else (state.trouble,)
@@ -98,7 +108,21 @@ def open_build(book: Path, *, now: datetime | None = None) -> Build:
         logged=everything,
         files=StoredFiles(book, _adopt(adopted)),
         cache=geometry,
-        warnings=(*trouble, *(_guard_missing(name) for name in missing)),
+        warnings=(*trouble, *missing),
+    )
+
+
+def guards_missing(connection: sqlite3.Connection) -> tuple[Finding, ...]:
+    """A finding for each guard that should keep entries as they are and does not stand."""
+    return tuple(
+        Finding(
+            code="guard-missing",
+            severity=Severity.STOP,
+            where=Where(thing=name),
+            what=f"guard {name} of the book is missing: it was dropped",
+            do="run check, then compare with a backup",
+        )
+        for name in sorted(set(GUARDS) - {found.name for found in objects_of(connection)})
     )
 
 
@@ -190,14 +214,4 @@ def _no_plan(book: Path) -> BookUnusable:
             what="no entry that can be read adopts a plan",
             do="run check, then restore your last backup",
         )
-    )
-
-
-def _guard_missing(name: str) -> Finding:
-    return Finding(
-        code="guard-missing",
-        severity=Severity.STOP,
-        where=Where(thing=name),
-        what=f"guard {name} of the book is missing: it was dropped",
-        do="run check, then compare with a backup",
     )

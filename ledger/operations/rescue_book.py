@@ -12,8 +12,8 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
-from ledger.book.chain import digest_of_entry
-from ledger.book.copies import give_name, settle
+from ledger.book.chain import digest_of_entry, short_code
+from ledger.book.copies import give_name, in_the_way, settle
 from ledger.book.opening import connect_new, header_of
 from ledger.book.project import rebuild
 from ledger.book.reading import NOT_READABLE, logged_of, read_logged
@@ -30,6 +30,7 @@ class Rescued:
     file: Path
     entries: int
     last_digest: str
+    short_code: str
     left_out: tuple[int, ...]
     findings: tuple[Finding, ...]
 
@@ -42,14 +43,18 @@ def rescue_book(damaged: Path, new: Path) -> Rescued:
 
     Raises
         Refused: something is at the new path.
-        WrongUse: there is no damaged file, or no folder for the new one.
-        BookUnusable: not one entry can be read.
+        WrongUse: there is no folder for the new one.
+        BookUnusable: there is no damaged file, or not one entry of it can be read.
     """
-    if os.path.lexists(new):
-        raise Refused(_stop("target-exists", new, "something stands at this path already", "choose another"))
-    if not damaged.is_file() or not new.parent.is_dir():
-        missing = damaged if not damaged.is_file() else new.parent
-        raise WrongUse(_stop("path-absent", missing, "there is no such file or folder", "check the path"))
+    there = in_the_way(new)
+    if there is not None:
+        raise Refused(
+            _stop("target-exists", there, "something stands at this path already", "choose another")
+        )
+    if not damaged.is_file():
+        raise BookUnusable(_stop("book-absent", damaged, "there is no such file", "check the path"))
+    if not new.parent.is_dir():
+        raise WrongUse(_stop("folder-absent", new.parent, "there is no such folder", "make it first"))
     making = new.with_name(f".{new.name}.making-{os.getpid()}")
     try:
         rescued = _rescue(damaged, making, new)
@@ -91,6 +96,7 @@ def _rescue(damaged: Path, making: Path, new: Path) -> Rescued:
         file=new,
         entries=len(whole),
         last_digest=whole[-1].digest,
+        short_code=short_code(whole[-1].digest),
         left_out=left_out,
         findings=tuple(_left_out(seq) for seq in left_out),
     )

@@ -129,6 +129,9 @@ def _per_area(areal_mass_kg_m2: float | None) -> str:
 
 
 def _measure(measure: Measure) -> str:
+    # What a scale resolves is a fraction of a gram: in kilograms nobody reads it at a glance.
+    if measure.unit == "kg" and measure.value < 1:
+        return _grams(measure.value)
     return f"{measure.value:.6g} {measure.unit}"
 
 

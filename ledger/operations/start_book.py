@@ -8,7 +8,7 @@ import uuid
 from datetime import datetime
 from pathlib import Path
 
-from ledger.book.copies import give_name, settle
+from ledger.book.copies import give_name, in_the_way, settle
 from ledger.book.opening import connect_new
 from ledger.book.reading import StoredGeometry
 from ledger.errors import Finding, Refused, Severity, Where, WrongUse
@@ -30,8 +30,9 @@ def start_book(book: Path, plan: Path, *, by: str | None = None, now: datetime |
         WrongUse: there is no such plan folder, or no folder to make the book in.
     """
     moment = now if now is not None else right_now()
-    if os.path.lexists(book):
-        raise Refused(_taken(book))
+    there = in_the_way(book)
+    if there is not None:
+        raise Refused(_taken(there))
     if not book.parent.is_dir():
         raise WrongUse(_no_folder(book))
     geometry = StoredGeometry(None)

@@ -50,7 +50,7 @@ def take_stock(book: Path, before: Stock | None = None, *, with_fuel: bool = Tru
     """Read the book and reckon. Fuel comes from `before` where the plan is still the same adoption."""
     build = open_build(book)
     snapshot = build.snapshot
-    weights = weigh_up(snapshot)
+    weights = weigh_up(snapshot, build.cell_places())
     fuel = _same_plans_fuel(build, before)
     if fuel is None and with_fuel:
         fuel = reckon_build(build)

@@ -28,7 +28,7 @@ def weigh_up_build(book: Path) -> Weights:
     """Weigh up everything in the book."""
     build = open_build(book)
     snapshot = build.snapshot
-    report = weigh_up(snapshot)
+    report = weigh_up(snapshot, build.cell_places())
     return Weights(
         report=report,
         findings=(*build.warnings, *run_rules(Facts(snapshot=snapshot, weights=report, fuel=None))),

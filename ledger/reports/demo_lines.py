@@ -8,7 +8,7 @@ from ledger.errors import Finding, Severity
 from ledger.fuel.report import FuelReport
 from ledger.mass.report import CauseMass, WeightReport
 from ledger.reports.finding_lines import WORD, counted
-from ledger.reports.fuel_lines import CAUTION, tank_line
+from ledger.reports.fuel_lines import CAUTION, hole_line, tank_line
 from ledger.reports.plain import shortened
 from ledger.reports.weight_lines import signed_mass, total_lines
 from ledger.units import Dimension, Display, shown_unit
@@ -28,7 +28,7 @@ def demo_lines(
         _main_causes(weights.off_plan, display),
         "",
         f"FUEL  {CAUTION}",
-        *(tank_line(tank, display) for tank in fuel.tanks),
+        *(line for tank in fuel.tanks for line in (tank_line(tank, display), *hole_line(tank, display))),
     )
     groups = _grouped(findings)
     room = ROWS - len(below) - 1

@@ -8,7 +8,7 @@ from typing import Any
 from ledger.errors import Finding
 from ledger.model.things import Minted
 from ledger.reports.figures import finding_figures
-from ledger.reports.plain import clean
+from ledger.reports.plain import clean, how_many
 
 
 def entry_line(seq: int, kind: str, says: str) -> str:
@@ -32,12 +32,13 @@ def adopted_lines(
 ) -> tuple[str, ...]:
     """What taking in a plan did, or would do. Each piece that no longer fits has its state and why."""
     entry = () if seq is None else (f"entry      {seq}",)
+    unfit = how_many(len(no_longer_fits), "built piece") if no_longer_fits else "none"
     last = () if digest is None else (f"digest     {digest}",)
     return (
         clean(f"iteration  {iteration}"),
         *entry,
         *last,
-        f"no longer fits  {len(no_longer_fits)} built pieces",
+        f"no longer fits  {unfit}",
         *(clean(f"  {piece}  {state}  {why}") for piece, state, why in no_longer_fits),
     )
 

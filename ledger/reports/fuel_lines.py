@@ -12,6 +12,7 @@ from ledger.units import Dimension, Display, Rounding, show, shown_number, shown
 CAUTION = "COMPUTED: a flow test decides"
 _ROWS_SHOWN = 10
 _NAMES_SHOWN = 3
+_NO_HOLE = ("no way out", "no air", "dry")
 
 
 def fuel_lines(report: FuelReport, display: Display, *, tables: bool = False) -> tuple[str, ...]:
@@ -51,6 +52,21 @@ def tank_line(tank: TankFuel, display: Display) -> str:
     capacity = show(tank.capacity_m3, Dimension.VOLUME, display)
     usable = usable_text(tank.usable_m3, display)
     return clean(f"{tank.tank}  capacity {capacity}  usable {usable}{_at(tank.governing_attitude)}  COMPUTED")
+
+
+def hole_line(tank: TankFuel, display: Display) -> tuple[str, ...]:
+    """What a hole between two cells keeps back most, in flight: the hole that is worth a second look."""
+    behind_holes = [
+        (cell.trapped_m3, cell, attitude)
+        for attitude in tank.attitudes
+        for cell in attitude.cells
+        if attitude.flight and cell.trapped_m3 and cell.trapped_by not in (*_NO_HOLE, "outlet")
+    ]
+    if not behind_holes:
+        return ()
+    trapped_m3, cell, attitude = max(behind_holes, key=lambda one: one[0])
+    kept = f"keeps {trapped_text(trapped_m3, display)} in {cell.cell}, {behind(cell.trapped_by)}"
+    return (clean(f"{'':{len(tank.tank)}}  {kept}, at {attitude.attitude}"),)
 
 
 def _tank_lines(tank: TankFuel, display: Display) -> tuple[str, ...]:
@@ -122,7 +138,7 @@ def _trapping(attitude: AttitudeFuel) -> list[DrainedCell]:
 
 def behind(trapped_by: str) -> str:
     """What traps a cell, as words: a name of an opening gets `behind`."""
-    if trapped_by in ("no way out", "no air", "dry"):
+    if trapped_by in _NO_HOLE:
         return trapped_by
     return f"behind {trapped_by}"
 

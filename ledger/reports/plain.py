@@ -21,6 +21,11 @@ def clean(text: str) -> str:
     )
 
 
+def how_many(count: int, one: str, several: str | None = None) -> str:
+    """A count with its word: `no pieces`, `1 piece`, `2 pieces`."""
+    return f"{count or 'no'} {one if count == 1 else several or f'{one}s'}"
+
+
 def width_of(text: str) -> int:
     """How many terminal cells the text takes."""
     if text.isascii():

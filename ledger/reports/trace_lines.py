@@ -10,6 +10,7 @@ from ledger.reports.plain import aligned, clean
 from ledger.units import Display, show_small_mass
 
 _INDENT = "  "
+_GOES_INTO_PIECES = ("material", "lot", "sheet", "offcut", "batch")
 
 
 def trace_lines(trace: Trace, display: Display) -> tuple[str, ...]:
@@ -17,7 +18,7 @@ def trace_lines(trace: Trace, display: Display) -> tuple[str, ...]:
     state = trace.state.upper() if trace.state in ("on hold", "scrapped", "expired") else trace.state
     return (
         clean(f"{trace.what}  {trace.kind}  {state}"),
-        pieces_line(trace),
+        *pieces_lines(trace),
         "",
         *_side("MADE FROM", trace.made_from, "made_from", display),
         "",
@@ -27,13 +28,15 @@ def trace_lines(trace: Trace, display: Display) -> tuple[str, ...]:
     )
 
 
-def pieces_line(trace: Trace) -> str:
-    """In how many pieces it is by now, near or far, and how they stand."""
+def pieces_lines(trace: Trace) -> tuple[str, ...]:
+    """In how many pieces it is by now, near or far, and how they stand; none for what goes into no piece."""
     states = {link.what: link.state for link in _all_links(trace.went_into) if link.kind == "piece"}
     if not states:
-        return "in no piece"
+        return ("in no piece yet",) if trace.kind in _GOES_INTO_PIECES else ()
     told = Counter(states.values())
-    return f"in {len(states)} pieces: {', '.join(f'{many} {state}' for state, many in told.most_common())}"
+    if len(states) == 1:
+        return (f"in 1 piece, {next(iter(told))}",)
+    return (f"in {len(states)} pieces: {', '.join(f'{many} {state}' for state, many in told.most_common())}",)
 
 
 def _all_links(links: tuple[TraceLink, ...]) -> Iterator[TraceLink]:

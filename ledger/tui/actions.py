@@ -73,6 +73,12 @@ SHELL: tuple[Action, ...] = (
     Action(name="show_findings", word="findings", tip="every STOP, LOOK and note, with what to do"),
     Action(name="change_theme", word="theme", tip="dark, light, or none: no colour at all"),
     Action(name="set_with", word="with", tip="who else is present, for example: with AB MT; with nobody"),
+    Action(
+        name="clock_right",
+        word="clock right",
+        tag="TAG CLOCK RIGHT",
+        tip="the computer's time is right, though the program doubts it",
+    ),
     Action(name="leave", word="leave", tip="end the program; drafts are kept", also=("quit", "exit")),
 )
 
@@ -94,8 +100,22 @@ BENCH: tuple[Action, ...] = (
     Action(name="keep", word="keep", tag="TAG KEEP", tip="keep a reading outside what was expected"),
     Action(name="repeat", word="same", tag="TAG SAME", tip="the slip as it was logged last"),
     Action(name="throw_away", word="throw away", tip="throw the open draft away"),
-    Action(name="field_before", word="field before", key="up", tip="the field above", areas=("slip",)),
-    Action(name="field_after", word="field after", key="down", tip="the field below", areas=("slip",)),
+    Action(
+        name="field_before",
+        word="field before",
+        key="up",
+        tag="TAG BACK",
+        tip="the field above",
+        areas=("slip",),
+    ),
+    Action(
+        name="field_after",
+        word="field after",
+        key="down",
+        tag="TAG FORWARD",
+        tip="the field below",
+        areas=("slip",),
+    ),
     Action(
         name="mark_before",
         word="mark before",
@@ -117,7 +137,14 @@ BENCH: tuple[Action, ...] = (
         tip="complete what is typed from what is open",
         areas=("slip",),
     ),
-    Action(name="empty_field", word="empty", key="delete", tip="empty this field", areas=("slip",)),
+    Action(
+        name="empty_field",
+        word="empty",
+        key="delete",
+        tag="TAG EMPTY",
+        tip="empty this field",
+        areas=("slip",),
+    ),
     Action(name="page_before", word="page before", key="pageup", tip="the list's page before"),
     Action(name="page_after", word="page after", key="pagedown", tip="the list's next page"),
 )

@@ -26,7 +26,9 @@ from ledger.tui.listening import ListeningScreen
 from ledger.tui.lock_screen import LockScreen
 from ledger.tui.scan import ScanLine
 from ledger.tui.themes import DRAWN, PLAIN, THEMES, is_plain
+from ledger.tui.tour import INVENTED, act_now, leads, line_of
 from ledger.tui.trace_screen import TraceScreen
+from ledger.tui.wall_clock import WallClock, read_told_time
 from ledger.tui.weights_screen import WeightsScreen
 from ledger.tui.work_screen import WorkScreen, first_words
 
@@ -71,7 +73,9 @@ class LedgerApp(App[None], inherit_bindings=False):
         self.stock: Stock | None = None
         self._stale = True
         self._stock_lock = threading.Lock()
-        self._now = now
+        self.wall = WallClock(now if now is not None else _computers_time)
+        self.toured: set[str] = set()
+        self._tour_said: tuple[str, str] | None = None
         self._clock = clock
         self._poll_s = poll_s
         self._seen: tuple[int, str] | None = None
@@ -80,8 +84,8 @@ class LedgerApp(App[None], inherit_bindings=False):
     # -- time
 
     def now(self) -> datetime:
-        """The computer's time with its offset."""
-        return datetime.now().astimezone() if self._now is None else self._now()
+        """The time of day with its offset: the computer's, or what a person said where that is doubted."""
+        return self.wall.now()
 
     def clock(self) -> float:
         """A clock that only goes on, on the same scale as `moment_of`."""
@@ -121,9 +125,39 @@ class LedgerApp(App[None], inherit_bindings=False):
     def find(self, text: str) -> FoundThing | None:
         """What a number or name stands for."""
         try:
-            return find_thing(self.book, text)
+            found = find_thing(self.book, text)
         except LedgerError:
             return None
+        if found is not None and self.current_mode == "trace":
+            self.toured.add(found.number or found.name)
+        return found
+
+    @property
+    def last_logged_at(self) -> datetime | None:
+        """When the newest entry was written, by the clock of whoever wrote it."""
+        build = self.build
+        return build.logged[-1].logged_at if build is not None and build.logged else None
+
+    @property
+    def tour_line(self) -> str | None:
+        """What to try next in the sample build; None in any other."""
+        build = self.build
+        if build is None or not leads(build.snapshot):
+            return None
+        return line_of(act_now(build.snapshot.logged, self.toured))
+
+    def follow_tour(self) -> None:
+        """Say the act once on each screen; the bench has a line for it."""
+        line, screen = self.tour_line, self.work_screen
+        if line is None or screen is None:
+            return
+        if self.crew.by is None:
+            # The sample opens in the middle of a job, and somebody does that job.
+            self.crew = self.crew.badged("JK", self.now()).joined_by(("AB",))
+            screen.draw_plate()
+        if screen.WORD != "bench" and self._tour_said != (screen.WORD, line):
+            self._tour_said = (screen.WORD, line)
+            screen.say("", f"{INVENTED}. {line[0].upper()}{line[1:]}")
 
     # -- screens
 
@@ -161,6 +195,7 @@ class LedgerApp(App[None], inherit_bindings=False):
         """Bring a screen up; a list that lies over the one left is put away."""
         while isinstance(self.screen, ListScreen):
             await self.pop_screen()
+        self.toured.add(word)
         if self.current_mode != word:
             await self.switch_mode(word)
 
@@ -214,7 +249,24 @@ class LedgerApp(App[None], inherit_bindings=False):
         self._say("ok", f"with {' '.join(self.crew.others) or 'nobody'}")
         return True
 
+    def take_time(self, text: str) -> bool:
+        """`10:42`, while the computer's clock is doubted; True where the text was one."""
+        told = None if self.wall.doubt is None else read_told_time(text, self.now())
+        if told is None:
+            return False
+        self.wall.set_right(told)
+        self._say("ok", f"it is {told:%d %b %H:%M}; log again, the entry is marked 'clock doubted'")
+        self.ring(1)
+        return True
+
     # -- what actions do
+
+    def do_clock_right(self) -> None:
+        """The doubted clock is right after all: somebody has looked."""
+        if self.wall.doubt is None:
+            self._say("", "the clock is not doubted")
+        else:
+            self.take_time(f"{self.now():%Y-%m-%d %H:%M}")
 
     def badge(self, initials: str) -> None:
         """Whoever's badge this is logs from now on."""
@@ -296,9 +348,15 @@ class LedgerApp(App[None], inherit_bindings=False):
             self.call_from_thread(self.book_changed)
 
     def _tick(self) -> None:
+        self.wall.look(self.last_logged_at)
+        self._keep_clock()
         screen = self.work_screen
         if screen is not None:
             screen.tick()
+
+    @work(thread=True, group="clock", exclusive=True, exit_on_error=False)
+    def _keep_clock(self) -> None:
+        self.wall.keep()
 
     def _say(self, sign: str, text: str) -> None:
         screen = self.work_screen
@@ -310,6 +368,10 @@ class LedgerApp(App[None], inherit_bindings=False):
         screen = self.work_screen
         if screen is not None:
             screen.draw_shell()
+
+
+def _computers_time() -> datetime:
+    return datetime.now().astimezone()
 
 
 def run(book: Path) -> None:

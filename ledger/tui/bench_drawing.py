@@ -12,7 +12,7 @@ from ledger.operations.list_next_jobs import Job
 from ledger.operations.look_at_bench import LoggedLine
 from ledger.operations.look_at_ply import PlyInHand
 from ledger.tui.room import Room
-from ledger.tui.themes import Lines
+from ledger.tui.themes import Lines, Signs
 
 _BAR = 7
 _STROKES = "-/|\\"
@@ -40,6 +40,17 @@ def rule(width: int, lines: Lines, tees: Sequence[tuple[int, str]] = ()) -> Text
     return Text("".join(characters))
 
 
+def worded_rule(
+    words: str, width: int, lines: Lines, signs: Signs, tees: Sequence[tuple[int, str]] = ()
+) -> Text:
+    """A rule with words set into its left end."""
+    shown = f"{lines.h} {cut(words, width - 4)} "
+    row = rule(width, lines, [(at, sign) for at, sign in tees if at >= len(shown)])
+    row = Text(shown) + row[len(shown) :]
+    row.stylize(signs.look, 2, len(shown) - 1)
+    return row
+
+
 def stroke_of(angle_deg: float | None) -> str:
     """The nearest of four strokes: 0 lies across, +45 rises to the right, 90 stands, -45 falls."""
     if angle_deg is None:
@@ -64,11 +75,15 @@ def in_minutes(minutes: float) -> str:
 def cups_text(cups: Sequence[Cup], room: Room) -> Text:
     """Shortest clock first: number, what, bar, minutes, grams. Past is a word."""
     rows = [_title("CUPS", "pot life     g", room)]
-    places = room.height - 1
-    shown = cups[:places] if len(cups) <= places else cups[: places - 1]
+    shown = _cups_in_sight(cups, room.height - 1)
     rows += [_cup_row(cup, room) for cup in shown]
     if len(shown) < len(cups):
-        rows.append(Text(f"and {len(cups) - len(shown)} more cups", style=room.signs.quiet))
+        left = [cup for cup in cups if cup not in shown]
+        past = sum(cup.past for cup in left)
+        rows.append(
+            Text(f"and {len(left)} more", style=room.signs.quiet)
+            + Text(f", {past} PAST" if past else "", style=room.signs.stop)
+        )
     if not cups:
         rows.append(Text("no cup is open", style=room.signs.quiet))
     return filled(rows, room.height)
@@ -165,6 +180,8 @@ def _cup_row(cup: Cup, room: Room) -> Text:
         row.append("no pot life")
     elif cup.past:
         row.append(f"PAST {in_minutes(-cup.minutes_left)}", style=signs.stop)
+        row.append("STOP".rjust(room.width - len(row.plain)), style=signs.stop)
+        return row
     else:
         share = cup.minutes_left * 60.0 / (cup.pot_life_s or 1.0)
         whole = max(1, min(_BAR, round(share * _BAR)))
@@ -173,6 +190,17 @@ def _cup_row(cup: Cup, room: Room) -> Text:
     row.truncate(room.width - len(grams) - 1)
     row.append(grams.rjust(room.width - len(row.plain)), style="")
     return row
+
+
+def _cups_in_sight(cups: Sequence[Cup], places: int) -> Sequence[Cup]:
+    """Running cups first; past ones are never crowded out: up to two rows are kept for them."""
+    if len(cups) <= places:
+        return cups
+    running = [cup for cup in cups if not cup.past]
+    past = [cup for cup in cups if cup.past]
+    rows = places - 1
+    kept = running[: max(rows - min(2, len(past)), 0)]
+    return [*kept, *past[: rows - len(kept)]]
 
 
 def _in_sight(many: int, at: int, places: int, room: Room) -> range:

@@ -6,94 +6,33 @@ import os.path
 from datetime import datetime
 from typing import ClassVar
 
-from textual.app import ComposeResult
-from textual.containers import Horizontal, Vertical
-
+from ledger.errors import Severity
 from ledger.operations.clock_cups import Cup
 from ledger.operations.find_thing import FoundThing
 from ledger.operations.look_at_bench import BenchView, look_at_bench
 from ledger.operations.open_build import Build
 from ledger.tui.actions import BENCH, Action, action_for_word
-from ledger.tui.area import Area
-from ledger.tui.bench_drawing import (
-    cups_text,
-    findings_text,
-    jobs_text,
-    rule,
-    signed,
-    stack_text,
-    stroke_of,
-    today_text,
-    where_text,
-)
-from ledger.tui.bench_writing import BenchWriting
+from ledger.tui.bench_face import BenchFace
 from ledger.tui.completing import candidates, completed
 from ledger.tui.crew import read_badge
-from ledger.tui.room import Room
-from ledger.tui.slip_drawing import hand_text, idle_text, judged_lines, slip_text
-from ledger.units import Dimension, show
+from ledger.tui.slip_drawing import label_of
+from ledger.tui.tour import SKIN
 
 _SOON_MIN = 5.0
-# Columns and rows of the fixed layout, and of the large one.
-_SLIP, _CUPS, _NEXT = 49, 4, 5
-_WIDE_SLIP, _WIDE_SIDE, _WIDE_TOP, _WIDE_CUPS, _WIDE_NEXT, _WIDE_WHERE = 60, 46, 25, 8, 8, 52
 _PAGE = 10
 
 
-class BenchScreen(BenchWriting):
+class BenchScreen(BenchFace):
     """Gathers a slip, shows what the bench must know at a glance."""
 
     WORD = "bench"
     AREAS = ("slip", "line", "next", "today")
     ACTIONS: ClassVar[tuple[Action, ...]] = BENCH
-    DEFAULT_CSS = f"""
-    BenchScreen .rule {{ height: 1; }}
-    BenchScreen .bar {{ width: 1; height: 1fr; }}
-    BenchScreen #top {{ height: 1fr; }}
-    BenchScreen #slip {{ width: {_SLIP}; }}
-    BenchScreen #side {{ width: 1fr; }}
-    BenchScreen #cups {{ height: {_CUPS}; }}
-    BenchScreen #next {{ height: {_NEXT}; }}
-    BenchScreen .wide-only {{ display: none; }}
-    BenchScreen.-wide .wide-only {{ display: block; }}
-    BenchScreen.-wide #slip {{ width: {_WIDE_SLIP}; }}
-    BenchScreen.-wide #side {{ width: {_WIDE_SIDE}; }}
-    BenchScreen.-wide #top {{ height: {_WIDE_TOP}; }}
-    BenchScreen.-wide #cups {{ height: {_WIDE_CUPS}; }}
-    BenchScreen.-wide #next {{ height: {_WIDE_NEXT}; }}
-    BenchScreen.-wide #bottom {{ height: 1fr; }}
-    BenchScreen.-wide #where {{ width: {_WIDE_WHERE}; }}
-    """
 
     def __init__(self) -> None:
         super().__init__()
-        self.job_at = 0
-        self.today_at = 0
-        self.finding_at = 0
         self._rung_for: dict[str, int] = {}
-
-    # -- layout
-
-    def compose_body(self) -> ComposeResult:
-        """Slip, side column, and what the large layout adds."""
-        yield Area(id="rule-top", classes="rule")
-        with Horizontal(id="top"):
-            yield Area(id="slip")
-            yield Area(classes="bar")
-            with Vertical(id="side"):
-                yield Area(id="cups")
-                yield Area(classes="rule side-rule")
-                yield Area(id="next")
-                yield Area(classes="rule side-rule")
-                yield Area(id="today")
-            yield Area(classes="bar wide-only")
-            yield Area(id="stack", classes="wide-only")
-        yield Area(id="rule-middle", classes="rule wide-only")
-        with Horizontal(id="bottom", classes="wide-only"):
-            yield Area(id="findings")
-            yield Area(classes="bar")
-            yield Area(id="where")
-        yield Area(id="rule-bottom", classes="rule")
+        self._begun = False
 
     def on_mount(self) -> None:
         """Drafts first: a cup poured before a kill must show at once."""
@@ -110,9 +49,23 @@ class BenchScreen(BenchWriting):
         """The new view; entries of others that touch the open slip are said."""
         if not self.writing:
             self._see_others()
+        self.desk.see_ply()
+        if not self._begun:
+            self._begun = True
+            self._begin(view)
         self.job_at = min(self.job_at, max(0, len(view.jobs) - 1))
         self.today_at = min(self.today_at, max(0, len(view.today) - 1))
         self.draw_all()
+
+    def _begin(self, view: BenchView) -> None:
+        """What must not be missed on coming to the bench; the sample opens in the middle of a job."""
+        stop = next((finding for finding in view.findings if finding.severity is Severity.STOP), None)
+        if stop is not None:
+            about = f"{stop.where.thing}: " if stop.where.thing else ""
+            self.say("STOP", f"{about}{stop.what}; {stop.do}")
+        tour = self.ledger_app.tour_line
+        if tour is not None and tour.startswith("act 1") and self.desk.slip is None:
+            self.open_kind("lay", self.find(SKIN))
 
     def tick(self) -> None:
         """Clocks go on; a cup that comes near its end, or passes it, rings three times."""
@@ -126,60 +79,6 @@ class BenchScreen(BenchWriting):
         """The mark moves with Tab."""
         self.draw_all()
 
-    def draw_all(self) -> None:
-        """Every area."""
-        if self.is_mounted:
-            self._draw_rules()
-            self.draw_slip()
-            self._draw_side()
-            self._draw_wide()
-
-    def draw_slip(self) -> None:
-        """The left area: the slip, else the thing in hand, else how to begin."""
-        if not self.is_mounted:
-            return
-        desk = self.desk
-        room = self._room(_WIDE_SLIP if self.wide else _SLIP, self._top_height(), here=self.area == "slip")
-        self.ledger_app.line.lone_keys = not self._wants_text()
-        if desk.slip is not None:
-            foot = (*desk.foot(self._cups()), *self._open_for_field())
-            typing = self.ledger_app.line.text if room.here else ""
-            text = slip_text(desk.slip, typing, foot, self.now(), room)
-        elif desk.hand is not None:
-            text = hand_text(desk.hand, self._about_hand(), room)
-        else:
-            last = None if self.view is None else self.view.last
-            words = "" if last is None else f"No. {last.seq} {last.at:%H:%M} {last.by} {last.says}"
-            text = idle_text(words, tuple(desk.drafts), room)
-        self.query_one("#slip", Area).draw(text)
-
-    def prompt(self) -> str:
-        """What the line is for just now."""
-        desk = self.desk
-        if desk.slip is not None and self.area == "slip":
-            field = desk.slip.current
-            return "log, Enter or scan: " if field is None else f"{_label(field.word)}, scan or type: "
-        if desk.slip is None and desk.hand is not None:
-            return f"{desk.hand.name}, reading [{desk.weigh_unit}] or a word: "
-        return "scan or type: "
-
-    def large_lines(self) -> tuple[str, ...]:
-        """The ply and its cup, or the shortest clocks."""
-        cups, slip = self._cups(), self.desk.slip
-        ply = None if slip is None else slip.ply
-        if slip is None or ply is None or ply.step is None:
-            lines = tuple(line for cup in cups[:3] for line in _large_cup(cup))
-            return lines or super().large_lines()
-        named = slip.value("batches").upper().split()
-        chosen = [cup for cup in cups if cup.number.upper() in named] or list(cups[:1])
-        seen = ply.seen_deg
-        return (
-            f"ply {ply.step}/{ply.steps} {signed(seen)}{stroke_of(seen)}",
-            *(line for cup in chosen[:1] for line in _large_cup(cup)),
-            *((f"needs {1000 * ply.needs_kg:.0f} g",) if ply.needs_kg else ()),
-            ply.side,
-        )
-
     # -- what is heard
 
     def hear_typing(self) -> None:
@@ -188,6 +87,17 @@ class BenchScreen(BenchWriting):
             self.desk.press_in_field()
         super().hear_typing()
         self.draw_slip()
+
+    def hear_scan(self, text: str) -> None:
+        """The keys were a reader's, so the first of them was no person's press."""
+        if not self.ledger_app.line.text:
+            self.desk.was_scan()
+        super().hear_scan(text)
+
+    def hear_line(self, text: str) -> None:
+        """A person's line, and so was its first press."""
+        self.desk.was_typed()
+        super().hear_line(text)
 
     def field_takes(self, text: str, *, scanned: bool) -> bool:
         """The open slip first, then a reading for the thing in hand."""
@@ -360,6 +270,8 @@ class BenchScreen(BenchWriting):
         if not text.strip():
             self._enter_in_slip()
             return True
+        if not scanned and self._is_word_here(text):
+            return False
         if desk.scanned(text) if scanned else desk.typed(text):
             self.forget_effect()
             self.draw_all()
@@ -376,13 +288,18 @@ class BenchScreen(BenchWriting):
         self.draw_slip()
         return True
 
+    def _is_word_here(self, text: str) -> bool:
+        # Many fields take any letters, as initials, a number of one's own or a remark; `log` means log.
+        action = action_for_word(text, BENCH)
+        return action is not None and action.tag is not None
+
     def _enter_in_slip(self) -> None:
         slip = self.desk.slip
         field = None if slip is None else slip.current
         if slip is None or field is None:
-            self.log_slip()
+            self.log_slip(by_key=True)
         elif field.required and not slip.value(field.word):
-            self.refuse(f"{_label(field.word)} must be filled: {field.tip}")
+            self.refuse(f"{label_of(field.word)} must be filled: {field.tip}")
         else:
             self._move(1)
 
@@ -421,87 +338,3 @@ class BenchScreen(BenchWriting):
                 words = "is PAST its pot life" if cup.past else f"has {cup.minutes_left:.0f} min left"
                 self.say("STOP" if cup.past else "LOOK", f"{cup.number} {words}")
                 self.ring(3)
-
-    def _cups(self) -> tuple[Cup, ...]:
-        return () if self.view is None else self.desk.cups(self.view.cups)
-
-    def _open_for_field(self) -> tuple[tuple[str, str], ...]:
-        slip, view = self.desk.slip, self.view
-        if slip is None or slip.current is None or view is None or not slip.current.things:
-            return ()
-        found = candidates(slip.current, self.ledger_app.line.text, view.open_things)
-        return (("", f"open: {', '.join(one.text for one in found[:8])}"),) if found else ()
-
-    def _about_hand(self) -> tuple[tuple[str, str], ...]:
-        desk = self.desk
-        if desk.reading is not None:
-            return judged_lines(desk.reading.judged, self.units)
-        return () if self.view is None or desk.hand is None else self.view.lines_about(desk.hand.name)
-
-    def _wants_text(self) -> bool:
-        # A reading may begin with a lone digit; the screens' digits are keys only where nothing is asked for.
-        return self.desk.hand is not None if self.desk.slip is None else self.area == "slip"
-
-    # -- drawing
-
-    def _room(self, width: int, height: int, *, here: bool = False) -> Room:
-        return Room(width=width, height=height, signs=self.signs, lines=self.lines, here=here)
-
-    def _top_height(self) -> int:
-        return _WIDE_TOP if self.wide else max(3, self.app.size.height - 7)
-
-    def _side_width(self) -> int:
-        return _WIDE_SIDE if self.wide else max(10, self.app.size.width - _SLIP - 1)
-
-    def _draw_side(self) -> None:
-        view = self.view
-        if view is None or not self.is_mounted:
-            return
-        width = self._side_width()
-        cups, jobs = (_WIDE_CUPS, _WIDE_NEXT) if self.wide else (_CUPS, _NEXT)
-        today = max(1, self._top_height() - cups - jobs - 2)
-        added = show(view.today_kg, Dimension.MASS, self.units, places=1)
-        self.query_one("#cups", Area).draw(cups_text(self._cups(), self._room(width, cups)))
-        self.query_one("#next", Area).draw(
-            jobs_text(view.jobs, self.job_at, self._room(width, jobs, here=self.area == "next"))
-        )
-        self.query_one("#today", Area).draw(
-            today_text(view.today, added, self.today_at, self._room(width, today, here=self.area == "today"))
-        )
-
-    def _draw_wide(self) -> None:
-        if not self.wide or self.view is None or not self.is_mounted:
-            return
-        ply = None if self.desk.slip is None else self.desk.slip.ply
-        width, below = self.app.size.width, max(1, self.app.size.height - 8 - _WIDE_TOP)
-        stack = self._room(width - _WIDE_SLIP - _WIDE_SIDE - 2, _WIDE_TOP)
-        self.query_one("#stack", Area).draw(stack_text(ply, stack))
-        self.query_one("#where", Area).draw(where_text(ply, self._room(_WIDE_WHERE, below)))
-        findings = self._room(width - _WIDE_WHERE - 1, below)
-        self.query_one("#findings", Area).draw(findings_text(self.view.findings, self.finding_at, findings))
-
-    def _draw_rules(self) -> None:
-        lines, width = self.lines, self.app.size.width
-        bars = (_WIDE_SLIP, _WIDE_SLIP + 1 + _WIDE_SIDE) if self.wide else (_SLIP,)
-        where = (width - _WIDE_WHERE - 1,) if self.wide else bars
-        down, up = [(at, lines.tee_down) for at in bars], [(at, lines.tee_up) for at in where]
-        self.query_one("#rule-top", Area).draw(rule(width, lines, down))
-        self.query_one("#rule-bottom", Area).draw(rule(width, lines, up))
-        middle = [(at, lines.tee_up) for at in bars] + [(at, lines.tee_down) for at in where]
-        self.query_one("#rule-middle", Area).draw(rule(width, lines, middle))
-        for area in self.query(".side-rule").results(Area):
-            area.draw(rule(self._side_width(), lines))
-        for bar in self.query(".bar").results(Area):
-            bar.draw("\n".join([lines.v] * self.app.size.height))
-
-
-def _label(word: str) -> str:
-    return word.replace("_", " ")
-
-
-def _large_cup(cup: Cup) -> tuple[str, ...]:
-    if cup.minutes_left is None:
-        return (cup.number,)
-    time = f"past {-cup.minutes_left:.0f} min" if cup.past else f"{cup.minutes_left:.0f} min"
-    grams = "" if cup.left_kg is None else f" {1000 * max(0.0, cup.left_kg):.0f} g"
-    return (f"{cup.number}{grams}", time)

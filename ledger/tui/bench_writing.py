@@ -1,4 +1,4 @@
-"""The bench's way into the book: what is checked by eye first, one operation in a thread, what is said after."""
+"""The bench's way into the book: what is checked by eye first, one operation in a thread, what is said."""
 
 from __future__ import annotations
 
@@ -14,6 +14,7 @@ from ledger.tui.logging_slips import (
     Outcome,
     Request,
     effect_of,
+    marked,
     refusal_of,
     request_of,
     request_of_reading,
@@ -26,6 +27,8 @@ from ledger.tui.work_screen import WorkScreen
 
 # Their effect on the rest of the book is shown before they are done; a correction always is.
 _SHOWN_FIRST = ("withdraw",)
+# A keyboard's first repeat comes a quarter to three quarters of a second after the press.
+_HELD_S = 0.8
 
 
 class BenchWriting(WorkScreen[BenchView]):
@@ -36,6 +39,7 @@ class BenchWriting(WorkScreen[BenchView]):
         self.desk = Desk(self)
         self.writing = False
         self._shown_effect: Request | None = None
+        self._shown_at = 0.0
 
     @property
     def book(self) -> Path:
@@ -93,13 +97,16 @@ class BenchWriting(WorkScreen[BenchView]):
         if reading.judged.inside is False and not kept:
             self._ask_to_keep(reading.judged)
         elif self._may_write():
-            self._write(request_of_reading(self.desk.weigh_fields(), self.crew))
+            self._write(request_of_reading(reading.fields, self.crew))
 
     # -- slips
 
-    def log_slip(self, *, kept: bool = False) -> None:
-        """Log the open slip, or say what is in the way."""
+    def log_slip(self, *, kept: bool = False, by_key: bool = False) -> None:
+        """Log the open slip, or say what is in the way. A key held down never confirms what it asked for."""
         slip = self.desk.slip
+        shown_for = self.ledger_app.clock() - self._shown_at
+        if by_key and self._shown_effect is not None and shown_for < _HELD_S:
+            return
         if slip is None:
             self.refuse("no slip is open: type a word such as weigh, or scan a number")
         elif slip.changes:
@@ -146,6 +153,11 @@ class BenchWriting(WorkScreen[BenchView]):
         if self.crew.needs_badge(self.now()):
             self.refuse("whose entry is it? scan your badge or type +JK, then log again")
             return False
+        wall = self.ledger_app.wall
+        wall.look(self.ledger_app.last_logged_at)
+        if wall.doubt is not None:
+            self.refuse(f"{wall.doubt}: what time is it? type for example 14:25, or clock right")
+            return False
         return True
 
     def _write_or_show_effect(self, slip: Slip) -> None:
@@ -159,6 +171,7 @@ class BenchWriting(WorkScreen[BenchView]):
     def _write(self, request: Request, *, preview: bool = False) -> None:
         self.writing = True
         book, now = self.book, self.now
+        request = marked(request, self.ledger_app.wall.mark(self.ledger_app.last_logged_at))
         then = self._effect_shown if preview else self._written
         self.in_thread(lambda: write(book, request, now, preview=preview), then, about="write")
 
@@ -168,6 +181,7 @@ class BenchWriting(WorkScreen[BenchView]):
             self._not_written(outcome)
             return
         self._shown_effect = outcome.request
+        self._shown_at = self.ledger_app.clock()
         self.say("LOOK", f"{effect_of(outcome)}; log once more to do it")
         self.ring(1)
         self.draw_all()
@@ -179,6 +193,7 @@ class BenchWriting(WorkScreen[BenchView]):
             self._not_written(outcome)
             return
         self._shown_effect = None
+        self.ledger_app.wall.marked()
         self.desk.logged(outcome.request.kind, tuple(one.seq for one in outcome.entries))
         for sign, words in said_of(entry):
             self.say(sign, words)

@@ -5,21 +5,18 @@ No widget here: the screen passes in what was heard and draws what stands afterw
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from datetime import datetime
 from pathlib import Path
 from typing import Protocol
 
-from ledger.errors import LedgerError
-from ledger.model.declare import KINDS, Field, Takes
-from ledger.model.things import ThingKind
+from ledger.model.declare import KINDS, Takes
 from ledger.operations.clock_cups import Cup, mixing_cup, run_clocks
 from ledger.operations.find_thing import FoundThing
-from ledger.operations.judge_reading import Judged, judge_reading
+from ledger.operations.judge_reading import Judged
 from ledger.operations.keep_draft import DraftNotKept, drafts_of, drop_draft, keep_draft
-from ledger.operations.plan_pour import plan_pour
+from ledger.operations.look_at_ply import look_at_ply
 from ledger.operations.propose_entry import (
-    covering,
     entry_to_correct,
     propose_entry,
     repeat_last,
@@ -27,11 +24,11 @@ from ledger.operations.propose_entry import (
 from ledger.operations.see_changes import Change, see_changes
 from ledger.operations.take_stock import Stock
 from ledger.tui.crew import Crew, read_badge
-from ledger.tui.field_text import is_number, split_quantities, takes_person, with_unit
+from ledger.tui.field_text import takes_person
+from ledger.tui.scale_reading import Reading, judge_slip, read_scale, scale_in_use
 from ledger.tui.slip import Refusal, Slip, new_slip, slip_of
-from ledger.units import Dimension, Display, read_quantity
+from ledger.units import Display
 
-_WEIGHED = (ThingKind.PIECE, ThingKind.PART, ThingKind.ASSEMBLY)
 _SECOND_OF = {"hardener": "resin", "resin": "hardener"}
 
 
@@ -67,15 +64,6 @@ class Shop(Protocol):
         """Say why nothing happened, and ring twice."""
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Reading:
-    """What a scale showed for the thing in hand. `settled` once a word or a badge kept it."""
-
-    text: str
-    judged: Judged
-    settled: bool = False
-
-
 class Desk:
     """The bench's own memory. `own` are entries this session wrote; `seen_seq` the last one it looked at."""
 
@@ -86,6 +74,7 @@ class Desk:
         self.hand: FoundThing | None = None
         self.reading: Reading | None = None
         self.come_back_to: str | None = None
+        self._stamped_by_press = False
         self.own: set[int] = set()
         self.seen_seq: int | None = None
 
@@ -230,11 +219,9 @@ class Desk:
         """Text by hand into the open slip. False where it does not fit and may be a word instead."""
         if self.slip is None:
             return False
-        badge = read_badge(text)
-        if badge is not None and not self.wants_badge:
-            return False
-        result = self.slip.typed(text, self.shop.find, self.shop.crew.by)
-        return self._took(result)
+        if read_badge(text) is not None:
+            return self.scanned(text)
+        return self._took(self.slip.typed(text, self.shop.find, self.shop.crew.by))
 
     def scanned(self, text: str) -> bool:
         """A scan into the open slip. False where it may be a badge for who logs, or a word."""
@@ -264,6 +251,7 @@ class Desk:
             return
         self.slip = before
         self.keep()
+        self.see_ply()
 
     def same_again(self) -> None:
         """The slip as it was logged last, but for what was measured."""
@@ -279,13 +267,25 @@ class Desk:
         self.keep()
 
     def press_in_field(self) -> None:
-        """A key went into the line while a slip is open: the first one for the second component is time zero."""
+        """A key went into the line of an open slip: for the second component, the first is time zero."""
         slip = self.slip
         if slip is None or slip.kind != "mix" or slip.stamped_at is not None or slip.current is None:
             return
         other = _SECOND_OF.get(slip.current.word)
         if other is not None and slip.value(other):
             self.stamp()
+            self._stamped_by_press = True
+
+    def was_scan(self) -> None:
+        """The keys were a reader's: what it sent says itself whether the cup was poured."""
+        if self._stamped_by_press and self.slip is not None and self.slip.kind == "mix":
+            self.slip = replace(self.slip, stamped_at=None)
+            self.keep()
+        self._stamped_by_press = False
+
+    def was_typed(self) -> None:
+        """A person typed: the press that stamped the cup stands."""
+        self._stamped_by_press = False
 
     def stamp(self) -> None:
         """Time zero of the cup that is being mixed, onto the disk at once."""
@@ -307,7 +307,17 @@ class Desk:
             if both:
                 self.slip = replace(result, stamped_at=self.shop.now())
         self.keep()
+        self.see_ply()
         return True
+
+    def see_ply(self) -> None:
+        """The ply that an open lay slip is about, by what stands in it and in the book now."""
+        slip, stock = self.slip, self.shop.stock
+        if slip is None or stock is None or slip.kind != "lay":
+            return
+        piece, step = slip.value("piece"), slip.value("step")
+        ply = look_at_ply(stock, piece, self.shop.now(), int(step) if step else None) if piece else None
+        self.slip = replace(slip, ply=ply)
 
     @property
     def wants_badge(self) -> bool:
@@ -321,53 +331,20 @@ class Desk:
     def weigh(self, text: str, *, scanned: bool) -> bool:
         """A reading for the thing in hand; True where the text was one."""
         stock, thing = self.shop.stock, self.hand
-        if stock is None or thing is None or thing.kind not in _WEIGHED:
+        if stock is None or thing is None:
             return False
-        unit = None if scanned and not _looks_read(text) else self.weigh_unit
-        written = "; ".join(with_unit(part, unit) for part in split_quantities(text))
-        try:
-            readings = [read_quantity(part, Dimension.MASS) for part in written.split(";")]
-        except LedgerError:
-            return False
-        got = sum(readings) / len(readings)
-        judged = judge_reading(stock, thing.name, got, self._scale(stock))
-        self.reading = Reading(text=written, judged=judged)
-        return True
-
-    @property
-    def weigh_unit(self) -> str:
-        """The unit of a bare reading."""
-        return "g" if self.shop.units is Display.METRIC else "lb"
-
-    def weigh_fields(self) -> dict[str, str]:
-        """The reading as an entry's fields."""
-        if self.reading is None or self.hand is None:
-            return {}
-        stock = self.shop.stock
-        scale = None if stock is None else self._scale(stock)
-        fields = {"what": self.hand.number or self.hand.name, "reading": self.reading.text}
-        return {**fields, "scale": scale} if scale else fields
+        scale = scale_in_use(stock, self.shop.now())
+        reading = read_scale(stock, thing, text, self.shop.units, scale, scanned=scanned)
+        if reading is not None:
+            self.reading = reading
+        return reading is not None
 
     def judge_slip(self) -> Judged | None:
         """The open weigh slip's mean reading held against what was expected."""
         slip, stock = self.slip, self.shop.stock
-        if slip is None or stock is None or slip.kind != "weigh" or not slip.value("reading"):
-            return None
-        thing = self.shop.find(slip.value("what"))
-        if thing is None or slip.value("present") or slip.value("missing"):
-            return None
-        try:
-            readings = [read_quantity(one, Dimension.MASS) for one in slip.value("reading").split(";")]
-            tare = read_quantity(slip.value("tare"), Dimension.MASS) if slip.value("tare") else 0.0
-        except LedgerError:
-            return None
-        got = sum(readings) / len(readings) - tare
-        return judge_reading(stock, thing.name, got, slip.value("scale") or None)
+        return None if slip is None or stock is None else judge_slip(slip, stock, self.shop.find)
 
-    def _scale(self, stock: Stock) -> str | None:
-        return propose_entry(stock, "weigh", None, self.shop.now()).values.get("scale")
-
-    # -- what others did
+    # -- what others did, and clocks
 
     def see_others(self) -> tuple[Change, ...]:
         """Entries by others since the last look; those the open slip leans on are put on it."""
@@ -393,27 +370,6 @@ class Desk:
         self.slip = replace(self.slip, changes=())
         self.shop.say("ok", "looked at; the slip can be logged")
 
-    # -- what stands below a slip
-
-    def foot(self, cups: tuple[Cup, ...]) -> tuple[tuple[str, str], ...]:
-        """Lines under the fields, each with its sign."""
-        slip, stock = self.slip, self.shop.stock
-        if slip is None:
-            return ()
-        lines = [
-            ("LOOK", f"{change.by} {change.at.astimezone():%H:%M}: {change.says}")
-            for change in slip.changes[-2:]
-        ]
-        if slip.changes:
-            lines.append(("", "type looked (or scan its tag) before it is logged"))
-        if slip.kind == "mix" and stock is not None:
-            advice = plan_pour(stock, slip.values)
-            if advice is not None:
-                lines.append((advice.sign, advice.says))
-        if slip.ply is not None:
-            lines += _ply_foot(slip, cups)
-        return tuple(lines)
-
     def cups(self, cups: tuple[Cup, ...]) -> tuple[Cup, ...]:
         """The cups of the book with those that are being mixed, by the clock of now."""
         stock, now = self.shop.stock, self.shop.now()
@@ -424,38 +380,3 @@ class Desk:
             if slip.kind == "mix" and slip.stamped_at is not None and stock is not None
         )
         return run_clocks((*mixing, *cups), now)
-
-
-def completes(field: Field) -> bool:
-    """Whether a field can be completed from what is open."""
-    return field.mints is None and bool(field.things or field.choices)
-
-
-def _looks_read(text: str) -> bool:
-    # The code on a package is digits too; a scale's reading is short, or has a point or a sign.
-    return not is_number(text) or len(text.strip()) <= 5 or any(mark in text for mark in "+-.,")
-
-
-def _ply_foot(slip: Slip, cups: tuple[Cup, ...]) -> list[tuple[str, str]]:
-    ply = slip.ply
-    if ply is None or ply.step is None:
-        return []
-    lines: list[tuple[str, str]] = []
-    named = {part.split()[0].upper() for part in slip.value("batches").split(";") if part.strip()}
-    chosen = tuple(cup for cup in cups if cup.number.upper() in named)
-    if ply.needs_kg:
-        short = sum(max(0.0, cup.left_kg or 0.0) for cup in chosen) < ply.needs_kg
-        past = any(cup.past for cup in chosen)
-        sign = "STOP" if past else "LOOK" if short else "ok"
-        lines.append((sign, covering(ply.needs_kg, chosen)))
-    laid = 1000 * ply.resin_laid_kg
-    planned = "" if ply.resin_planned_kg is None else f"   {1000 * ply.resin_planned_kg:.0f} g in the plan"
-    lines.append(("", f"resin  {laid:.0f} g laid{planned}"))
-    figures = [
-        f"{value:.2f} kg {word}"
-        for value, word in ((ply.calculated_kg, "calc"), (ply.estimated_kg, "est"))
-        if value is not None
-    ]
-    if figures:
-        lines.append(("", f"piece  {'   '.join(figures)}"))
-    return lines

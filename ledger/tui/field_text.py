@@ -1,4 +1,4 @@
-"""What fits into a field of a slip, and how it then stands there. Names are looked up by the caller's function."""
+"""What fits into a field of a slip, and how it then stands there; the caller looks names up."""
 
 from __future__ import annotations
 

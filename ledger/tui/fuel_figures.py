@@ -45,7 +45,7 @@ def figures_text(drawn: TankDrawn, now: TankNow, display: Display, room: Room) -
         rule,
         *_trapped(now, display, room),
         rule,
-        *_holds(drawn, display),
+        *_holds(drawn, display, room),
     ]
     for row in rows:
         row.truncate(room.width)
@@ -69,13 +69,11 @@ def _standing(now: TankNow, display: Display, room: Room) -> list[Text]:
         Text(shortened(f"{name}  {' '.join(pushed)}".rstrip(), room.width)),
         Text(f"in tank {held:>9} {mass:>10}"),
     ]
-    if now.level_at_outlet_m is None and now.cg_m is None:
+    if now.outlet_wl_m is None and now.cg_m is None:
         why = "empty" if now.asked.quantity_m3 <= 0.0 else "less than trapped: which"
         return [*rows, Text(why), Text("" if why == "empty" else "cell it is in is not known")]
-    level = show(now.level_at_outlet_m, Dimension.LENGTH, display)
-    rows.append(
-        Text(f"level {level} at outlet" if now.level_at_outlet_m is not None else "no level at an outlet")
-    )
+    level = show(now.outlet_wl_m, Dimension.LENGTH, display)
+    rows.append(Text("no level at an outlet" if now.outlet_wl_m is None else f"level WL {level} at outlet"))
     if now.cg_m is None:
         return [*rows, Text("CG not known")]
     fs, bl = (shown_number(value, Dimension.LENGTH, display) for value in now.cg_m[:2])
@@ -92,29 +90,35 @@ def _trapped(now: TankNow, display: Display, room: Room) -> list[Text]:
         head.append("  STOP", style=room.signs.stop)
         return [
             head,
-            Text(f"{clean(worst.cell)} holds {worst.pockets} pockets"),
+            Text(shortened(f"{worst.cell} holds {worst.pockets} pockets", room.width)),
             Text("not counted: see findings"),
             Text(),
         ]
-    freed = worst.frees_lower_1mm_m3
-    moves = (
-        "no hole to move frees it" if freed is None else f"1 mm lower frees {small_volume(freed, display)}"
+    most = f"{worst.cell} {trapped_text(worst.trapped_m3, display)}"
+    head.append(
+        f"{shortened(most, room.width - len(head.plain) - 2):>{room.width - len(head.plain)}}", style=""
     )
-    return [
-        head,
-        Text(shortened(f"most in {worst.cell}, {trapped_text(worst.trapped_m3, display)}", room.width)),
-        Text(shortened(behind(worst.trapped_by), room.width)),
-        Text(moves),
-    ]
+    lower, wider = worst.frees_lower_1mm_m3, now.frees_wider_10pc_m3
+    moves = [Text("no hole to move frees it"), Text()]
+    if lower is not None and wider is not None:
+        moves = [Text(_worth("1 mm lower", lower, display)), Text(_worth("10 % wider", wider, display))]
+    return [head, Text(shortened(behind(worst.trapped_by), room.width)), *moves]
 
 
-def _holds(drawn: TankDrawn, display: Display) -> list[Text]:
+def _worth(move: str, freed_m3: float, display: Display) -> str:
+    return f"{move} {'frees' if freed_m3 >= 0.0 else 'costs'} {small_volume(abs(freed_m3), display)}"
+
+
+def _holds(drawn: TankDrawn, display: Display, room: Room) -> list[Text]:
     fuel = drawn.fuel
     worst = "" if fuel.governing_attitude is None else f"worst at {clean(fuel.governing_attitude)}"
+    capacity = f"capacity {show(fuel.capacity_m3, Dimension.VOLUME, display):>9}"
+    if fuel.caught_air_m3:
+        capacity += f"  o {trapped_text(fuel.caught_air_m3, display)}"
     return [
-        Text(f"capacity {show(fuel.capacity_m3, Dimension.VOLUME, display):>9}"),
+        Text(capacity),
         Text(f"usable   {usable_text(fuel.usable_m3, display):>9}  COMPUTED"),
-        Text(worst),
+        Text(shortened(worst, room.width)),
     ]
 
 
@@ -156,10 +160,12 @@ def map_text(
     pitches_deg: Sequence[float],
     rolls_deg: Sequence[float],
     trapped_m3: Sequence[Sequence[float | None]],
+    *,
+    most_m3: float,
     display: Display,
     room: Room,
 ) -> Text:
-    """What stays in the tank at each nose and roll; the worst is in the sign of trapped."""
+    """What stays in the tank at each nose and roll: `all` of it, or litres; the worst has the sign."""
     unit = shown_unit(Dimension.VOLUME, display)
     column = min(10, (room.width - _MAP_NOSE) // max(1, len(rolls_deg)))
     rows = [
@@ -171,14 +177,16 @@ def map_text(
         row = Text(f"{_short_nose(pitch):<{_MAP_NOSE}}")
         for value in line:
             number = "pockets"
-            if value is not None:
+            if value is not None and value >= most_m3:
+                number = "all"
+            elif value is not None:
                 number = shown_number(value, Dimension.VOLUME, display, rounding=Rounding.UP)
             worst = value is not None and value >= max(known) * (1.0 - 1e-9)
             row.append(
                 f"{number + (' #' if worst else ''):>{column}}", style=room.signs.trapped if worst else ""
             )
         rows.append(row)
-    rows.append(Text("# worst shown; the plan's own attitudes decide usable", style=room.signs.quiet))
+    rows.append(Text("# worst; the plan's attitudes decide usable", style=room.signs.quiet))
     for row in rows:
         row.truncate(room.width)
     rows = rows[: room.height]

@@ -15,14 +15,19 @@ from ledger.tui.room import Room
 
 def outline_text(
     outlines: Mapping[str, Sequence[tuple[float, float]]], marks: Sequence[HoleMark], room: Room
-) -> Text:
-    """Butt line to the right, station downwards, in exactly the rows of the room."""
+) -> tuple[Text, float]:
+    """Butt line to the right, station downwards, in exactly the rows of the room.
+
+    With it comes how far lengths are stretched, 1 for true.
+    """
     corners = [(bl, -fs) for outline in outlines.values() for fs, bl in outline]
     canvas = [[" "] * room.width for _ in range(room.height)]
+    stretch = 1.0
     if corners:
         low = (min(u for u, _ in corners), min(w for _, w in corners))
         high = (max(u for u, _ in corners), max(w for _, w in corners))
         scale = scale_for(low, high, room.width, room.height)
+        stretch = scale.stretch
         for outline in outlines.values():
             for (fs0, bl0), (fs1, bl1) in pairwise((*outline, *outline[:1])):
                 draw_wall(canvas, (bl0, -fs0, bl1, -fs1), scale)
@@ -37,7 +42,7 @@ def outline_text(
         for mark in marks:
             column = int((mark.at_m[1] - scale.left_m) / scale.column_m)
             _put(canvas, column, int((scale.top_m + mark.at_m[0]) / scale.row_m), mark.sign[:1])
-    return Text("\n").join([Text("".join(row)) for row in canvas])
+    return Text("\n").join([Text("".join(row)) for row in canvas]), stretch
 
 
 def _put(canvas: list[list[str]], column: int, row: int, words: str) -> None:

@@ -210,7 +210,8 @@ class _Canvas:
         wide, high = right - left - 1, bottom - top - 1
         if wide < 1 or high < 1:
             return
-        name = clean(box.cell)[:wide]
+        # The mark stands inside: on the wall it would take the place of a hole.
+        name = f"{'>' if chosen else ''}{clean(box.cell)}"[:wide]
         percent = _percent(cell, wide if high > 1 else wide - len(name))
         free = [(column, row) for row in range(high) for column in range(wide)]
         taken = {(column, 0) for column in range(len(name))}
@@ -227,8 +228,6 @@ class _Canvas:
         if percent:
             sign = self.room.signs.trapped if percent.endswith(TRAPPED) else ""
             self.put(right - len(percent), bottom - 1, percent, sign)
-        if chosen:
-            self.put(left, top + 1, ">", self.room.signs.mark)
 
     def mark(self, mark: HoleMark, footprints: Mapping[str, Footprint]) -> None:
         """A hole on the wall it goes through; one that leads outside on the nearest side of its cell."""
@@ -271,7 +270,7 @@ class _Canvas:
 
     def _first_free(self, places: Sequence[tuple[int, int]], sign: str) -> None:
         for column, row in places:
-            if all(self.rows[row][column + offset] in "|->" for offset in range(len(sign))):
+            if all(self.rows[row][column + offset] in "|-" for offset in range(len(sign))):
                 self.put(column, row, sign, self.room.signs.head)
                 return
 

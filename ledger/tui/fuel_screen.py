@@ -4,30 +4,37 @@ from __future__ import annotations
 
 from datetime import datetime
 
+from rich.text import Text
 from textual.app import ComposeResult
 from textual.containers import Horizontal, Vertical
 
-from ledger.operations.look_at_tank import TankNow, TanksView, look_at_tanks
+from ledger.operations.look_at_tank import TankDrawn, TankNow, TanksView, look_at_tanks
 from ledger.operations.open_build import Build
+from ledger.reports.fuel_lines import CAUTION
 from ledger.reports.plain import clean, shortened
 from ledger.tui.area import Area
 from ledger.tui.bench_drawing import rule
+from ledger.tui.fuel_asking import PITCHES_DEG, ROLLS_DEG
 from ledger.tui.fuel_figures import figures_text, gains_text, map_text, small_volume, tilt_words
 from ledger.tui.fuel_outline import outline_text
 from ledger.tui.fuel_plan_view import plan_text
 from ledger.tui.fuel_section import scale_of, section_text
-from ledger.tui.fuel_turning import PITCHES_DEG, ROLLS_DEG, FuelTurning
+from ledger.tui.fuel_turning import NO_TANK, FuelTurning
 from ledger.tui.room import Room
-from ledger.units import Dimension, show
+from ledger.units import Dimension, Display, show
 
 _LEFT, _WIDE_LEFT = 51, 104
 _PLAN, _WIDE_PLAN, _WIDE_OUTLINE = 7, 10, 9
 _FIGURES = 14
 _MAP = 12
-_KEYS = (
-    "arrows tilt 1 deg   PgUp PgDn 1 L   Tab arrows move: tilt, fuel, cut, cell",
-    "Home level   End next attitude   Enter openings by litres   Space map   tank",
-)
+_MOVES = {
+    "tilt": "arrows tilt 1 deg",
+    "fuel": "arrows {step} or a tenth",
+    "cut": "arrows move the cut",
+    "cell": "arrows choose a cell",
+}
+_KEYS = "Home level  End next attitude  Enter openings by litres  Space map  tank: next"
+_BACK = "Esc or Enter back to the drawing  Space map  openings"
 
 
 class FuelScreen(FuelTurning):
@@ -84,7 +91,7 @@ class FuelScreen(FuelTurning):
     def show(self, view: TanksView) -> None:
         """The same tank as before where it is still there, at the same tilt and quantity."""
         self.tank_at = min(self.tank_at, max(0, len(view.tanks) - 1))
-        self.map = {}
+        self.map = {drawn: found for drawn, found in self.map.items() if drawn in view.tanks}
         if view.tanks:
             self.take_tank(keep=self.asked is not None)
         self.draw_still()
@@ -101,17 +108,23 @@ class FuelScreen(FuelTurning):
             return
         width, left = self.app.size.width, self._left_width()
         drawn, many = self.drawn, 0 if self.view is None else len(self.view.tanks)
-        words = "no tanks in the plan"
+        words = NO_TANK
         if drawn is not None:
             words = f"{clean(drawn.tank.name).upper()} tank, {self.tank_at + 1} of {many}"
-        headline = f"{words}   COMPUTED: a flow test decides   measured: none yet"
+            words += f"   {CAUTION}   measured: none yet"
+        headline = clean(words)
         self.query_one("#fuel-headline", Area).draw(shortened(headline, width))
+        if drawn is None:
+            for name in ("plan", "outline", "outline-title", "cut", "cut-title", "figures", "gains", "map"):
+                self.query_one(f"#fuel-{name}", Area).draw("")
         self.query_one("#fuel-rule-top", Area).draw(rule(width, self.lines, [(left, self.lines.tee_down)]))
         self.query_one("#fuel-rule-bottom", Area).draw(rule(width, self.lines, [(left, self.lines.tee_up)]))
         self.query_one("#fuel-bar", Area).draw("\n".join([self.lines.v] * self.app.size.height))
         for name in ("gains", "map"):
             self.query_one(f"#fuel-rule-{name}", Area).draw(rule(width - left - 1, self.lines))
-        self.query_one("#fuel-keys", Area).draw("\n".join(_KEYS))
+        step = "0.25 gal" if self.shown_in is Display.US else "1 L"
+        keys = f"{_MOVES[self.area].format(step=step)}   PgUp PgDn {step}   Tab next: tilt, fuel, cut, cell"
+        self.query_one("#fuel-keys", Area).draw(f"{keys}\n{_BACK if self.listed else _KEYS}")
         moves = f"arrows move: {self.area.upper()}"
         head = f"FROM ABOVE, nose to the top{moves:>{left - 28}}"
         self.query_one("#fuel-above", Area).draw(head)
@@ -146,8 +159,9 @@ class FuelScreen(FuelTurning):
         figures = self._room(self.app.size.width - left - 1, _FIGURES)
         self.query_one("#fuel-figures", Area).draw(figures_text(drawn, now, self.shown_in, figures))
         if self.wide:
-            self.query_one("#fuel-outline-title", Area).draw("TRUE OUTLINE, holes where they are")
-            outline = outline_text(drawn.outlines, drawn.marks, self._room(left, _WIDE_OUTLINE))
+            outline, stretch = outline_text(drawn.outlines, drawn.marks, self._room(left, _WIDE_OUTLINE))
+            title = f"TRUE OUTLINE, holes where they are{_stretched('length', stretch)}"
+            self.query_one("#fuel-outline-title", Area).draw(title)
             self.query_one("#fuel-outline", Area).draw(outline)
         self.draw_beside()
 
@@ -157,21 +171,21 @@ class FuelScreen(FuelTurning):
         place = f"{'BL' if cut.axis == 1 else 'FS'} {show(cut.at_m, Dimension.LENGTH, self.shown_in)}"
         ends = "front, rear" if cut.axis == 1 else "left, right"
         stretch = scale_of(cut, room.width, room.height).stretch
-        tall = f", height x{stretch:.1f}" if abs(stretch - 1.0) > 0.05 else ""
-        return shortened(f"CUT {place} {through} ({ends}{tall})", room.width)
+        # The names come last: what does not fit of them stands in the drawing above.
+        return shortened(f"CUT {place} ({ends}{_stretched('height', stretch)}) {through}", room.width)
 
     def draw_beside(self) -> None:
         """Openings and map: beside the drawing where there is room, else in its place."""
         drawn = self.drawn
         if drawn is None or not self.is_mounted:
             return
-        found = self.map.get(drawn.tank.name)
+        found = self.map.get(drawn)
         if self.wide:
             side, height = self.app.size.width - self._left_width() - 1, self.app.size.height
             gains = gains_text(self.gains, self.shown_in, self._room(side, height - 5 - 5 - _FIGURES - 14))
             self.query_one("#fuel-gains", Area).draw(gains)
             if found is not None:
-                drawing = map_text(PITCHES_DEG, ROLLS_DEG, found, self.shown_in, self._room(side, 12))
+                drawing = self._map_text(drawn, found, self._room(side, 12))
                 self.query_one("#fuel-map", Area).draw(drawing)
         if self.listed == "openings":
             listed = self._room(self._left_width(), self.app.size.height - 10)
@@ -179,8 +193,13 @@ class FuelScreen(FuelTurning):
         elif self.listed == "map":
             listed = self._room(self._left_width(), self.app.size.height - 10)
             words = "reckoning the map"
-            text = words if found is None else map_text(PITCHES_DEG, ROLLS_DEG, found, self.shown_in, listed)
+            text = words if found is None else self._map_text(drawn, found, listed)
             self.query_one("#fuel-listed", Area).draw(text)
+
+    def _map_text(self, drawn: TankDrawn, found: tuple[tuple[float | None, ...], ...], room: Room) -> Text:
+        return map_text(
+            PITCHES_DEG, ROLLS_DEG, found, most_m3=drawn.most_m3, display=self.shown_in, room=room
+        )
 
     def _left_width(self) -> int:
         return _WIDE_LEFT if self.wide else _LEFT
@@ -205,3 +224,7 @@ class FuelScreen(FuelTurning):
             "" if now.trapped_m3 is None else f"trapped {small_volume(now.trapped_m3, self.shown_in)}",
             "" if worst is None else worst.cell,
         )
+
+
+def _stretched(what: str, times: float) -> str:
+    return f", {what} x{times:.1f}" if abs(times - 1.0) > 0.05 else ""

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 
 from rich.text import Text
 
-from ledger.operations.look_at_tank import Cut, CutCell
+from ledger.operations.cut_tank import Cut, CutCell
 from ledger.tui.fuel_plan_view import FEEDS, TRAPPED
 from ledger.tui.room import Room
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import datetime
 from pathlib import Path
 
@@ -59,6 +59,14 @@ def request_of(slip: Slip, crew: Crew) -> Request:
 def request_of_reading(fields: Mapping[str, str], crew: Crew) -> Request:
     """A weighing without a slip."""
     return Request(kind="weigh", fields={**fields, **_others(crew)}, by=crew.by or "")
+
+
+def marked(request: Request, mark: str | None) -> Request:
+    """The request with a mark in its remark. A correction keeps its own time, so it needs none."""
+    if mark is None or request.corrects is not None:
+        return request
+    remark = "; ".join(part for part in (request.fields.get("remark", ""), mark) if part)
+    return replace(request, fields={**request.fields, "remark": remark})
 
 
 def write(book: Path, request: Request, now: Callable[[], datetime], *, preview: bool = False) -> Outcome:

@@ -36,25 +36,26 @@ class Messages:
         return self.said[-1] if self.said else None
 
     def drawn(self, width: int, signs: Signs) -> Text:
-        """The newest lines. A long newest one takes both."""
-        rows: list[Text] = []
-        for message in reversed(self.said[-_SHOWN:]):
-            rows[:0] = _rows_of(message, width, signs)
-            if len(rows) >= _SHOWN:
-                break
-        return Text("\n").join(rows[-_SHOWN:] if len(rows) <= _SHOWN else rows[:_SHOWN])
+        """A long newest one takes both rows; above a short one the one before is cut to a row."""
+        if not self.said:
+            return Text()
+        newest = _rows_of(self.said[-1], width, signs, _SHOWN)
+        if len(newest) == 1 and len(self.said) > 1:
+            newest = [*_rows_of(self.said[-2], width, signs, 1), *newest]
+        return Text("\n").join(newest)
 
 
-def _rows_of(message: Message, width: int, signs: Signs) -> list[Text]:
+def _rows_of(message: Message, width: int, signs: Signs, most: int) -> list[Text]:
     room = max(8, width - 6)
     words = " ".join(message.text.split())
     first, rest = _broken(words, room)
     row = Text()
     row.append(message.sign, style=signs.of(message.sign))
     row.append(" " * (6 - len(message.sign)))
-    row.append(first)
-    if not rest:
+    if not rest or most == 1:
+        row.append(f"{first[: room - 2]}.." if rest else first)
         return [row]
+    row.append(first)
     second, left = _broken(rest, room)
     return [row, Text(" " * 6 + (f"{second[: room - 2]}.." if left else second))]
 

@@ -111,10 +111,27 @@ class Slip:
     def missing(self) -> tuple[str, ...]:
         """Fields that must still be filled; of a group of alternatives, its first."""
         bare = [field.word for field in self.fields if field.required and not self.value(field.word)]
-        for group in self.declared.one_of:
-            if not any(self.value(word) for word in group):
-                bare.append(group[0])
-        return tuple(bare)
+        open_groups = (g for g in self.declared.one_of if not any(self.value(word) for word in g))
+        return (*bare, *(group[0] for group in open_groups))
+
+    @property
+    def cup_is_short(self) -> bool:
+        """Whether the cups in it hold less than the ply in hand needs, so that the next one joins them."""
+        if self.ply is None or not self.ply.needs_kg or not self.value("batches"):
+            return False
+        named = {part.split()[0].upper() for part in self.value("batches").split(";") if part.strip()}
+        left = [cup.left_kg for cup in self.ply.cups if cup.number.upper() in named]
+        return len(left) == len(named) and sum(max(0.0, one or 0.0) for one in left) < self.ply.needs_kg
+
+    def _emptied_cups(self) -> str:
+        """The cups named so far, each with all that was left in it: only then is a next one taken.
+
+        Without the grams the ply would be halved between the cups, and the first over-drawn.
+        """
+        left = {cup.number.upper(): cup.left_kg for cup in (self.ply.cups if self.ply is not None else ())}
+        parts = [part.strip() for part in self.value("batches").split(";") if part.strip()]
+        rest = {part: 1000 * (left.get(part.upper()) or 0.0) for part in parts}
+        return "; ".join(f"{part} {grams:.1f} g" if grams >= 0.1 else part for part, grams in rest.items())
 
     def in_group(self, word: str) -> bool:
         """Whether the field is one of several of which one is wanted."""
@@ -127,6 +144,21 @@ class Slip:
         place = max(0, min(len(self.fields), self.at_field + step))
         return replace(self, at_field=place, strayed=True)
 
+    def gone_on(self) -> Slip:
+        """The mark on the next field that nobody filled, past what stands there from last time."""
+        place = self.at_field + 1
+        while place < len(self.fields) and self.fields[place].word in self.proposed:
+            place += 1
+        return replace(self, at_field=place, strayed=False)
+
+    def place_after(self, place: int) -> int:
+        """The place of the next field, past alternatives to what is filled already."""
+        for after in range(place + 1, len(self.fields)):
+            groups = [group for group in self.declared.one_of if self.fields[after].word in group]
+            if not any(self.value(word) for group in groups for word in group):
+                return after
+        return len(self.fields)
+
     def moved_to(self, word: str) -> Slip:
         """The mark on a field by name."""
         place = next((i for i, field in enumerate(self.fields) if field.word == word), self.at_field)
@@ -138,7 +170,8 @@ class Slip:
         if missing:
             return self.moved_to(missing[0])
         # Never on `log`: the Enter that opened the slip may still be held down.
-        return self.moved_to("lots" if self.kind == "lay" else self.fields[0].word)
+        first = "batches" if self.cup_is_short else "lots"
+        return self.moved_to(first if self.kind == "lay" else self.fields[0].word)
 
     # -- filling
 
@@ -182,9 +215,11 @@ class Slip:
         taken = fit(field, text, self.unit(field), find)
         if isinstance(taken, Misfit):
             return Refusal(text=f"{_label(field)}: {taken.what}; {taken.do}")
+        if field.word == "batches" and self.cup_is_short and taken not in self.value(field.word):
+            taken = f"{self._emptied_cups()}; {taken}"
         if takes_person(field) and by is not None and taken == by:
             return Refusal(text=f"{taken} logs: somebody else must have seen it")
-        return replace(self.put(field.word, taken).moved(1), strayed=False)
+        return self.put(field.word, taken).gone_on()
 
     def scanned(self, text: str, find: Find, by: str | None) -> Slip | Refusal:
         """A scan: into the field the mark is on, or, while nobody moved the mark, where it belongs next."""
@@ -228,17 +263,19 @@ class Slip:
 
     def _filled(self, field: Field, taken: str) -> Slip:
         before = self.value(field.word)
-        if field.many and before and field.word not in self.proposed:
+        adds = field.word not in self.proposed or (field.word == "batches" and self.cup_is_short)
+        if field.many and before and adds:
             already = (
                 [part.split()[0] for part in before.split(";")] if field.takes is not Takes.QUANTITY else []
             )
             if taken in already:
                 return self
-            taken = f"{before}; {taken}"
+            joined = self._emptied_cups() if field.word == "batches" and self.cup_is_short else before
+            taken = f"{joined}; {taken}"
         slip = self.put(field.word, taken)
         place = self.fields.index(field)
         # Scans of more pieces, cups or readings may follow, and so may the next field.
-        return replace(slip, at_field=place if field.many else place + 1, strayed=False)
+        return replace(slip, at_field=place if field.many else slip.place_after(place), strayed=False)
 
     def _is_mass(self, field: Field, text: str) -> bool:
         last = self.value(field.word).rsplit(";", 1)[-1].split()
@@ -250,7 +287,7 @@ class Slip:
         taken = fit(field, joined, self.unit(field), lambda name: _known(field, name))
         if isinstance(taken, Misfit):
             return Refusal(text=f"{_label(field)}: {taken.what}; {taken.do}")
-        return replace(self.put(field.word, joined).moved(1), strayed=False)
+        return self.put(field.word, joined).gone_on()
 
     def _why_not(self, text: str, thing: FoundThing | None, find: Find) -> str:
         badge = read_badge(text)

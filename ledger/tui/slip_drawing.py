@@ -19,6 +19,7 @@ from ledger.units import Display, show_small_mass
 Foot = Sequence[tuple[str, str]]
 
 _WORD = 17
+_MOST_FOOT = 2
 _OFFERS: dict[ThingKind, str] = {
     ThingKind.PIECE: "lay cut bond coat trim build_up fit weigh hold scrap note trace",
     ThingKind.PART: "cut lay bond weigh note",
@@ -39,7 +40,7 @@ _OFFERS: dict[ThingKind, str] = {
 def slip_text(slip: Slip, typing: str, foot: Foot, now: datetime, room: Room) -> Text:
     """Head, fields and foot; the fields scroll so that the marked one is in sight."""
     head = _head(slip, now, room)
-    below = [_foot_row(sign, words, room) for sign, words in foot]
+    below = [row for sign, words in foot for row in _foot_rows(sign, words, room)]
     rows = [_field_row(slip, place, typing, room) for place in range(len(slip.fields) + 1)]
     places = max(3, room.height - len(head) - len(below))
     top = max(0, min(slip.at_field - places + 2, len(rows) - places))
@@ -53,7 +54,7 @@ def hand_text(thing: FoundThing, lines: Foot, room: Room) -> Text:
     rows = [Text(cut(f"{thing.kind.value.upper()}  {thing.name}", room.width), room.signs.head)]
     rows += [Text(f"  {line}") for line in broken(thing.says, room.width - 2)[:3]]
     rows.append(Text())
-    rows += [_foot_row(sign, words, room) for sign, words in lines]
+    rows += [row for sign, words in lines for row in _foot_rows(sign, words, room)]
     rows.append(Text())
     rows.append(Text("  or type a word:", room.signs.quiet))
     rows += [Text(f"  {line}") for line in broken(_OFFERS.get(thing.kind, "note"), room.width - 2)]
@@ -155,7 +156,8 @@ def _field_row(slip: Slip, place: int, typing: str, room: Room) -> Text:
         row.append(f"..{typing[-(space - 3) :]}_" if len(typing) >= space else f"{typing}_", style="")
         return row
     value = slip.value(field.word)
-    note = slip.notes.get(field.word, "") or (field.tip if here and not value else "")
+    standing = "now" if field.word == "at" and not value else ""
+    note = slip.notes.get(field.word, "") or (field.tip if here and not value else standing)
     shown = cut(value or ("____" if here or field.required else ""), space)
     row.append(shown, style="bold" if value and field.word not in slip.proposed else "")
     left = space - len(shown) - 2
@@ -166,24 +168,31 @@ def _field_row(slip: Slip, place: int, typing: str, room: Room) -> Text:
 
 def _log_row(slip: Slip, here: bool, room: Room) -> Text:
     row = Text(f"{'> ' if here else '  '}{'log':<{_WORD}} ", style=room.signs.mark if here else "")
-    wanting = ", ".join(_label(word) for word in slip.missing)
+    wanting = ", ".join(label_of(word) for word in slip.missing)
     row.append(cut(f"wants {wanting}" if wanting else "Enter logs it", room.width - len(row.plain)), style="")
     return row
 
 
-def _foot_row(sign: str, words: str, room: Room) -> Text:
-    row = Text("  ")
+def _foot_rows(sign: str, words: str, room: Room) -> list[Text]:
+    indent = 2 + (len(sign) + 1 if sign else 0)
+    # Figures stand in columns by their spaces; only what is too long is broken into words.
+    space = room.width - indent
+    lines = [words] if len(words) <= space else broken(words, space)
+    if len(lines) > _MOST_FOOT:
+        lines = [*lines[: _MOST_FOOT - 1], cut(" ".join(lines[_MOST_FOOT - 1 :]), space)]
+    first = Text("  ")
     if sign:
-        row.append(sign, style=room.signs.of(sign))
-        row.append(" ", style="")
-    row.append(cut(words, room.width - len(row.plain)), style="")
-    return row
+        first.append(sign, style=room.signs.of(sign))
+        first.append(" ", style="")
+    first.append(lines[0] if lines else "", style="")
+    return [first, *(Text(" " * indent + line) for line in lines[1:])]
 
 
 def _labelled(slip: Slip, field: Field) -> str:
     unit = slip.unit(field)
-    return _label(field.word) if unit is None else f"{_label(field.word)} [{unit}]"
+    return label_of(field.word) if unit is None else f"{label_of(field.word)} [{unit}]"
 
 
-def _label(word: str) -> str:
+def label_of(word: str) -> str:
+    """A field's word as a person reads it."""
     return word.replace("_", " ")

@@ -50,6 +50,8 @@ NONE = Theme(
     panel="ansi_default",
     dark=True,
     ansi=True,
+    # The toolkit's own screens name these two, and give them a value only in themes that are not ansi.
+    variables={"ansi-background": "ansi_default", "ansi-foreground": "ansi_default"},
 )
 THEMES = (DARK, LIGHT, NONE)
 

@@ -1,4 +1,4 @@
-"""The trace as rows: what a thing is, how much of it is closed in, links both ways, its entries."""
+"""The trace as rows: what a thing is, how much of it is fitted, links both ways, its entries."""
 
 from __future__ import annotations
 
@@ -53,30 +53,30 @@ def headline_text(view: TraceView, room: Room) -> Text:
     return text
 
 
-def closed_text(view: TraceView, room: Room) -> Text:
-    """In how many pieces, how many closed in, and whether it is on hold."""
+def pieces_text(view: TraceView, room: Room) -> Text:
+    """In how many pieces, how many fitted, and whether it is on hold."""
     if view.trace is None:
         many = len(view.suspects)
         words = "1 thing is" if many == 1 else f"{many} things are"
         return Text(
             f"{words} on hold, or have STOP or LOOK" if many else "ok    nothing is on hold or flagged"
         )
-    many, closed = len(view.pieces), len(view.closed_in)
+    many, fitted = len(view.pieces), len(view.fitted)
     text = Text("")
     if many == 0 and view.trace.kind == "piece":
         if view.fitted_into is None:
             text.append("not fitted yet", style=room.signs.head)
         else:
-            text.append(f"CLOSED IN: in {clean(view.fitted_into)}", style=room.signs.look)
+            text.append(f"FITTED into {clean(view.fitted_into)}", style=room.signs.look)
     elif many == 0:
         text.append("IN no piece", style=room.signs.head)
     else:
         text.append(f"IN {many} {'piece' if many == 1 else 'pieces'}", style=room.signs.head)
-        of_them = "it is" if many == 1 else f"{closed} of them"
-        if closed:
-            text.append(f", {of_them} CLOSED IN", style=room.signs.look)
+        of_them = "it is" if many == 1 else f"{fitted} of them"
+        if fitted:
+            text.append(f", {of_them} FITTED", style=room.signs.look)
         else:
-            text.append(", none closed in", style="")
+            text.append(", none fitted", style="")
         text.append(_grams(view), style="")
     hold = "ON HOLD" if view.on_hold else "NOT ON HOLD: type hold" if view.verdict == "STOP" else ""
     if hold:
@@ -87,43 +87,53 @@ def closed_text(view: TraceView, room: Room) -> Text:
 
 
 def _grams(view: TraceView) -> str:
-    """Mass closed in of mass in pieces; of what only others know, how many are unknown."""
+    """How much of what went straight into pieces is in fitted ones."""
     straight = [one for one in view.pieces if one.mass_kg is not None]
     if not straight:
         return ""
-    closed = sum(one.mass_kg or 0.0 for one in straight if one.closed_in)
+    fitted = sum(one.mass_kg or 0.0 for one in straight if one.fitted)
     whole = sum(one.mass_kg or 0.0 for one in straight)
-    return f": {show_small_mass(closed, view.display)} of {show_small_mass(whole, view.display)}"
+    known = "" if len(straight) == len(view.pieces) else " known"
+    if fitted == 0.0:
+        return f": {show_small_mass(whole, view.display)}{known}"
+    return f": {show_small_mass(fitted, view.display)} of {show_small_mass(whole, view.display)}{known}"
 
 
 def links_text(rows: Sequence[LinkRow], title: str, at: int, display: Display, room: Room) -> Text:
     """One way of the trace; with Tab here the mark chooses a link."""
-    head = f"{'> ' if room.here else ''}{title}"
-    name_width = max(8, room.width - _MASS - _STATE - 1)
+    shown = window(len(rows), at if room.here else 0, room.height - 1)
+    many = "" if len(shown) == len(rows) else f"  {shown.start + 1}-{shown.stop} of {len(rows)}"
+    head = f"{'> ' if room.here else ''}{title}{many}"
+    # A figure is never cut: a lot of 100 kg takes a wider column.
+    masses = (show_small_mass(row.link.mass_kg, display) for row in rows)
+    mass_width = max((_MASS, *(1 + len(mass) for mass in masses)))
+    name_width = max(8, room.width - mass_width - _STATE - 1)
     lines = [
         Text(
-            f"{shortened(head, name_width):<{name_width}}{'mass':>{_MASS}} {'now':<{_STATE}}"[: room.width],
+            f"{shortened(head, name_width):<{name_width}}{'mass':>{mass_width}} {'now':<{_STATE}}"[
+                : room.width
+            ],
             style=room.signs.mark if room.here else room.signs.head,
         )
     ]
     lines += [
-        _link_text(rows[place], place == at and room.here, display, name_width, room)
-        for place in window(len(rows), at if room.here else 0, room.height - 1)
+        _link_text(rows[place], place == at and room.here, display, (name_width, mass_width), room)
+        for place in shown
     ]
     if not rows:
         lines.append(Text("nothing in the record", style=room.signs.quiet))
     return _filled(lines, room)
 
 
-def _link_text(row: LinkRow, marked: bool, display: Display, name_width: int, room: Room) -> Text:
-    link = row.link
+def _link_text(row: LinkRow, marked: bool, display: Display, widths: tuple[int, int], room: Room) -> Text:
+    link, (name_width, mass_width) = row.link, widths
     how = "" if link.how in ("", "by the record") else f" {link.how}"
     name = shortened(f"{'>' if marked else ' '}{'  ' * (row.step - 1)}{link.what}{how}", name_width)
     mass = "" if link.mass_kg is None else show_small_mass(link.mass_kg, display)
-    state = {"fitted": "closed in", "in the plan": "in plan"}.get(link.state, link.state)
+    state = {"in the plan": "in plan"}.get(link.state, link.state)
     bad = state in ("on hold", "expired", "scrapped")
     text = Text(name + " " * (name_width - width_of(name)))
-    text.append(f"{mass:>{_MASS}} ")
+    text.append(f"{mass:>{mass_width}} ")
     text.append((state.upper() if bad else state)[:_STATE], style=room.signs.look if bad else "")
     if marked:
         text.stylize(room.signs.mark)

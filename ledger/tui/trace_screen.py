@@ -20,11 +20,11 @@ from ledger.tui.room import Room
 from ledger.tui.trace_rows import (
     LinkRow,
     begin_text,
-    closed_text,
     entries_text,
     findings_text,
     headline_text,
     links_text,
+    pieces_text,
     rows_of,
     suspects_text,
 )
@@ -71,7 +71,7 @@ class TraceScreen(WorkScreen[TraceView]):
     def compose_body(self) -> ComposeResult:
         """Two headline rows, both ways side by side, entries below."""
         yield Area(id="trace-headline", classes="one-row")
-        yield Area(id="trace-closed", classes="one-row")
+        yield Area(id="trace-pieces", classes="one-row")
         yield Area(id="trace-rule-top", classes="one-row")
         with Horizontal():
             yield Area(id="trace-from")
@@ -105,7 +105,7 @@ class TraceScreen(WorkScreen[TraceView]):
             return
         width, left = self.app.size.width, self._left()
         self.query_one("#trace-headline", Area).draw(headline_text(view, self._room(width, 1)))
-        self.query_one("#trace-closed", Area).draw(closed_text(view, self._room(width, 1)))
+        self.query_one("#trace-pieces", Area).draw(pieces_text(view, self._room(width, 1)))
         lines = self.lines
         self.query_one("#trace-rule-top", Area).draw(rule(width, lines, [(left, lines.tee_down)]))
         joint = lines.cross if self.wide else lines.tee_up
@@ -195,7 +195,7 @@ class TraceScreen(WorkScreen[TraceView]):
             view.trace.what,
             view.verdict,
             f"in {len(view.pieces)} pieces",
-            f"closed {len(view.closed_in)}",
+            f"fitted {len(view.fitted)}",
         )
 
     # -- what actions do
@@ -238,7 +238,8 @@ class TraceScreen(WorkScreen[TraceView]):
             self.ask_again()
 
     def do_start_anew(self) -> None:
-        """To the list of what there is to look into."""
+        """To the list of what there is to look into, the mark on it."""
+        self.go_to_area("went into")
         self._go_to(None)
 
     def _go_to(self, what: str | None) -> None:

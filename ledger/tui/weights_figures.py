@@ -60,8 +60,12 @@ def known_text(total: TotalMass, room: Room) -> Text:
 
 
 def _whole_parts(shares: Sequence[float], space: int) -> list[int]:
-    """Marks for each share, at least one for a share that is not nothing, together at most `space`."""
-    marks = [max(1, int(share * space)) if share > 0.0 else 0 for share in shares]
+    """Marks for each share that fill the space together, at least one for a share that is not nothing."""
+    exact = [share * space for share in shares]
+    marks = [max(1, int(share)) if share > 0.0 else 0 for share in exact]
+    while 0 < sum(marks) < space:
+        most = max((place for place, mark in enumerate(marks) if mark), key=lambda at: exact[at] - marks[at])
+        marks[most] += 1
     while sum(marks) > space and max(marks) > 1:
         marks[marks.index(max(marks))] -= 1
     return marks

@@ -131,7 +131,10 @@ class WeightsScreen(WorkScreen[WeightsView]):
         if row is None:
             return None
         kind = {"assembly": ThingKind.ASSEMBLY, "piece": ThingKind.PIECE}.get(row.kind, ThingKind.PART)
-        return FoundThing(kind=kind, number=None, name=row.key, says=f"{row.kind} {row.key}")
+        if row.kind == "piece" and row.key != row.thing:
+            kind = ThingKind.PART
+        name = row.thing or row.key
+        return FoundThing(kind=kind, number=None, name=name, says=f"{kind.value} {name}")
 
     def take_thing(self, thing: FoundThing) -> bool:
         """A piece, part or assembly that was scanned gets the mark."""

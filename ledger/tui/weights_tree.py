@@ -16,8 +16,10 @@ from ledger.units import Dimension, Display, Rounding, shown_number
 _PLACES = 3
 _BUILT, _MASS, _SPREAD, _BY, _OFF, _FLAG = 7, 9, 6, 4, 8, 5
 _FIXED = _BUILT + 2 * _MASS + _SPREAD + _BY + _OFF + _FLAG
-_HALF = 6
-_LEAST_NAME = 19
+_HALF, _WIDE_HALF = 5, 10
+_WIDE = 90
+_LEAST_NAME = 21
+NO_PARTS = "the plan has no parts: fill parts.csv in its folder, then wingledger adopt BOOK PLAN"
 
 
 def seen_rows(rows: Sequence[WeightRow], opened: AbstractSet[str]) -> tuple[int, ...]:
@@ -57,7 +59,7 @@ def tree_text(view: WeightsView, seen: Sequence[int], at: int, opened: AbstractS
         for place in range(top, min(len(seen), top + room.height))
     ]
     if not rows:
-        rows = [Text("no parts in the plan", style=room.signs.quiet)]
+        rows = [Text(NO_PARTS, style=room.signs.quiet)]
     return Text("\n").join([*rows, *[Text()] * (room.height - len(rows))])
 
 
@@ -89,7 +91,7 @@ def _row_text(view: WeightsView, row: WeightRow, marked: bool, opened: AbstractS
     elif row.key not in opened:
         flag = flag or row.inside
     off = "-" if row.off_kg is None else signed_mass(row.off_kg, display)
-    text = Text(f"{_named(row, marked, opened, _name_width(room))}{_built(row):>{_BUILT}}")
+    text = Text(f"{_named(row, marked, opened, room)}{_built(row):>{_BUILT}}")
     text.append(f"{_mass(row.estimated_kg, display):>{_MASS}}{_mass(row.best_kg, display):>{_MASS}}")
     text.append(f"{_spread(row.best_u_kg, display):>{_SPREAD}}{row.known_by:>{_BY}}{off:>{_OFF}}")
     text.append(" ")
@@ -101,10 +103,13 @@ def _row_text(view: WeightsView, row: WeightRow, marked: bool, opened: AbstractS
     return text
 
 
-def _named(row: WeightRow, marked: bool, opened: AbstractSet[str], width: int) -> str:
+def _named(row: WeightRow, marked: bool, opened: AbstractSet[str], room: Room) -> str:
+    width = _name_width(room)
     mark = ">" if marked else " "
     branch = " " if row.kind == "piece" else "-" if row.key in opened else "+"
-    words = f"{mark}{'  ' * min(row.depth, 4)}{branch} {clean(row.name)}"
+    # In 80 columns the number of a piece is worth more than a deep step.
+    step = " " if room.width < _WIDE else "  "
+    words = f"{mark}{step * min(row.depth, 4)}{branch} {clean(row.name)}"
     if row.kind == "part" and width > _LEAST_NAME + 10:
         words += f"  {clean(row.title)}"
     short = shortened(words, width - 1)
@@ -112,7 +117,9 @@ def _named(row: WeightRow, marked: bool, opened: AbstractSet[str], width: int) -
 
 
 def _built(row: WeightRow) -> str:
-    return row.state if row.kind == "piece" and not row.planned else f"{row.begun}/{row.planned}"
+    if row.kind == "piece" and not row.planned:
+        return "scrap" if row.state == "scrapped" else row.state[: _BUILT - 1]
+    return f"{row.begun}/{row.planned}"
 
 
 def _mass(mass_kg: float | None, display: Display) -> str:
@@ -126,7 +133,7 @@ def _spread(u_kg: float | None, display: Display) -> str:
 
 
 def _half(room: Room) -> int:
-    return _HALF if room.width < 90 else 10
+    return _HALF if room.width < _WIDE else _WIDE_HALF
 
 
 def _name_width(room: Room) -> int:

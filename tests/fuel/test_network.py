@@ -71,16 +71,18 @@ def cases(draw: st.DrawFn, *, one_way: bool) -> Case:
     numbers = count(1)
     ways: list[Way] = []
 
-    def rim(cells: tuple[str, ...]) -> tuple[int, int] | None:
+    def rim(cells: tuple[str, ...], *, lift: bool) -> tuple[int, int] | None:
         least, most = max(floor[cell] for cell in cells), min(top[cell] for cell in cells)
         if least > most:
             return None
         low = draw(st.integers(least, most))
-        return low, draw(st.integers(low, most))
+        high = draw(st.integers(low, most))
+        # A dam, or a pipe that rises and falls, asks fuel to stand higher than air must stay below.
+        return low + (draw(st.sampled_from([0, 0, 0, 1, 2])) if lift else 0), high
 
     for _ in range(draw(st.integers(0, 7)) if len(names) > 1 else 0):
         pair = draw(st.permutations(names))[:2]
-        heights = rim(tuple(pair))
+        heights = rim(tuple(pair), lift=True)
         if heights is None:
             continue
         flap = draw(st.sampled_from([None, None, pair[0]])) if one_way else None
@@ -89,12 +91,9 @@ def cases(draw: st.DrawFn, *, one_way: bool) -> Case:
     for outside, least, most in ((Outside.OUTLET, 1, 2), (Outside.FILLER, 1, 2), (Outside.VENT, 0, 2)):
         for _ in range(draw(st.integers(least, most))):
             cell = draw(st.sampled_from(names))
-            heights = rim((cell,))
+            heights = rim((cell,), lift=outside is not Outside.FILLER)
             assert heights is not None
-            low, high = heights
-            # A dam before an outlet may stand higher than the outlet itself.
-            dam = draw(st.integers(0, 2)) if outside is Outside.OUTLET else 0
-            ways.append(way(f"{outside.value}{next(numbers)}", (cell,), outside, low + dam, high))
+            ways.append(way(f"{outside.value}{next(numbers)}", (cell,), outside, *heights))
     return Case(floor=floor, top=top, ways=tuple(ways), tee=draw(st.booleans()))
 
 
@@ -194,6 +193,20 @@ def searched_fill(case: Case, filler: Way) -> dict[str, float]:
     return {cell: level[cell] if cell in reached else -math.inf for cell in every}
 
 
+def searched_vented(case: Case, stop: float, reached: set[str]) -> set[str]:
+    """Reached cells whose space above the fuel stays open to a vent; an open filler is none."""
+    clear = {one.name for one in case.ways if one.high_m >= stop}
+    vented = set()
+    for cell in reached:
+        for steps in simple_ways(case, cell, set(case.floor)):
+            end = steps[-1][0] if steps else cell
+            breathes = all(may(one, into, air=True) and one.name in clear for into, one in steps)
+            vents = (one for one in case.kind(Outside.VENT) if one.cells[0] == end)
+            if breathes and any(one.name in clear for one in vents):
+                vented.add(cell)
+    return vented
+
+
 def searched_dry(case: Case) -> set[str]:
     wet = {one.cells[0] for one in case.kind(Outside.FILLER)}
     tee = {one.cells[0] for one in case.kind(Outside.OUTLET)} if case.tee else set()
@@ -223,6 +236,7 @@ def test_filling_is_what_a_search_over_all_simple_ways_finds(case: Case) -> None
     for filler in case.kind(Outside.FILLER):
         filling = fill(case.network, filler)
         assert {cell: filling.level_of(cell) for cell in case.floor} == searched_fill(case, filler)
+        assert filling.vented == searched_vented(case, filling.level_m, set(filling.reached))
 
 
 @FIXED

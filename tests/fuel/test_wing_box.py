@@ -19,7 +19,6 @@ from ledger.model.attitude import Attitude
 from ledger.model.plan import FuelGrade
 from ledger.model.tanks import Cell, Circle, Opening, Outside, Tank, Tanks
 
-BAYS = Path(__file__).resolve().parents[2].parent / "shared" / "data" / "transonic_wing_box" / "cells"
 ATTITUDES = (
     Attitude(name="ground", fill=True, flight=False),
     Attitude(name="climb", pitch_deg=8.0),
@@ -29,11 +28,9 @@ ATTITUDES = (
 
 
 @pytest.fixture(scope="module")
-def bays() -> dict[str, ClosedCell]:
-    if not BAYS.exists():
-        pytest.skip("the open wing box is not beside this repository")
+def bays(wing_box: Path) -> dict[str, ClosedCell]:
     cells = {}
-    for path in sorted(BAYS.glob("bay_*.obj")):
+    for path in sorted((wing_box / "cells").glob("bay_*.obj")):
         mesh = trimesh.load(path, process=False)
         cells[path.stem] = ClosedCell.from_mesh(mesh.vertices, mesh.faces)
     return cells

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from pathlib import Path
 from typing import Any
 
 import numpy as np
@@ -12,8 +11,6 @@ from numpy.typing import ArrayLike, NDArray
 
 Floats = NDArray[np.float64]
 Mesh = tuple[Floats, NDArray[np.intp]]
-
-WING_BOX = Path(__file__).resolve().parents[2].parent / "shared" / "data" / "transonic_wing_box"
 
 
 class Shapes:
@@ -105,10 +102,3 @@ def capped_cut() -> Callable[[Any, ArrayLike, float], tuple[float, Floats]]:
         return float(part.volume), np.asarray(part.center_mass)
 
     return cut
-
-
-@pytest.fixture(scope="session")
-def wing_box() -> Path:
-    if not WING_BOX.is_dir():
-        pytest.skip("the open wing box lies beside the working tree, and is not there")
-    return WING_BOX

@@ -14,6 +14,7 @@ from hypothesis import strategies as st
 from ledger.geometry import moments as m
 from ledger.geometry.moments import Moments
 from ledger.geometry.polylines import moments_of_polyline
+from ledger.geometry.vectors import vector
 
 seeds = st.integers(0, 2**31)
 
@@ -28,7 +29,7 @@ def of_points(points: np.ndarray[Any, Any], masses: np.ndarray[Any, Any]) -> Mom
     arms = points - centroid
     return Moments(
         measure=float(masses.sum()),
-        centroid=m.vector(centroid),
+        centroid=vector(centroid),
         second=m.matrix((arms * masses[:, None]).T @ arms),
     )
 

@@ -14,7 +14,7 @@ from ledger.operations.find_thing import find_thing
     ("text", "kind", "name", "says"),
     [
         (" cloth ", ThingKind.LOT, "CLOTH", "lot CLOTH: CLOTH received: 20 m2 carbon 200"),
-        ("W2", ThingKind.INSTRUMENT, "W2", "instrument W2: scale W2 entered, reads to 0.001 kg"),
+        ("W2", ThingKind.INSTRUMENT, "W2", "instrument W2: scale W2 entered, reads to 1 g"),
         ("epoxy", ThingKind.MATERIAL, "epoxy", "material epoxy"),
         ("SANDWICH", ThingKind.LAMINATE, "SANDWICH", "laminate SANDWICH"),
         ("clip", ThingKind.PART, "CLIP", "part CLIP, Clip, 0 of 4 begun"),

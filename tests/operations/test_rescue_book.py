@@ -63,8 +63,10 @@ def test_a_book_with_its_end_cut_off_gives_its_first_entries(shop: Any, tmp_path
 def test_rescue_replaces_nothing_and_wants_something(shop: Any, tmp_path: Path) -> None:
     with pytest.raises(Refused):
         rescue_book(shop.book, shop.book)
-    with pytest.raises(WrongUse):
+    with pytest.raises(BookUnusable):
         rescue_book(tmp_path / "none", tmp_path / "new.book")
+    with pytest.raises(WrongUse):
+        rescue_book(shop.book, tmp_path / "no folder" / "new.book")
     junk = tmp_path / "junk"
     junk.write_bytes(b"no database at all" * 100)
     with pytest.raises(BookUnusable):
@@ -80,3 +82,16 @@ def test_a_restored_backup_goes_on_where_it_ended(shop: Any, tmp_path: Path) -> 
     assert shop.log("note", text="on").seq == copied.entries + 1
     with pytest.raises(Refused):
         restore_book(copied.file, shop.book)
+
+
+@pytest.mark.parametrize("ending", ["-wal", "-shm", "-journal"])
+def test_no_book_is_put_beside_what_is_left_of_another(shop: Any, tmp_path: Path, ending: str) -> None:
+    # SQLite would fold the left-over into the book put there, as if it were that book's own.
+    place = tmp_path / "new.book"
+    left = tmp_path / f"new.book{ending}"
+    left.write_bytes(b"left over")
+    for put in (restore_book, rescue_book):
+        with pytest.raises(Refused) as refused:
+            put(shop.book, place)
+        assert refused.value.findings[0].where.file == str(left)
+    assert not place.exists()

@@ -11,8 +11,9 @@ from ledger.fuel.report import FuelReport
 from ledger.mass.report import WeightReport
 from ledger.mass.trace import Trace
 from ledger.reports.demo_lines import COLUMNS, ROWS, demo_lines
+from ledger.reports.entry_lines import adopted_lines
 from ledger.reports.finding_lines import counted, finding_line
-from ledger.reports.fuel_lines import fuel_lines, trapped_text, usable_text
+from ledger.reports.fuel_lines import fuel_lines, hole_line, trapped_text, usable_text
 from ledger.reports.plain import width_of
 from ledger.reports.trace_lines import trace_lines
 from ledger.reports.weight_lines import weight_lines
@@ -121,6 +122,32 @@ def test_a_trace_counts_the_pieces_near_and_far_once_each(trace_of_a_cup: Trace)
     assert trace_lines(trace, Display.METRIC)[1] == "in 2 pieces: 1 fitted, 1 open"
 
 
+@pytest.mark.parametrize(
+    ("kind", "went_into", "said"),
+    [
+        ("batch", 1, "in 1 piece, fitted"),
+        ("batch", 0, "in no piece yet"),
+        ("lot", 0, "in no piece yet"),
+        # A piece or an assembly goes into no piece as a rule: nothing is said of it.
+        ("piece", 0, ""),
+        ("piece", 1, "in 1 piece, fitted"),
+        ("assembly", 0, ""),
+        ("instrument", 0, ""),
+    ],
+)
+def test_a_trace_says_how_many_pieces_in_plain_words(
+    trace_of_a_cup: Trace, kind: str, went_into: int, said: str
+) -> None:
+    trace = dataclasses.replace(trace_of_a_cup, kind=kind, went_into=trace_of_a_cup.went_into[:went_into])
+    assert trace_lines(trace, Display.METRIC)[1] == said
+
+
+@pytest.mark.parametrize(("count", "said"), [(0, "none"), (1, "1 built piece"), (2, "2 built pieces")])
+def test_what_no_longer_fits_is_counted_in_plain_words(count: int, said: str) -> None:
+    lines = adopted_lines("r2", 7, "d" * 64, (("RIB.1/1", "open", "its outline changed"),) * count)
+    assert lines[3] == f"no longer fits  {said}"
+
+
 def test_what_is_further_away_stands_further_in(trace_of_a_cup: Trace) -> None:
     lines = trace_lines(trace_of_a_cup, Display.METRIC)
     lot = next(line for line in lines if "L0096" in line)
@@ -174,3 +201,18 @@ def test_the_demo_report_begins_with_what_is_wrong(weights: WeightReport, fuel: 
     assert lines[0] == "STOP 1  LOOK 1  note 0"
     assert lines[1].startswith("STOP  SKIN.1  has no ply 3")
     assert lines[2].startswith("LOOK  SKIN.2")
+
+
+def test_the_hole_that_keeps_most_back_in_flight_is_named_under_its_tank(fuel: FuelReport) -> None:
+    tank = fuel.tanks[0]
+    climb = next(one for one in tank.attitudes if one.flight)
+    cell = dataclasses.replace(climb.cells[0], trapped_m3=0.0021, trapped_by="drain A-B")
+    worse = dataclasses.replace(cell, trapped_m3=0.009, trapped_by="outlet")
+    ground = dataclasses.replace(climb, attitude="ground", flight=False, cells=(worse,))
+    climb = dataclasses.replace(climb, cells=(cell, worse))
+    tank = dataclasses.replace(tank, attitudes=(ground, climb))
+    indent = " " * (len(tank.tank) + 2)
+    said = f"{indent}keeps 2.1 L in {cell.cell}, behind drain A-B, at {climb.attitude}"
+    assert hole_line(tank, Display.METRIC) == (said,)
+    only_outlet = dataclasses.replace(tank, attitudes=(dataclasses.replace(climb, cells=(worse,)),))
+    assert hole_line(only_outlet, Display.METRIC) == ()

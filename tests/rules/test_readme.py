@@ -38,7 +38,7 @@ def shown_commands() -> list[tuple[str, list[str]]]:
 def as_pattern(line: str) -> str:
     """A shown line as a pattern in which only `...` is special."""
     return "".join(
-        "*" if part == "..." else f"[{part}]" if part in "*?[" else part
+        "*" if part == "..." else f"[{part}]" if part in ("*", "?", "[") else part
         for part in re.split(r"(\.\.\.|[*?\[])", line)
     )
 
@@ -94,3 +94,11 @@ def test_readme_opens_with_the_job_in_one_paragraph() -> None:
     assert title.startswith("# ")
     assert blank == after == ""
     assert {"sheet", "ply", "masses", "fuel"} <= set(re.findall(r"\w+", job))
+
+
+@pytest.mark.parametrize("name", ["plan.toml", "materials.csv", "laminates.csv", "parts.csv"])
+def test_the_smallest_plan_shown_is_the_one_that_is_run(name: str) -> None:
+    shown = re.search(rf"^`{re.escape(name)}`\n```\w+\n(.*?)```", README, flags=re.DOTALL | re.MULTILINE)
+    assert shown is not None
+    kept = ROOT / "sample_builds" / "first_rib" / "plan" / name
+    assert shown.group(1) == kept.read_text(encoding="utf-8")

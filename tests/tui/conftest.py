@@ -2,15 +2,18 @@
 
 from __future__ import annotations
 
+import json
 import shutil
-from collections.abc import AsyncIterator, Callable, Iterator
+from collections.abc import AsyncIterator, Callable
 from contextlib import AbstractAsyncContextManager, asynccontextmanager
 from datetime import UTC, datetime, timedelta
 from pathlib import Path
+from typing import Any
 
 import pytest
 from textual.pilot import Pilot
 
+from ledger.cli.app import run_command
 from ledger.operations.find_thing import FoundThing, find_thing
 from ledger.operations.log_entry import log_entry
 from ledger.operations.start_book import start_book
@@ -145,10 +148,9 @@ def demo_book(_demo_book: Path, tmp_path: Path) -> Path:
 
 
 @pytest.fixture(autouse=True)
-def _own_state(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Iterator[None]:
+def _own_state(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setenv("WINGLEDGER_STATE", str(tmp_path / "state"))
     monkeypatch.setenv("WINGLEDGER_BY", "JK")
-    return
 
 
 @pytest.fixture
@@ -228,7 +230,7 @@ class Bench:
 
     async def key(self, *keys: str) -> None:
         for key in keys:
-            self.clock.go_on(milliseconds=400)
+            self.clock.go_on(milliseconds=900)
             await self.pilot.press(key)
             await settled(self.pilot)
             await self.pilot.pause()
@@ -265,3 +267,15 @@ def open_bench(open_screen: Opened, clock: Clock) -> Callable[..., AbstractAsync
 def find(small_book: Path) -> Callable[[str], FoundThing | None]:
     """Look-up in the small book."""
     return lambda text: find_thing(small_book, text)
+
+
+@pytest.fixture
+def printed(capsys: pytest.CaptureFixture[str]) -> Callable[..., Any]:
+    """What a command prints with --json, read."""
+
+    def run(command: str, *words: object) -> Any:
+        capsys.readouterr()
+        assert run_command([command, *map(str, words), "--json"], lambda _book: None) == 0
+        return json.loads(capsys.readouterr().out)
+
+    return run

@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 import time
+from dataclasses import replace
 
+import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
@@ -94,14 +96,14 @@ def test_the_tree_is_drawn_row_by_row() -> None:
     opened = {"WING", "WING/LEFT"}
     drawn = tree_text(view(), seen_rows(ROWS, opened), 3, opened, room())
     assert [line.rstrip() for line in drawn.plain.split("\n")] == [
-        " - WING               1/2    2.000    2.500 0.010  AE  +0.500           |>>>>>>",
-        "   - LEFT             1/2    2.000    2.500 0.010  AE  +0.500           |>>>>>>",
-        "     + RIB.01-L       1/2    2.000    1.750 0.010  AE  -0.250        <<<|",
-        ">    + SKIN.LWR-L     1/2    2.000    2.500 0.010  AE  +0.500 LOOK      |>>>>>>",
-        "   + RIGHT            1/2    2.000    2.000 0.010  AE   0.000           |",
+        " - WING                  1/2    2.000    2.500 0.010  AE  +0.500          |>>>>>",
+        "  - LEFT                 1/2    2.000    2.500 0.010  AE  +0.500          |>>>>>",
+        "   + RIB.01-L            1/2    2.000    1.750 0.010  AE  -0.250        <<|",
+        ">  + SKIN.LWR-L          1/2    2.000    2.500 0.010  AE  +0.500 LOOK     |>>>>>",
+        "  + RIGHT                1/2    2.000    2.000 0.010  AE   0.000          |",
     ]
     assert head_text(room()).plain.rstrip() == (
-        "                     built estimated     now    +-  by off plan     light|heavy"
+        "                       built estimated     now    +-  by off plan    light|heavy"
     )
 
 
@@ -112,22 +114,25 @@ def test_a_closed_branch_says_what_is_flagged_inside() -> None:
 
 
 def test_a_name_of_the_user_is_never_markup_and_never_leaves_its_column() -> None:
-    nasty = (row("[bold red]A very long name\x1b[31m indeed[/]", 0, 1),)
+    nasty = (row("PART", 0, 1, name="[bold red]A very long name\x1b[31m indeed[/]"),)
     drawn = tree_text(view(nasty), (0,), 0, frozenset(), room(height=1))
-    assert len(drawn.plain.rstrip()) <= 80
-    assert drawn.plain.startswith("> + [bold red]A v")
+    assert drawn.plain == (">+ [bold red]A ver..     1/2    2.000    2.500 0.010  AE  +0.500          |>>>>>")
+    code = (row("PART", 0, 1, name="\x1b[31mA"),)
+    drawn = tree_text(view(code), (0,), 0, frozenset(), room(height=1))
     assert "\x1b" not in drawn.plain
 
 
 def test_what_is_unknown_is_a_dash_and_not_nought() -> None:
     unknown = (row("A", 0, 1, best_kg=None, best_u_kg=None, estimated_kg=None, off_plan=()),)
     drawn = tree_text(view(unknown), (0,), 0, frozenset(), room(height=1)).plain
-    assert drawn.split()[3:8] == ["1/2", "-", "-", "-", "AE"]
+    assert drawn.split() == [">+", "A", "1/2", "-", "-", "-", "AE", "-", "|"]
     assert "0.000" not in drawn
 
 
 @given(
-    off=st.floats(-10, 10, allow_nan=False), widest=st.floats(0.001, 10, allow_nan=False), half=st.integers(1, 20)
+    off=st.floats(-10, 10, allow_nan=False),
+    widest=st.floats(0.001, 10, allow_nan=False),
+    half=st.integers(1, 20),
 )
 def test_a_bar_never_changes_its_width_and_shows_its_sign(off: float, widest: float, half: int) -> None:
     bar = bar_of(off, widest, half)
@@ -136,6 +141,13 @@ def test_a_bar_never_changes_its_width_and_shows_its_sign(off: float, widest: fl
     shows = float(f"{off:.3f}")
     assert ("<" in bar) == (shows < 0)
     assert (">" in bar) == (shows > 0)
+
+
+def test_the_widest_bar_fills_its_side_and_half_as_much_half_of_it() -> None:
+    assert bar_of(-0.8, 0.8, 6) == "<<<<<<|      "
+    assert bar_of(0.4, 0.8, 6) == "      |>>>   "
+    assert bar_of(0.001, 0.8, 6) == "      |>     "
+    assert bar_of(0.0004, 0.8, 6) == "      |      "
 
 
 @given(many=st.integers(1, 3000), at=st.integers(0, 2999), height=st.integers(1, 40))
@@ -175,8 +187,30 @@ def test_the_headline_says_whether_chance_explains_it() -> None:
 
 def test_what_is_truly_weighed_is_a_bar_of_its_own_letters() -> None:
     text = known_text(view().total, room(60)).plain
-    assert text == "known by   A AAAAAAAAAAAA 61 %  C CCC 17 %  E EEEE 22 %  "
-    assert len(known_text(view().total, room(80)).plain) <= 80
+    assert text == "known by   A AAAAAAAAAAAAA 61 %  C CCCC 17 %  E EEEEE 22 %  "
+
+
+@given(cuts=st.tuples(st.floats(0, 1), st.floats(0, 1)), width=st.integers(50, 200))
+def test_the_bars_of_what_is_weighed_add_up_to_the_same_length_whatever_the_shares(
+    cuts: tuple[float, float], width: int
+) -> None:
+    first, second = sorted(cuts)
+    shares = (first, second - first, 1.0 - second)
+    total = replace(
+        view().total,
+        share_actual=shares[0],
+        share_calculated=shares[1],
+        share_estimated=shares[2],
+    )
+    text = known_text(total, room(width)).plain
+    assert len(text) == width
+    for letter, share in zip("ACE", shares, strict=True):
+        marks = text.count(letter) - 1
+        words = sum(
+            len(f"{letter}  {100 * share:.0f} %  ") for letter, share in zip("ACE", shares, strict=True)
+        )
+        assert marks == 0 if share == 0.0 else marks >= 1
+        assert abs(marks - share * (width - len("known by   ") - words)) < 3.0
 
 
 def test_causes_stand_light_to_the_left_and_heavy_to_the_right() -> None:
@@ -184,8 +218,21 @@ def test_causes_stand_light_to_the_left_and_heavy_to_the_right() -> None:
     assert [line.rstrip() for line in lines] == [
         "OFF PLAN BY CAUSE kg      light|heavy",
         "stock           +0.410         |>>>>>>",
-        "resin           -0.520  <<<<<<<|",
+        "resin           -0.520 <<<<<<<<|",
     ]
+
+
+def test_a_piece_number_of_12_characters_is_read_whole_in_80_columns() -> None:
+    deep = (row("SKIN.LWR-L/1", 4, 1, kind="piece"),)
+    assert "SKIN.LWR-L/1 " in tree_text(view(deep), (0,), 0, frozenset(), room(height=1)).plain
+
+
+@pytest.mark.parametrize("state", ["scrapped", "spare"])
+def test_a_piece_that_counts_nothing_says_why_in_its_column(state: str) -> None:
+    gone = (row("A/1", 3, 1, kind="piece", begun=0, planned=0, state=state),)
+    drawn = tree_text(view(gone), (0,), 0, frozenset(), room(height=1)).plain
+    assert drawn[:30].split()[-1] == {"scrapped": "scrap", "spare": "spare"}[state]
+    assert drawn.index("|") == tree_text(view(), (0,), 0, frozenset(), room(height=1)).plain.index("|")
 
 
 def test_with_every_colour_gone_the_same_words_stand() -> None:
