@@ -1,6 +1,9 @@
-"""The open wing box, for every layer that is held against it.
+"""What every folder of tests shares: how hard the properties are tried, and the open wing box.
 
-The data lies beside the repository and is no part of it: without it the tests that need it are
+Usually each property is tried on the same examples in every run, so that a failure comes back. With
+`-m long` only properties run, for hours, on new examples each time.
+
+The wing box lies beside the repository and is no part of it: without it the tests that need it are
 skipped, and say so.
 """
 
@@ -10,6 +13,11 @@ import csv
 from pathlib import Path
 
 import pytest
+from hypothesis import is_hypothesis_test, settings
+
+settings.register_profile("short", derandomize=True, deadline=None)
+settings.register_profile("long", max_examples=20_000, deadline=None)
+settings.load_profile("short")
 
 WING_BOX = Path(__file__).resolve().parents[1].parent / "shared" / "data" / "transonic_wing_box"
 
@@ -27,3 +35,16 @@ def wing_box_figures(wing_box: Path) -> dict[str, float]:
     """Published masses (kg) and the volumes its authors computed (m3), by name."""
     with (wing_box / "reference.csv").open(newline="", encoding="utf-8") as lines:
         return {row["quantity"]: float(row["value"]) for row in csv.DictReader(lines)}
+
+
+def pytest_configure(config: pytest.Config) -> None:
+    if config.option.markexpr == "long":
+        settings.load_profile("long")
+
+
+@pytest.hookimpl(tryfirst=True)
+def pytest_collection_modifyitems(config: pytest.Config, items: list[pytest.Item]) -> None:
+    if config.option.markexpr == "long":
+        for item in items:
+            if is_hypothesis_test(getattr(item, "obj", None)):
+                item.add_marker("long")

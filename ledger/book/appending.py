@@ -8,10 +8,10 @@ from datetime import datetime
 
 from ledger.book.chain import canonical, digest_of
 from ledger.book.project import TablesInBook, needs_rebuild, project, rebuild
-from ledger.book.reading import read_logged
+from ledger.book.reading import last_of, read_logged
 from ledger.model.acts import Act
 from ledger.model.body import body_of
-from ledger.model.entry import FIRST_PREVIOUS, Entry, Logged
+from ledger.model.entry import Entry, Logged
 
 _INSERT = (
     "INSERT INTO entry (seq, id, at, logged_at, by, kind, body, previous, digest) "
@@ -37,8 +37,8 @@ def append_entry(
     Raises
         NotText: a text or number that canonical JSON cannot hold.
     """
-    last = connection.execute("SELECT seq, digest FROM entry ORDER BY seq DESC LIMIT 1").fetchone()
-    seq, previous = (1, FIRST_PREVIOUS) if last is None else (last[0] + 1, last[1])
+    last_seq, previous = last_of(connection)
+    seq = last_seq + 1
     body = canonical(body_of(act))
     canonical(by)
     id_text, at_text, logged_text = str(uuid.uuid4()), _text_of(at), _text_of(logged_at)

@@ -64,8 +64,14 @@ def digest_of_entry(entry: Entry, previous: str) -> str:
 
 
 def short_code(digest: str) -> str:
-    """The first 60 bits of a digest for paper, with a check character: `4F7K-92QD-XM3T-8`."""
-    bits = int(digest[:15], 16)
+    """The first 60 bits of a digest for paper, with a check character: `4F7K-92QD-XM3T-8`.
+
+    Empty for what is no digest, as a damaged book may have.
+    """
+    try:
+        bits = int(digest[:15], 16)
+    except ValueError:
+        return ""
     characters = "".join(_PAPER[bits >> shift & 31] for shift in range(55, -5, -5))
     return _in_groups(characters + _shell_safe(str(mod_37_2.calc_check_digit(characters))))
 

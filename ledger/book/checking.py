@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
+import contextlib
 import hashlib
 import json
 import sqlite3
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 
 from ledger.book.chain import NotText, canonical, digest_of_entry, short_code
@@ -48,7 +49,7 @@ def look_through(connection: sqlite3.Connection) -> BookState:
     for entry in read_entries(connection):
         walk.take(entry)
     replayed = tuple(_replay_findings(connection, walk, missing))
-    contents = tuple(_content_findings(connection, walk.logged, missing))
+    contents = () if "content" in missing else tuple(plan_files_lost(connection, walk.logged))
     file = tuple(_file_findings(connection))
     seq, last_digest = last_of(connection)
     return BookState(
@@ -160,17 +161,20 @@ def _replay_findings(
             )
 
 
-def _content_findings(
-    connection: sqlite3.Connection, logged: list[Logged], missing: set[str | None]
-) -> Iterator[Finding]:
-    if "content" in missing:
-        return
+def plan_files_lost(connection: sqlite3.Connection, logged: Iterable[Logged]) -> Iterator[Finding]:
+    """A finding for each file of an adopted plan that is not in the store as it was put there."""
     for entry in logged:
         if not isinstance(entry.act, Adopt):
             continue
         for file in entry.act.files:
-            row = connection.execute("SELECT bytes FROM content WHERE sha256 = ?", (file.sha256,)).fetchone()
-            if row is None or hashlib.sha256(row[0]).hexdigest() != file.sha256:
+            row = None
+            # A changed entry may name what is no text at all.
+            with contextlib.suppress(UnicodeEncodeError):
+                row = connection.execute(
+                    "SELECT bytes FROM content WHERE sha256 = ?", (file.sha256,)
+                ).fetchone()
+            whole = row is not None and isinstance(row[0], bytes)
+            if row is None or not whole or hashlib.sha256(row[0]).hexdigest() != file.sha256:
                 so = "is missing" if row is None else "is not what was stored"
                 yield Finding(
                     code="plan-file-lost",

@@ -206,6 +206,11 @@ def _refuse_newer(book: Path, format_now: int) -> None:
 def _errors_named(book: Path) -> Iterator[None]:
     try:
         yield
+    except UnicodeDecodeError as error:
+        # Where a damaged page gives SQLite no text even for its own complaint.
+        raise unusable(
+            book, "book-damaged", "the file is damaged: it holds what is no text", _RESTORE
+        ) from error
     except sqlite3.DatabaseError as error:
         primary = _primary(error)
         if primary in _BROKEN or "no such table" in str(error):

@@ -28,7 +28,8 @@ _COLUMNS = "seq, id, at, logged_at, by, kind, body, previous, digest"
 def read_entries(connection: sqlite3.Connection, *, after: int = 0) -> Iterator[Entry]:
     """The rows of the table `entry` above a seq, in order, one at a time."""
     rows = connection.execute(f"SELECT {_COLUMNS} FROM entry WHERE seq > ? ORDER BY seq", (after,))  # noqa: S608
-    for seq, id_text, at, logged_at, by, kind, body, previous, digest in rows:
+    for seq, *texts in rows:
+        id_text, at, logged_at, by, kind, body, previous, digest = _all_texts(texts)
         yield Entry(
             seq=seq,
             id=id_text,
@@ -69,7 +70,8 @@ def _read_on(connection: sqlite3.Connection, after: int, digest: str) -> tuple[l
     seq, previous = after, digest
     moment = datetime.fromisoformat
     rows = connection.execute(f"SELECT {_COLUMNS} FROM entry WHERE seq > ? ORDER BY seq", (after,))  # noqa: S608
-    for this, id_text, at, logged_at, by, kind, body, before, own in rows:
+    for this, *texts in rows:
+        id_text, at, logged_at, by, kind, body, before, own = _all_texts(texts)
         if trouble is None:
             wanted = digest_of(
                 previous, seq=this, id=id_text, at=at, logged_at=logged_at, by=by, kind=kind, body=body
@@ -85,6 +87,13 @@ def _read_on(connection: sqlite3.Connection, after: int, digest: str) -> tuple[l
         except NOT_READABLE:
             trouble = trouble or _broken_at(this, "cannot be read")
     return logged, trouble
+
+
+def _all_texts(columns: list[Any]) -> list[str]:
+    # A damaged page may hold anything in any column; what is no text fits no digest and reads as no entry.
+    if all(type(column) is str for column in columns):
+        return columns
+    return [column if isinstance(column, str) else "" for column in columns]
 
 
 @contextlib.contextmanager
@@ -141,7 +150,7 @@ def entry_at(connection: sqlite3.Connection, seq: int) -> Entry | None:
 def last_of(connection: sqlite3.Connection) -> tuple[int, str]:
     """Seq and digest of the last entry; 0 and 64 zeros before the first."""
     row = connection.execute("SELECT seq, digest FROM entry ORDER BY seq DESC LIMIT 1").fetchone()
-    return (0, FIRST_PREVIOUS) if row is None else (row[0], row[1])
+    return (0, FIRST_PREVIOUS) if row is None else (row[0], *_all_texts([row[1]]))
 
 
 def files_of(connection: sqlite3.Connection, adopt: Adopt) -> dict[str, bytes]:
@@ -149,7 +158,7 @@ def files_of(connection: sqlite3.Connection, adopt: Adopt) -> dict[str, bytes]:
     found = {}
     for file in adopt.files:
         row = connection.execute("SELECT bytes FROM content WHERE sha256 = ?", (file.sha256,)).fetchone()
-        if row is not None:
+        if row is not None and isinstance(row[0], bytes):
             found[file.path] = row[0]
     return found
 
@@ -173,10 +182,9 @@ class StoredFiles(Mapping[str, bytes]):
         sha256 = self._sha256[path]
         with open_for_reading(self._book) as connection:
             row = connection.execute("SELECT bytes FROM content WHERE sha256 = ?", (sha256,)).fetchone()
-        if row is None:
+        if row is None or not isinstance(row[0], bytes):
             raise KeyError(path)
-        content: bytes = row[0]
-        return content
+        return row[0]
 
     def __iter__(self) -> Iterator[str]:
         return iter(self._sha256)

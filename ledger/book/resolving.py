@@ -247,5 +247,6 @@ class _Resolving:
                 return number
 
     def _taken(self, number: str) -> bool:
-        query = "SELECT 1 FROM thing WHERE key = ? UNION SELECT 1 FROM minted WHERE key = ?"
-        return self.known.connection.execute(query, (number, number)).fetchone() is not None
+        # A number given once and withdrawn since stands for nothing now, but may be on a tag.
+        given = self.known.connection.execute("SELECT 1 FROM minted WHERE key = ?", (number,)).fetchone()
+        return given is not None or self.known.anything(number) is not None

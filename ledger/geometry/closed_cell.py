@@ -60,6 +60,7 @@ class ClosedCell:
     def from_proved(vertices_m: ArrayLike, faces: ArrayLike) -> ClosedCell:
         """A cell of arrays that `from_mesh` gave earlier and a store kept under their digest.
 
+        vertices_m : (n, 3) float, metres; faces : (m, 3) int, anticlockwise seen from outside.
         Nothing is proved again. Raises ValueError for arrays that cannot be a proved cell.
         """
         vertices = np.array(vertices_m, dtype=np.float64, order="C")

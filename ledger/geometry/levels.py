@@ -99,7 +99,7 @@ def level_table(vertices_m: ArrayLike, faces: ArrayLike, up: ArrayLike, levels_m
 
 
 def table_of(standing: Standing, levels_m: Floats) -> LevelTable:
-    """The same for a mesh already turned to its up direction."""
+    """The same for a mesh already turned to its up direction; levels (n,) in metres, in any order."""
     order = np.argsort(levels_m, kind="stable")
     levels = levels_m[order] - standing.lowest_m
     sums, gross = _sums_below(standing, levels)
@@ -233,7 +233,13 @@ def _integrals_of(whole: Floats) -> Floats:
 
 
 def triangle_integrals(x: Floats, y: Floats, z: Floats) -> tuple[Floats, ...]:
-    """Integrals of 1, x, y, z, xz, yz, zz over each triangle's signed projected area; rows (3, m)."""
+    """Integrals of 1, x, y, z, xz, yz, zz over each triangle's signed projected area.
+
+    x, y, z : (3, m) float
+        Corners of the triangles in the frame of up, metres.
+    Returns
+        seven rows (m,), m2 to m4; above 0 where a triangle faces up.
+    """
     x0, x1, x2 = x
     y0, y1, y2 = y
     z0, z1, z2 = z
@@ -249,7 +255,7 @@ def triangle_integrals(x: Floats, y: Floats, z: Floats) -> tuple[Floats, ...]:
 
 
 def wet_integrals(whole: Floats, levels: Floats) -> Floats:
-    """Sums (5, n) of whole triangles at each level, of their integrals (7, n)."""
+    """Sums (5, n) of whole triangles at each level (n,), of their integrals (7, n); rows V to S."""
     volume = whole[AZ] - levels * whole[A]
     return np.stack(
         (

@@ -56,7 +56,7 @@ def highest_places(
 def places_by_depth(
     cell: ClosedCell, up: ArrayLike, ignore_depth_m: float = IGNORE_DEPTH_M
 ) -> tuple[Place, ...]:
-    """The lowest places with their depths, lowest first."""
+    """The lowest places with their depths in metres, lowest first; raises as `lowest_places`."""
     if not ignore_depth_m >= 0.0:
         raise ValueError("ignore_depth_m must not be below 0")
     standing = stand(cell.vertices_m, cell.faces, up)

@@ -16,7 +16,11 @@ NAMED = 3
 
 
 def checked_arrays(vertices_m: ArrayLike, faces: ArrayLike) -> tuple[Floats, Indices]:
-    """Both arrays in the shapes and types the proof works on, or MeshRefused."""
+    """Both arrays in the shapes and types the proof works on: (n, 3) float and (m, 3) int.
+
+    Raises MeshRefused (mesh-empty, mesh-not-finite, mesh-index) for what a file may hold, ValueError
+    for what only a program can pass.
+    """
     vertices = np.array(vertices_m, dtype=np.float64)
     triangles = np.array(faces)
     if vertices.size == 0 or triangles.size == 0:
@@ -164,7 +168,10 @@ def _point(corner: Floats) -> str:
 
 
 def refuse_flat(vertices: Floats, faces: Indices, volume_m3: float) -> None:
-    """Refuse a mesh that encloses nothing, or is inside out as a whole."""
+    """Refuse a mesh that encloses nothing, or is inside out as a whole.
+
+    volume_m3 : signed, of the mesh. Raises MeshRefused (mesh-flat, mesh-flipped).
+    """
     p, q, r = (vertices[faces[:, corner]] for corner in range(3))
     area = 0.5 * float(np.linalg.norm(np.cross(q - p, r - p), axis=1).sum())
     size = float(np.linalg.norm(np.ptp(vertices, axis=0)))

@@ -32,7 +32,7 @@ def cut_by_plane(
 def segments_by_plane(
     vertices_m: ArrayLike, faces: ArrayLike, point_m: ArrayLike, normal: ArrayLike
 ) -> Floats:
-    """The same as an array (k, 2, 3), for a screen that draws it at each key."""
+    """The same as an array (k, 2, 3) in metres, for a screen that draws it at each key."""
     vertices = np.asarray(vertices_m, dtype=np.float64)
     corners = np.asarray(faces, dtype=np.intp)
     height = (vertices - np.asarray(point_m, dtype=np.float64)) @ unit_up(normal)
@@ -55,6 +55,7 @@ def plan_outline(
 ) -> tuple[Point, ...]:
     """Corners of the silhouette of a cell seen along one build axis; seen from above unless said.
 
+    vertices_m : (n, 3) float, metres; faces : (m, 3) int, anticlockwise seen from outside.
     across : the two build axes kept (0 x aft, 1 y right, 2 z up).
     The union of the triangles' shadows, its largest ring without holes, the first corner not repeated.
     Empty where nothing casts a shadow. Takes tens of milliseconds a cell: compute it once and keep it.

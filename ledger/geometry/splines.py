@@ -44,7 +44,7 @@ def evaluate(spline: Spline, parameters: Sequence[float] | Floats) -> tuple[Floa
 
 
 def span_ends(spline: Spline) -> Floats:
-    """The distinct knots of the spline's range."""
+    """The distinct knots (k,) of the spline's range, rising."""
     return np.unique(np.asarray(spline.knots[spline.degree : len(spline.control_points) + 1]))
 
 

@@ -59,7 +59,7 @@ class Standing:
 
 
 def unit_up(up: ArrayLike) -> Floats:
-    """The direction made one long. Raises ValueError where it is zero, not finite or not three numbers."""
+    """A direction (3,) made one long. Raises ValueError where it is zero, not finite or not three numbers."""
     direction = np.asarray(up, dtype=np.float64)
     if direction.shape != (3,) or not np.isfinite(direction).all():
         raise ValueError("up must be three finite numbers")

@@ -233,7 +233,7 @@ class CellAt:
         return table_of(self._standing, np.linspace(self.lowest_m, self.highest_m, steps + 1))
 
     def at_levels(self, levels_m: ArrayLike) -> LevelTable:
-        """Figures at many levels in one pass, in the order given."""
+        """Figures at many levels (n,) in metres in one pass, in the order given."""
         levels = np.asarray(levels_m, dtype=np.float64)
         if levels.ndim != 1 or not np.isfinite(levels).all():
             raise ValueError("levels_m must be a row of finite heights")
@@ -289,12 +289,24 @@ class CellAt:
 
 
 def submerged(cell: ClosedCell, up: ArrayLike, level_m: float) -> Submerged:
-    """The part of a proved cell below one level; `CellAt` is quicker for several."""
+    """The part of a proved cell below one level; `CellAt` is quicker for several.
+
+    up : (3,) float
+        Away from the pull felt, build axes; any length.
+    level_m : float
+        Height along up from the datum's origin, metres.
+    Raises ValueError for an up that is zero or not finite, or a level that is not finite.
+    References
+        Divergence theorem with a field that vanishes on the free surface; see `levels`.
+    """
     return CellAt(cell, up).moments(level_m)
 
 
 def level_for_volume(cell: ClosedCell, up: ArrayLike, volume_m3: float) -> float:
-    """The lowest level, along up from the datum's origin, below which the cell holds a volume."""
+    """The lowest level (m), along up from the datum's origin, below which the cell holds a volume (m3).
+
+    Raises ValueError for a volume below 0, above the gross or not finite, and for an up as `submerged`.
+    """
     return CellAt(cell, up).level_for(volume_m3)
 
 

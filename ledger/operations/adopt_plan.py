@@ -6,13 +6,15 @@ import getpass
 import hashlib
 import os
 import sqlite3
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from datetime import datetime
 from pathlib import Path
 
 from ledger.book.appending import append_entry
+from ledger.book.names import with_article
 from ledger.book.opening import open_for_writing
+from ledger.book.project import key_of
 from ledger.book.reading import StoredGeometry, store_files
 from ledger.checks.built_to_earlier_iteration import pieces_that_no_longer_fit
 from ledger.errors import Finding, Refused, Severity, Where
@@ -21,6 +23,7 @@ from ledger.model.entry import Entry, Logged
 from ledger.model.gather import gather
 from ledger.model.plan import Plan
 from ledger.model.snapshot import Snapshot
+from ledger.model.things import ThingKind
 from ledger.operations.open_build import open_build
 from ledger.operations.stored_plan import keep_plan
 
@@ -73,7 +76,7 @@ def adopt_plan(
     unfit = _unfit(_with_iteration(build.logged, build.snapshot, wanted, moment))
     try:
         with open_for_writing(book) as connection:
-            _refuse_same_name(connection, wanted.plan.name)
+            _refuse_taken_names(connection, wanted.plan)
             entry = write_adoption(connection, wanted, geometry, by=who(by), now=moment)
             if preview:
                 raise _OnlyLooked
@@ -145,18 +148,36 @@ def write_adoption(
     return append_entry(connection, "adopt", wanted.act, by=by, at=now, logged_at=now)
 
 
-def _refuse_same_name(connection: sqlite3.Connection, name: str) -> None:
+def _refuse_taken_names(connection: sqlite3.Connection, plan: Plan) -> None:
+    found = [*_iteration_taken(connection, plan.name), *_numbers_taken(connection, plan)]
+    if found:
+        raise Refused(*found)
+
+
+def _iteration_taken(connection: sqlite3.Connection, name: str) -> Iterator[Finding]:
     row = connection.execute("SELECT seq FROM iteration WHERE upper(name) = ?", (name.upper(),)).fetchone()
     if row is not None:
-        raise Refused(
-            Finding(
-                code="iteration-taken",
-                severity=Severity.STOP,
-                where=Where(file="plan.toml", column="name"),
-                what=f"iteration {name!r} is in the book already, entry {row[0]}",
-                do="give this plan another name",
-            )
+        yield Finding(
+            code="iteration-taken",
+            severity=Severity.STOP,
+            where=Where(file="plan.toml", column="name"),
+            what=f"iteration {name!r} is in the book already, entry {row[0]}",
+            do="give this plan another name",
         )
+
+
+def _numbers_taken(connection: sqlite3.Connection, plan: Plan) -> Iterator[Finding]:
+    """A part whose number is on the tag of something else: scanned, it would be taken for that."""
+    for part in plan.parts:
+        row = connection.execute("SELECT kind FROM thing WHERE key = ?", (key_of(part.name),)).fetchone()
+        if row is not None:
+            yield Finding(
+                code="number-taken",
+                severity=Severity.STOP,
+                where=Where(file="parts.csv", thing=part.name, column="part"),
+                what=f"{part.name!r} already stands for {with_article(ThingKind(row[0]))} in the book",
+                do="give the part another number",
+            )
 
 
 def _with_iteration(

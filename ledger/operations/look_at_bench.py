@@ -44,6 +44,17 @@ class OpenThing:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Place:
+    """Where a part is: its CG in the build's axes, x aft and y right."""
+
+    part: str
+    title: str
+    assembly: str
+    x_m: float
+    y_m: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class BenchView:
     """What the bench shows at one moment. `today_kg` is what today's entries put into pieces."""
 
@@ -56,6 +67,7 @@ class BenchView:
     findings: tuple[Finding, ...]
     open_things: Mapping[ThingKind, tuple[OpenThing, ...]]
     expected: Mapping[str, PieceMass]
+    places: tuple[Place, ...]
 
     def lines_about(self, name: str) -> tuple[tuple[str, str], ...]:
         """What is expected of a piece on the scale, what comes next for it, and what is wrong with it."""
@@ -102,6 +114,11 @@ def look_at_bench(book: Path | Stock, now: datetime) -> BenchView:
         findings=stock.findings,
         open_things=open_things(snapshot, tuple(cup.number for cup in cups)),
         expected={piece.piece: piece for part in weights.parts for piece in part.pieces},
+        places=tuple(
+            Place(part=one.part, title=one.title, assembly=one.assembly, x_m=one.cg_m[0], y_m=one.cg_m[1])
+            for one in weights.parts
+            if one.cg_m is not None
+        ),
     )
 
 
@@ -112,7 +129,21 @@ def open_things(
 
     Cups that stand on the bench come before all others, in the order they stand there.
     """
-    plan, gone = snapshot.plan, snapshot.gone
+    pieces = tuple(
+        OpenThing(text=piece.name, says=f"tag {piece.number}")
+        for piece in reversed(tuple(snapshot.pieces.values()))
+        if piece.state is not PieceState.SCRAPPED
+    )
+    parts = tuple(OpenThing(text=part.name, says=part.title) for part in snapshot.plan.parts)
+    return {
+        **_in_stock(snapshot, on_bench),
+        ThingKind.PIECE: pieces + parts,
+        **_named_by_plan(snapshot.plan),
+    }
+
+
+def _in_stock(snapshot: Snapshot, on_bench: tuple[str, ...]) -> dict[ThingKind, tuple[OpenThing, ...]]:
+    gone = snapshot.gone
 
     def standing(numbers: Iterable[str], says: Mapping[str, str]) -> tuple[OpenThing, ...]:
         return tuple(
@@ -143,13 +174,6 @@ def open_things(
         ThingKind.INSTRUMENT: standing(
             snapshot.scales, {number: scale.instrument.what for number, scale in snapshot.scales.items()}
         ),
-        ThingKind.PIECE: tuple(
-            OpenThing(text=piece.name, says=f"tag {piece.number}")
-            for piece in reversed(tuple(snapshot.pieces.values()))
-            if piece.state is not PieceState.SCRAPPED
-        )
-        + tuple(OpenThing(text=part.name, says=part.title) for part in plan.parts),
-        **_named_by_plan(plan),
     }
 
 

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from datetime import datetime
 
 from ledger.checks.ply_wrong_way import is_mirrored
-from ledger.mass.plan_index import PlanIndex
+from ledger.mass.plan_index import Nominal, PlanIndex
 from ledger.model.acts import Lay
 from ledger.model.gather import split_piece_name
 from ledger.model.plan import Form, MaterialKind, Side, Step
@@ -74,8 +74,7 @@ def look_at_ply(stock: Stock, piece: str, now: datetime, step: int | None = None
     """The step asked for, else the lowest one not laid yet. None where the piece is not laid up in steps."""
     snapshot = stock.build.snapshot
     index = PlanIndex(snapshot.plan)
-    split = split_piece_name(piece)
-    name, running = split if split is not None else (piece, _running_of(snapshot, piece))
+    name, running = split_piece_name(piece) or (piece, _running_of(snapshot, piece))
     part = index.parts.get(name)
     laminate = None if part is None else index.laminates.get(part.made_of or "")
     if part is None or laminate is None or not laminate.steps:
@@ -86,15 +85,8 @@ def look_at_ply(stock: Stock, piece: str, now: datetime, step: int | None = None
     chosen = next((one for one in laminate.steps if one.number == number), None)
     nominal = index.nominal(name)
     area = None if nominal is None else nominal.area_m2
-    needs = (
-        {}
-        if nominal is None or nominal.layers is None or area is None
-        else {layer.number: layer.resin * layer.coverage * area for layer in nominal.layers}
-    )
+    needs = _needs_of(nominal)
     lot, lot_note = (None, "") if chosen is None else _lot_for(snapshot, chosen)
-    mass = next(
-        (one for found in stock.weights.parts for one in found.pieces if one.piece in (known_as, name)), None
-    )
     return PlyInHand(
         piece=known_as,
         part=name,
@@ -112,12 +104,24 @@ def look_at_ply(stock: Stock, piece: str, now: datetime, step: int | None = None
         cups=_cups_for(stock, index, chosen, now),
         resin_laid_kg=sum(needs.get(laid, 0.0) for laid in done),
         resin_planned_kg=sum(needs.values()) if needs else None,
-        calculated_kg=None if mass is None else mass.calculated_kg,
+        calculated_kg=_calculated_kg(stock, known_as, name),
         estimated_kg=None if nominal is None else nominal.estimated_kg,
         stack=tuple(_ply(one, done) for one in laminate.steps),
         assembly=part.assembly,
         mirrored=is_mirrored(part, snapshot.plan),
     )
+
+
+def _needs_of(nominal: Nominal | None) -> dict[int, float]:
+    """The resin each step takes, in kg; empty where the plan does not say."""
+    if nominal is None or nominal.layers is None or nominal.area_m2 is None:
+        return {}
+    return {layer.number: layer.resin * layer.coverage * nominal.area_m2 for layer in nominal.layers}
+
+
+def _calculated_kg(stock: Stock, *names: str) -> float | None:
+    pieces = (piece for part in stock.weights.parts for piece in part.pieces)
+    return next((piece.calculated_kg for piece in pieces if piece.piece in names), None)
 
 
 def is_laid_up(stock: Stock, piece: str) -> bool:

@@ -72,16 +72,6 @@ class CellNow:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Gain:
-    """What moving one opening would free over the tank, m3; below 0 where it would trap more."""
-
-    opening: str
-    cells: tuple[str, ...]
-    lower_1mm_m3: float
-    wider_10pc_m3: float
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
 class Asked:
     """How the tank stands, what is in it, where it is cut."""
 
@@ -289,7 +279,7 @@ def look_at_tank(drawn: TankDrawn, asked: Asked) -> TankNow:
         attitude=next((one.name for one in drawn.attitudes if one.up == asked.attitude.up), None),
         mass_kg=standing.mass_kg,
         cg_m=standing.cg_m,
-        outlet_wl_m=_water_line(drawn, at, standing.level_at_outlet_m),
+        outlet_wl_m=water_line(drawn, at, standing.level_at_outlet_m),
         trapped_m3=standing.trapped_m3,
         cells=tuple(map(_cell_now, standing.cells, drawn.footprints)),
         cut=_cut(drawn, at, asked, at.levels if unknown else levels),
@@ -319,38 +309,6 @@ def _cell_now(cell: StandingCell, foot: Footprint) -> CellNow:
     )
 
 
-def gains_of(drawn: TankDrawn, attitude: Attitude) -> tuple[Gain, ...]:
-    """Every opening that traps fuel at an attitude, the one worth most first."""
-    from ledger.fuel.freeing import freed_lower, freed_wider
-
-    at = drawn.turned(attitude)
-    openings = {opening.name: opening for opening in drawn.system.tanks.openings}
-    names = {at.stood.kept[cell].opening for cell in drawn.tank.cells}
-    gains = [
-        Gain(
-            opening=name,
-            cells=openings[name].cells,
-            lower_1mm_m3=freed_lower(at.stood, name),
-            wider_10pc_m3=freed_wider(at.stood, name),
-        )
-        for name in sorted(name for name in names if name is not None)
-    ]
-    return tuple(sorted(gains, key=lambda gain: -max(gain.lower_1mm_m3, gain.wider_10pc_m3)))
-
-
-def trapped_over(
-    drawn: TankDrawn, pitches_deg: tuple[float, ...], rolls_deg: tuple[float, ...]
-) -> tuple[tuple[float | None, ...], ...]:
-    """What the tank traps at each pitch (rows) and roll (columns), m3; None where it cannot be known."""
-    from ledger.fuel.stood import Stood
-
-    def trapped(pitch: float, roll: float) -> float | None:
-        attitude = Attitude(name="map", pitch_deg=pitch, roll_deg=roll)
-        return Stood(drawn.system, attitude, only=drawn.tank.cells).trapped_in(drawn.tank)
-
-    return tuple(tuple(trapped(pitch, roll) for roll in rolls_deg) for pitch in pitches_deg)
-
-
 def _cut(drawn: TankDrawn, at: TankAt, asked: Asked, levels: Mapping[str, float]) -> Cut:
     axis = asked.axis
     solids = {
@@ -361,7 +319,7 @@ def _cut(drawn: TankDrawn, at: TankAt, asked: Asked, levels: Mapping[str, float]
     return cut_tank(solids, axis, asked.at_m, asked.attitude.up, levels=levels, kept_levels=at.levels)
 
 
-def _water_line(drawn: TankDrawn, at: TankAt, level_m: float | None) -> float | None:
+def water_line(drawn: TankDrawn, at: TankAt, level_m: float | None) -> float | None:
     """The water line of the fuel's surface at the outlet that `level_at_outlet_m` is beside.
 
     A level along up tells nobody anything once the tank is tilted; a water line can be measured.

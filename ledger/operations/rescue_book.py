@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import contextlib
+import hashlib
 import os
 import shutil
 import sqlite3
@@ -13,6 +14,7 @@ from pathlib import Path
 from typing import Any
 
 from ledger.book.chain import digest_of_entry, short_code
+from ledger.book.checking import plan_files_lost
 from ledger.book.copies import give_name, in_the_way, settle
 from ledger.book.opening import connect_new, header_of
 from ledger.book.project import rebuild
@@ -85,12 +87,14 @@ def _rescue(damaged: Path, making: Path, new: Path) -> Rescued:
             f"INSERT INTO entry ({_COLUMNS}) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?)",  # noqa: S608
             ((e.seq, e.id, e.at, e.logged_at, e.by, e.kind, e.body, e.previous, e.digest) for e in whole),
         )
-        for table, columns in (("content", 2), ("geometry", 2), ("meta", 2)):
-            marks = ", ".join("?" * columns)
-            for row in _readable_rows(source, table):
-                with contextlib.suppress(sqlite3.IntegrityError):
-                    target.execute(f"INSERT INTO {table} VALUES ({marks})", row)  # noqa: S608
-        rebuild(target, read_logged(target))
+        _save(source, target, "content")
+        _save(source, target, "meta")
+        logged = tuple(read_logged(target))
+        rebuild(target, logged)
+        lost = tuple(plan_files_lost(target, logged))
+        if lost:
+            # Kept geometry cannot be proved; where its files are whole it is computed again instead.
+            _save(source, target, "geometry")
         target.execute("COMMIT")
     return Rescued(
         file=new,
@@ -98,8 +102,21 @@ def _rescue(damaged: Path, making: Path, new: Path) -> Rescued:
         last_digest=whole[-1].digest,
         short_code=short_code(whole[-1].digest),
         left_out=left_out,
-        findings=tuple(_left_out(seq) for seq in left_out),
+        findings=(*(_left_out(seq) for seq in left_out), *lost),
     )
+
+
+def _save(source: sqlite3.Connection, target: sqlite3.Connection, table: str) -> None:
+    """What can be read of a table that is not entries; of plan files, those that are what was stored."""
+    for row in _readable_rows(source, table):
+        if len(row) != 2 or (table == "content" and not _is_content(*row)):
+            continue
+        with contextlib.suppress(sqlite3.IntegrityError, UnicodeEncodeError):
+            target.execute(f"INSERT INTO {table} VALUES (?, ?)", row)  # noqa: S608
+
+
+def _is_content(sha256: object, content: object) -> bool:
+    return isinstance(content, bytes) and hashlib.sha256(content).hexdigest() == sha256
 
 
 @contextlib.contextmanager
@@ -160,7 +177,8 @@ def _readable_rows(
                     break
                 seen.add(row[0])
                 rows.append(row)
-        except sqlite3.DatabaseError:
+        # A damaged page may leave SQLite no text even for its own complaint.
+        except (sqlite3.DatabaseError, UnicodeDecodeError):
             continue
     yield from front
     yield from reversed(back)

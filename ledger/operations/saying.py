@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import re
+
 from ledger.model.acts import (
     Accept,
     Act,
@@ -27,6 +29,8 @@ from ledger.model.acts import (
 from ledger.model.declare import KINDS, Takes
 from ledger.model.things import Measure, Share
 
+_OWN_UNITS = ("g", "kg", "m2", "m")
+
 
 def say(kind: str, act: Act) -> str:
     """What the entry says happened."""
@@ -37,9 +41,10 @@ def say(kind: str, act: Act) -> str:
 def _sentence(act: Act) -> str | None:
     match act:
         case Receive():
-            return f"{act.lot} received: {_measure(act.quantity)} {act.material}"
+            return f"{act.lot} received: {_read(act, 'quantity', _measure(act.quantity))} {act.material}"
         case Instrument():
-            return f"{act.what} {act.instrument} entered, reads to {_measure(act.resolution)}"
+            step = _read(act, "resolution", _measure(act.resolution))
+            return f"{act.what} {act.instrument} entered, reads to {step}"
         case Sheet():
             size = f"{_mm(act.length_m)} x {_mm(act.width_m)} mm"
             return f"{act.sheet} is a sheet of {act.laminate}, {size}{_weighed(act.mass_kg)}"
@@ -62,8 +67,10 @@ def _sentence(act: Act) -> str | None:
         case BuildUp():
             return f"{act.piece} built up by {_grams(act.mass_kg)} of {act.batch or act.lot}"
         case Weigh():
-            mean = sum(act.reading_kg) / len(act.reading_kg)
-            return f"{act.what} weighed at {_grams(mean)}{f', {act.state}' if act.state else ''}"
+            reading = _grams(sum(act.reading_kg) / len(act.reading_kg))
+            if len(act.reading_kg) == 1:
+                reading = _read(act, "reading", reading)
+            return f"{act.what} weighed at {reading}{f', {act.state}' if act.state else ''}"
         case Fit():
             return f"{act.piece} fitted into {act.into}" if act.into else f"{act.piece} out of {act.out_of}"
         case _:
@@ -104,6 +111,14 @@ def _field_by_field(kind: str, act: Act) -> str:
         else:
             said.append(f"{declared.word} {_listed(value) if isinstance(value, tuple) else value}")
     return f"{kind}: {', '.join(said)}"
+
+
+def _read(act: Act, word: str, value: str) -> str:
+    """The value as it was read; where it was typed in another unit, that before it."""
+    typed = dict(act.typed).get(word, "")
+    unit = re.search(r"[A-Za-z][A-Za-z0-9/ ]*$", typed)
+    # 2 US gal is not known again in 0.00757082 m3 alone.
+    return value if unit is None or unit.group() in _OWN_UNITS else f"{typed} ({value})"
 
 
 def _listed(names: tuple[object, ...]) -> str:

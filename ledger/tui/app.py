@@ -26,7 +26,7 @@ from ledger.tui.listening import ListeningScreen
 from ledger.tui.lock_screen import LockScreen
 from ledger.tui.scan import ScanLine
 from ledger.tui.themes import DRAWN, PLAIN, THEMES, is_plain
-from ledger.tui.tour import INVENTED, act_now, leads, line_of
+from ledger.tui.tour import Act, act_now, leads, line_of, words_on
 from ledger.tui.trace_screen import TraceScreen
 from ledger.tui.wall_clock import WallClock, read_told_time
 from ledger.tui.weights_screen import WeightsScreen
@@ -142,9 +142,11 @@ class LedgerApp(App[None], inherit_bindings=False):
     def tour_line(self) -> str | None:
         """What to try next in the sample build; None in any other."""
         build = self.build
-        if build is None or not leads(build.snapshot):
-            return None
-        return line_of(act_now(build.snapshot.logged, self.toured))
+        return line_of(self._act_now()) if build is not None and leads(build.snapshot) else None
+
+    def _act_now(self) -> Act | None:
+        build = self.build
+        return None if build is None else act_now(build.snapshot.logged, self.toured)
 
     def follow_tour(self) -> None:
         """Say the act once on each screen; the bench has a line for it."""
@@ -157,7 +159,7 @@ class LedgerApp(App[None], inherit_bindings=False):
             screen.draw_plate()
         if screen.WORD != "bench" and self._tour_said != (screen.WORD, line):
             self._tour_said = (screen.WORD, line)
-            screen.say("", f"{INVENTED}. {line[0].upper()}{line[1:]}")
+            screen.say("", words_on(screen.WORD, self._act_now()))
 
     # -- screens
 
@@ -188,8 +190,10 @@ class LedgerApp(App[None], inherit_bindings=False):
 
     def let_silence_speak(self) -> None:
         """Silence has decided something; the screen that is up hears it."""
-        if isinstance(self.screen, ListeningScreen):
-            self.screen.let_silence_speak()
+        # The timer may fall due while the program ends, when no screen is left.
+        up = self.screen_stack[-1] if self.screen_stack else None
+        if isinstance(up, ListeningScreen):
+            up.let_silence_speak()
 
     async def go(self, word: str) -> None:
         """Bring a screen up; a list that lies over the one left is put away."""
@@ -254,7 +258,11 @@ class LedgerApp(App[None], inherit_bindings=False):
         told = None if self.wall.doubt is None else read_told_time(text, self.now())
         if told is None:
             return False
+        away = self.crew.needs_badge(self.now())
         self.wall.set_right(told)
+        if not away and self.crew.by is not None:
+            # The leap is the clock's; nobody was idle that long.
+            self.crew = self.crew.badged(self.crew.by, self.now())
         self._say("ok", f"it is {told:%d %b %H:%M}; log again, the entry is marked 'clock doubted'")
         self.ring(1)
         return True

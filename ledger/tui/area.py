@@ -22,7 +22,8 @@ class Area(Static, can_focus=False):
         ready.overflow = "crop"
         if ready != self.drawn or ready.spans != self.drawn.spans:
             self.drawn = ready
-            self.update(ready)
+            # Its size never depends on what it shows, so nothing has to be laid out anew at a key.
+            self.update(ready, layout=False)
 
     @property
     def words(self) -> str:

@@ -6,11 +6,9 @@ from collections.abc import Sequence
 
 from rich.text import Text
 
-from ledger.errors import Finding
 from ledger.operations.clock_cups import Cup
 from ledger.operations.list_next_jobs import Job
 from ledger.operations.look_at_bench import LoggedLine
-from ledger.operations.look_at_ply import PlyInHand
 from ledger.tui.room import Room
 from ledger.tui.themes import Lines, Signs
 
@@ -23,6 +21,20 @@ def cut(text: str, width: int) -> str:
     """The text in `width` cells, with two dots where something is left out."""
     words = " ".join(text.split()) if "\n" in text or "\t" in text else text
     return words if len(words) <= width else f"{words[: max(0, width - 2)]}.."
+
+
+def broken(text: str, width: int) -> list[str]:
+    """Words broken into lines."""
+    lines: list[str] = []
+    line = ""
+    for word in text.split():
+        longer = f"{line} {word}".strip()
+        if len(longer) > width and line:
+            lines.append(line)
+            line = word[:width]
+        else:
+            line = longer[:width]
+    return [*lines, line] if line else lines
 
 
 def filled(rows: Sequence[Text], height: int) -> Text:
@@ -74,7 +86,7 @@ def in_minutes(minutes: float) -> str:
 
 def cups_text(cups: Sequence[Cup], room: Room) -> Text:
     """Shortest clock first: number, what, bar, minutes, grams. Past is a word."""
-    rows = [_title("CUPS", "pot life     g", room)]
+    rows = [title_row("CUPS", "pot life     g", room)]
     shown = _cups_in_sight(cups, room.height - 1)
     rows += [_cup_row(cup, room) for cup in shown]
     if len(shown) < len(cups):
@@ -91,7 +103,7 @@ def cups_text(cups: Sequence[Cup], room: Room) -> Text:
 
 def jobs_text(jobs: Sequence[Job], at: int, room: Room) -> Text:
     """Next jobs; with Tab here the mark chooses one and Enter opens its slip."""
-    rows = [_title("NEXT", str(len(jobs)) if jobs else "", room)]
+    rows = [title_row("NEXT", str(len(jobs)) if jobs else "", room)]
     places = room.height - 1
     for place in _in_sight(len(jobs), at, places, room):
         job = jobs[place]
@@ -107,63 +119,15 @@ def jobs_text(jobs: Sequence[Job], at: int, room: Room) -> Text:
 def today_text(today: Sequence[LoggedLine], added: str, at: int, room: Room) -> Text:
     """Today's entries, newest first, and what they added."""
     many = f"{len(today)} {'entry' if len(today) == 1 else 'entries'}"
-    rows = [_title("TODAY", f"{many}  +{added}", room)]
+    rows = [title_row("TODAY", f"{many}  +{added}", room)]
     for place in _in_sight(len(today), at, room.height - 1, room):
         entry = today[place]
         rows.append(_marked(f"{entry.at:%H:%M} {entry.says}", place == at, room))
     return filled(rows, room.height)
 
 
-def stack_text(ply: PlyInHand | None, room: Room) -> Text:
-    """The plies at their angles as they lie before the person; the first laid is the lowest row."""
-    rows = [_title("STACK", "" if ply is None else f"{ply.part} {ply.side}", room)]
-    if ply is None:
-        return filled([*rows, Text("no ply in hand", style=room.signs.quiet)], room.height)
-    rows.append(Text("top of the stack, as you see it", style=room.signs.quiet))
-    for one in reversed(ply.stack):
-        seen = ply.seen(one.angle_deg)
-        body = ((stroke_of(seen) or ".") + " ") * max(4, min(12, round(12 * one.coverage)))
-        state = "laid" if one.laid else "NOW" if one.number == ply.step else ""
-        row = Text(f"{one.number:>3} {body:<24} {signed(seen):>4}  {cut(one.material, 14):<14} {state}")
-        row.stylize(room.signs.mark if state == "NOW" else "" if one.laid else room.signs.quiet)
-        row.truncate(room.width)
-        rows.append(row)
-    return filled(rows, room.height)
-
-
-def findings_text(findings: Sequence[Finding], at: int, room: Room) -> Text:
-    """All findings with what to do, as many as there is room for."""
-    rows = [_title("FINDINGS", str(len(findings)), room)]
-    for finding in findings[at : at + room.height - 1]:
-        word = _SIGN.get(finding.severity.value, "note")
-        row = Text(word, style=room.signs.of(word))
-        row.append(f"  {cut(f'{finding.where}  {finding.what}; {finding.do}', room.width - 6)}", style="")
-        rows.append(row)
-    if not findings:
-        rows.append(Text("ok    no rule has noticed anything", style=room.signs.quiet))
-    return filled(rows, room.height)
-
-
-def where_text(ply: PlyInHand | None, room: Room) -> Text:
-    """Where the piece in hand goes on the wing: its path, and its half of the span."""
-    rows = [_title("WHERE IT GOES", "", room)]
-    if ply is None:
-        return filled([*rows, Text("no piece in hand", style=room.signs.quiet)], room.height)
-    half = max(6, (room.width - 6) // 2)
-    left, right = ("#" if ply.side == word else "." for word in ("LEFT", "RIGHT"))
-    middle = "####" if ply.side == "CENTRE" else "    "
-    rows += [
-        Text(cut(f"{ply.part}  {ply.title}", room.width)),
-        Text(cut(ply.assembly or "no assembly", room.width)),
-        Text(),
-        Text("LEFT".ljust(half) + "    " + "RIGHT".rjust(half)),
-        *[Text(left * half + middle + right * half) for _ in range(3)],
-        Text("seen from above, nose to the top", style=room.signs.quiet),
-    ]
-    return filled(rows, room.height)
-
-
-def _title(word: str, right: str, room: Room) -> Text:
+def title_row(word: str, right: str, room: Room) -> Text:
+    """An area's name, marked where Tab is, with a few words at the right."""
     row = Text(f"> {word}" if room.here else word, style=room.signs.mark if room.here else room.signs.head)
     space = room.width - len(row.plain)
     row.append(cut(right, max(0, space - 1)).rjust(space) if right else "", style=room.signs.quiet)

@@ -11,16 +11,14 @@ from ledger.operations.clock_cups import Cup
 from ledger.tui.area import Area
 from ledger.tui.bench_drawing import (
     cups_text,
-    findings_text,
     jobs_text,
     rule,
     signed,
-    stack_text,
     stroke_of,
     today_text,
-    where_text,
     worded_rule,
 )
+from ledger.tui.bench_wide import findings_text, stack_text, where_text
 from ledger.tui.bench_writing import BenchWriting
 from ledger.tui.completing import candidates
 from ledger.tui.room import Room
@@ -32,7 +30,7 @@ from ledger.units import Dimension, show
 
 # Columns and rows of the fixed layout, and of the large one.
 _SLIP, _CUPS, _NEXT = 49, 6, 5
-_WIDE_SLIP, _WIDE_SIDE, _WIDE_TOP, _WIDE_CUPS, _WIDE_NEXT, _WIDE_WHERE = 60, 46, 25, 8, 8, 52
+_WIDE_SLIP, _WIDE_SIDE, _WIDE_TOP, _WIDE_CUPS, _WIDE_NEXT, _WIDE_WHERE = 58, 46, 25, 8, 8, 54
 
 
 class BenchFace(BenchWriting):
@@ -135,11 +133,12 @@ class BenchFace(BenchWriting):
         named = slip.value("batches").upper().split()
         chosen = [cup for cup in cups if cup.number.upper() in named] or list(cups[:1])
         seen = ply.seen_deg
+        left_g = 1000 * sum(max(0.0, cup.left_kg or 0.0) for cup in chosen)
         return (
-            f"ply {ply.step}/{ply.steps} {signed(seen)}{stroke_of(seen)}",
-            *(line for cup in chosen[:1] for line in _large_cup(cup)),
-            *((f"needs {1000 * ply.needs_kg:.0f} g",) if ply.needs_kg else ()),
-            ply.side,
+            f"{ply.side[:5]} {ply.step}/{ply.steps} {signed(seen)}{stroke_of(seen)}",
+            *(f"{cup.number} {_large_clock(cup)}" for cup in chosen[:1]),
+            *((f"{left_g:.0f} of {1000 * ply.needs_kg:.0f} g",) if ply.needs_kg else ()),
+            *(f"{cup.number} {_large_clock(cup)}" for cup in chosen[1:]),
         )
 
     def _cups(self) -> tuple[Cup, ...]:
@@ -150,7 +149,12 @@ class BenchFace(BenchWriting):
         if slip is None or slip.current is None or view is None or not slip.current.things:
             return ()
         found = candidates(slip.current, self.ledger_app.line.text, view.open_things)
-        return (("", f"open: {', '.join(one.text for one in found[:8])}"),) if found else ()
+        row = "open:"
+        for one in found:
+            if len(row) + len(one.text) + 2 > _SLIP - 2:
+                break
+            row = f"{row} {one.text}"
+        return (("", row),) if found else ()
 
     def _about_hand(self) -> tuple[tuple[str, str], ...]:
         desk = self.desk
@@ -196,6 +200,13 @@ class BenchFace(BenchWriting):
             today_text(view.today, added, self.today_at, self._room(width, today, here=self.area == "today"))
         )
 
+    def _part_in_hand(self) -> str | None:
+        """The part that the slip or the hand is about: a piece is named by its part and a number."""
+        slip, hand = self.desk.slip, self.desk.hand
+        named = "" if slip is None else slip.value("piece") or slip.value("pieces") or slip.value("what")
+        name = named.split(";")[0].strip() or ("" if hand is None else hand.name)
+        return name.rsplit("/", 1)[0] if name else None
+
     def _draw_wide(self) -> None:
         if not self.wide or self.view is None or not self.is_mounted:
             return
@@ -203,7 +214,8 @@ class BenchFace(BenchWriting):
         width, below = self.app.size.width, max(1, self.app.size.height - 8 - _WIDE_TOP)
         stack = self._room(width - _WIDE_SLIP - _WIDE_SIDE - 2, _WIDE_TOP)
         self.query_one("#stack", Area).draw(stack_text(ply, stack))
-        self.query_one("#where", Area).draw(where_text(ply, self._room(_WIDE_WHERE, below)))
+        place = self._room(_WIDE_WHERE, below)
+        self.query_one("#where", Area).draw(where_text(self._part_in_hand(), self.view.places, place))
         findings = self._room(width - _WIDE_WHERE - 1, below)
         self.query_one("#findings", Area).draw(findings_text(self.view.findings, self.finding_at, findings))
 
@@ -226,6 +238,11 @@ class BenchFace(BenchWriting):
 def _large_cup(cup: Cup) -> tuple[str, ...]:
     if cup.minutes_left is None:
         return (cup.number,)
-    time = f"past {-cup.minutes_left:.0f} min" if cup.past else f"{cup.minutes_left:.0f} min"
     grams = "" if cup.left_kg is None else f" {1000 * max(0.0, cup.left_kg):.0f} g"
-    return (f"{cup.number}{grams}", time)
+    return (f"{cup.number}{grams}", _large_clock(cup))
+
+
+def _large_clock(cup: Cup) -> str:
+    if cup.minutes_left is None:
+        return ""
+    return f"past {int(-cup.minutes_left)} min" if cup.past else f"{int(cup.minutes_left)} min"

@@ -19,7 +19,7 @@ from ledger.tui.slip_drawing import label_of
 from ledger.tui.tour import SKIN
 
 _SOON_MIN = 5.0
-_PAGE = 10
+_PAGE = 3
 
 
 class BenchScreen(BenchFace):

@@ -75,6 +75,7 @@ class Desk:
         self.reading: Reading | None = None
         self.come_back_to: str | None = None
         self._stamped_by_press = False
+        self._came_back = False
         self.own: set[int] = set()
         self.seen_seq: int | None = None
 
@@ -88,6 +89,7 @@ class Desk:
                 self.drafts[draft.kind] = slip_of(draft, self.shop.units)
         if kept and self.slip is None and kept[-1].kind in self.drafts:
             self.slip = self.drafts.pop(kept[-1].kind)
+            self._came_back = True
             self.shop.say("LOOK", f"{self.slip.kind}: {self.slip.kept} is open again")
 
     def keep(self) -> None:
@@ -236,7 +238,7 @@ class Desk:
         """Why the open slip does not take this text."""
         if self.slip is None:
             return ""
-        take = self.slip.scanned if scanned else self.slip.typed
+        take = self.slip.scanned if scanned or read_badge(text) else self.slip.typed
         result = take(text, self.shop.find, self.shop.crew.by)
         return result.text if isinstance(result, Refusal) else ""
 
@@ -317,7 +319,15 @@ class Desk:
             return
         piece, step = slip.value("piece"), slip.value("step")
         ply = look_at_ply(stock, piece, self.shop.now(), int(step) if step else None) if piece else None
-        self.slip = replace(slip, ply=ply)
+        before, self.slip = slip.ply, replace(slip, ply=ply)
+        if ply is not None and (before is None or (before.piece, before.step) != (ply.piece, ply.step)):
+            # The disk keeps what was filled in; what stands beside it is proposed anew.
+            about = self.shop.find(piece)
+            notes = propose_entry(stock, "lay", about, self.shop.now(), step=ply.step).notes
+            self.slip = replace(self.slip, notes=dict(notes))
+        if self._came_back:
+            self._came_back = False
+            self.slip = self.slip.at_first_open()
 
     @property
     def wants_badge(self) -> bool:

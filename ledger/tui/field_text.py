@@ -5,13 +5,22 @@ from __future__ import annotations
 import re
 from collections.abc import Callable
 from dataclasses import dataclass
+from datetime import UTC, datetime
 
 from ledger.errors import LedgerError
 from ledger.model.declare import Field, Takes
 from ledger.model.things import ThingKind
 from ledger.operations.find_thing import FoundThing
 from ledger.tui.crew import read_badge
-from ledger.units import Dimension, Display, read_any_quantity, read_date, read_quantity, read_ratio
+from ledger.units import (
+    Dimension,
+    Display,
+    read_any_quantity,
+    read_date,
+    read_moment,
+    read_quantity,
+    read_ratio,
+)
 
 Find = Callable[[str], FoundThing | None]
 
@@ -44,6 +53,8 @@ _LABELS: dict[Display, dict[Dimension, str]] = {
         Dimension.VOLUME: "US gal",
     },
 }
+# Only whether a time can be read is asked here; which day it falls on is seen when it is logged.
+_SOME_DAY = datetime(2000, 1, 1, tzinfo=UTC)
 _POUNDS = frozenset({"weigh", "sheet", "weigh_points"})
 _PLAIN_NUMBER = re.compile(r"[+-]?\s*(?:[0-9][0-9.,]*|[.,][0-9]+)(?:[eE][+-]?[0-9]{1,3})?")
 
@@ -71,6 +82,8 @@ def unit_of_label(kind: str, field: Field, display: Display) -> str | None:
 def fit(field: Field, text: str, unit: str | None, find: Find, *, scanned: bool = False) -> str | Misfit:
     """The text as it will stand in the field, or why it cannot."""
     stripped = " ".join(text.split())
+    if field.word == "at":
+        return _read(stripped, lambda written: read_moment(written, _SOME_DAY))
     reader = {
         Takes.TEXT: lambda: _free(field, stripped, find, scanned=scanned),
         Takes.NAME: lambda: _names(field, stripped, find),

@@ -8,14 +8,12 @@ from typing import ClassVar
 from ledger.model.attitude import Attitude, NotUpward
 from ledger.operations.look_at_tank import (
     Asked,
-    Gain,
     TankDrawn,
     TankNow,
     TanksView,
-    gains_of,
     look_at_tank,
-    trapped_over,
 )
+from ledger.operations.survey_tank import Gain, Rung, curve_of, gains_of, trapped_over
 from ledger.tui.actions import Action
 from ledger.tui.fuel_actions import FUEL_ACTIONS
 from ledger.tui.fuel_figures import cell_line
@@ -25,6 +23,7 @@ from ledger.units import Dimension, Display, to_si
 
 PITCHES_DEG = (-12.0, -8.0, -4.0, 0.0, 4.0, 8.0, 12.0, 16.0)
 ROLLS_DEG = (-6.0, -3.0, 0.0, 3.0, 6.0)
+RUNGS = 10
 
 
 class FuelAsking(WorkScreen[TanksView]):
@@ -42,6 +41,7 @@ class FuelAsking(WorkScreen[TanksView]):
         self.cell = ""
         self.listed = ""
         self.gains: tuple[Gain, ...] = ()
+        self.curve: tuple[Rung, ...] = ()
         self.map: dict[TankDrawn, tuple[tuple[float | None, ...], ...]] = {}
         self.arrangement: Arrangement | None = None
         self.attitude_at = 0
@@ -147,13 +147,19 @@ class FuelAsking(WorkScreen[TanksView]):
             return
         if self.wide or self.listed == "openings":
             self.in_thread(lambda: gains_of(drawn, asked.attitude), self._have_gains, about="gains")
-        if (self.wide or self.listed == "map") and drawn not in self.map:
+        if self.wide:
+            self.in_thread(lambda: curve_of(drawn, asked.attitude, RUNGS), self._have_curve, about="curve")
+        if self.listed == "map" and drawn not in self.map:
             self.in_thread(
                 lambda: (drawn, trapped_over(drawn, PITCHES_DEG, ROLLS_DEG)), self._have_map, about="map"
             )
 
     def _have_gains(self, gains: tuple[Gain, ...]) -> None:
         self.gains = gains
+        self.draw_beside()
+
+    def _have_curve(self, curve: tuple[Rung, ...]) -> None:
+        self.curve = curve
         self.draw_beside()
 
     def _have_map(self, found: tuple[TankDrawn, tuple[tuple[float | None, ...], ...]]) -> None:

@@ -7,7 +7,8 @@ from collections.abc import Sequence
 from rich.text import Text
 
 from ledger.factors import from_si
-from ledger.operations.look_at_tank import Gain, TankDrawn, TankNow
+from ledger.operations.look_at_tank import TankDrawn, TankNow
+from ledger.operations.survey_tank import Gain, Rung
 from ledger.reports.fuel_lines import behind, trapped_text, usable_text
 from ledger.reports.plain import clean, shortened
 from ledger.tui.room import Room
@@ -67,7 +68,11 @@ def _standing(now: TankNow, display: Display, room: Room) -> list[Text]:
     rows = [
         Text(f"{nose}{roll:>{max(1, room.width - len(nose))}}", style=room.signs.head),
         Text(shortened(f"{name}  {' '.join(pushed)}".rstrip(), room.width)),
-        Text(f"in tank {held:>9} {mass:>10}"),
+        Text(
+            _fitting(
+                room.width, f"in tank {held:>9} {mass:>10}", f"in tank {held} {mass}", f"in {held}, {mass}"
+            )
+        ),
     ]
     if now.outlet_wl_m is None and now.cg_m is None:
         why = "empty" if now.asked.quantity_m3 <= 0.0 else "less than trapped: which"
@@ -94,10 +99,9 @@ def _trapped(now: TankNow, display: Display, room: Room) -> list[Text]:
             Text("not counted: see findings"),
             Text(),
         ]
-    most = f"{worst.cell} {trapped_text(worst.trapped_m3, display)}"
-    head.append(
-        f"{shortened(most, room.width - len(head.plain) - 2):>{room.width - len(head.plain)}}", style=""
-    )
+    space = room.width - len(head.plain) - 1
+    cell, most = clean(worst.cell), trapped_text(worst.trapped_m3, display)
+    head.append(f" {_fitting(space, f'{cell} {most}', f'{cell} {most.split()[0]}', cell):>{space}}", style="")
     lower, wider = worst.frees_lower_1mm_m3, now.frees_wider_10pc_m3
     moves = [Text("no hole to move frees it"), Text()]
     if lower is not None and wider is not None:
@@ -112,14 +116,19 @@ def _worth(move: str, freed_m3: float, display: Display) -> str:
 def _holds(drawn: TankDrawn, display: Display, room: Room) -> list[Text]:
     fuel = drawn.fuel
     worst = "" if fuel.governing_attitude is None else f"worst at {clean(fuel.governing_attitude)}"
-    capacity = f"capacity {show(fuel.capacity_m3, Dimension.VOLUME, display):>9}"
-    if fuel.caught_air_m3:
-        capacity += f"  o {trapped_text(fuel.caught_air_m3, display)}"
+    capacity = show(fuel.capacity_m3, Dimension.VOLUME, display)
+    air = f"  o {trapped_text(fuel.caught_air_m3, display)}" if fuel.caught_air_m3 else ""
+    usable = usable_text(fuel.usable_m3, display)
     return [
-        Text(capacity),
-        Text(f"usable   {usable_text(fuel.usable_m3, display):>9}  COMPUTED"),
+        Text(_fitting(room.width, f"capacity {capacity:>9}{air}", f"capacity {capacity:>9}")),
+        Text(_fitting(room.width, f"usable   {usable:>9}  COMPUTED", f"usable {usable} COMPUTED")),
         Text(shortened(worst, room.width)),
     ]
+
+
+def _fitting(width: int, *choices: str) -> str:
+    """The fullest that fits: a figure is left out whole, never cut."""
+    return next((choice for choice in choices if len(choice) <= width), choices[-1])
 
 
 def _short_nose(pitch_deg: float) -> str:
@@ -152,6 +161,31 @@ def gains_text(gains: Sequence[Gain], display: Display, room: Room) -> Text:
         rows.append(Text(f"{name:<{wide}}{lower:>14}{wider:>14}"))
     if not gains:
         rows.append(Text("no opening traps anything", style=room.signs.quiet))
+    rows = rows[: room.height]
+    return Text("\n").join([*rows, *[Text()] * (room.height - len(rows))])
+
+
+def curve_text(curve: Sequence[Rung], now: TankNow, display: Display, room: Room) -> Text:
+    """What the tank holds by the level at its outlet, full at the top; the row nearest to now is marked."""
+    length, volume = shown_unit(Dimension.LENGTH, display), shown_unit(Dimension.VOLUME, display)
+    rows = [Text(f"CURVE: {volume} in tank by WL {length} at outlet, this tilt", style=room.signs.head)]
+    held = now.asked.quantity_m3
+    here = min(curve, key=lambda rung: abs(rung.volume_m3 - held), default=None)
+    most = max((rung.volume_m3 for rung in curve), default=0.0)
+    space = max(4, room.width - 22)
+    for rung in reversed(curve):
+        marks = round(space * rung.volume_m3 / most)
+        kept = min(marks, round(space * (now.trapped_m3 or 0.0) / most))
+        level = shown_number(rung.outlet_wl_m, Dimension.LENGTH, display)
+        litres = shown_number(rung.volume_m3, Dimension.VOLUME, display)
+        row = Text().append(f"{'>' if rung is here else ' '}{level:>9} |", style="")
+        row.append("#" * kept, style=room.signs.trapped).append("=" * (marks - kept), style=room.signs.fuel)
+        row.append(f" {litres}", style=room.signs.mark if rung is here else "")
+        rows.append(row)
+    if not curve:
+        rows.append(Text("no fuel leaves at this tilt", style=room.signs.quiet))
+    for row in rows:
+        row.truncate(room.width)
     rows = rows[: room.height]
     return Text("\n").join([*rows, *[Text()] * (room.height - len(rows))])
 

@@ -8,6 +8,8 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from functools import partial
+from itertools import groupby
 
 from rich.text import Text
 
@@ -286,15 +288,19 @@ class _Canvas:
         if self.last_layer < self.arrangement.layers:
             self.put(1, self.y[-1], "v", self.room.signs.look)
 
+    def _style_at(self, row: int, column: int) -> str:
+        return self.styles.get((row, column), "")
+
     def text(self) -> Text:
         """All rows."""
         rows = []
         for number, row in enumerate(self.rows):
-            text = Text("".join(row))
-            for column in range(len(row)):
-                style = self.styles.get((number, column))
-                if style:
-                    text.stylize(style, column, column + 1)
+            text, column = Text(), 0
+            # A span for each run of one style: a span a character takes longer to paint than to reckon.
+            for style, run in groupby(range(len(row)), partial(self._style_at, number)):
+                many = len(list(run))
+                text.append("".join(row[column : column + many]), style=style)
+                column += many
             rows.append(text)
         return Text("\n").join(rows)
 
@@ -306,7 +312,7 @@ def _signs(cell: CellNow, places: int) -> list[str]:
         return ["?"] * places
     kept = min(share, cell.trapped_share if cell.trapped_share is not None else share)
     trapped = _places(kept, places)
-    feeding = _places(share - kept, places - trapped) if share - kept > 1e-6 else 0
+    feeding = min(_places(share - kept, places), places - trapped) if share - kept > 1e-6 else 0
     if share - kept > 1e-6 and feeding == 0 and trapped > 1:
         trapped, feeding = trapped - 1, 1
     air = min(_places(cell.air_share, places), places - trapped - feeding)

@@ -15,7 +15,7 @@ from ledger.reports.plain import clean, shortened
 from ledger.tui.area import Area
 from ledger.tui.bench_drawing import rule
 from ledger.tui.fuel_asking import PITCHES_DEG, ROLLS_DEG
-from ledger.tui.fuel_figures import figures_text, gains_text, map_text, small_volume, tilt_words
+from ledger.tui.fuel_figures import curve_text, figures_text, gains_text, map_text, small_volume, tilt_words
 from ledger.tui.fuel_outline import outline_text
 from ledger.tui.fuel_plan_view import plan_text
 from ledger.tui.fuel_section import scale_of, section_text
@@ -34,6 +34,7 @@ _MOVES = {
     "cell": "arrows choose a cell",
 }
 _KEYS = "Home level  End next attitude  Enter openings by litres  Space map  tank: next"
+_WIDE_KEYS = "Home level  End next attitude  Space map or curve  tank: next"
 _BACK = "Esc or Enter back to the drawing  Space map  openings"
 
 
@@ -56,7 +57,7 @@ class FuelScreen(FuelTurning):
     FuelScreen #fuel-listed {{ display: none; height: 1fr; }}
     FuelScreen.-listed #fuel-listed {{ display: block; }}
     FuelScreen.-listed .drawing {{ display: none; }}
-    FuelScreen #fuel-map {{ height: 12; }}
+    FuelScreen #fuel-map {{ height: {_MAP}; }}
     """
 
     def compose_body(self) -> ComposeResult:
@@ -86,12 +87,18 @@ class FuelScreen(FuelTurning):
     def look(self, build: Build, now: datetime) -> TanksView:  # noqa: ARG002
         """In a thread: proved cells and the report, kept as long as the plan stands."""
         stock = self.ledger_app.stock
-        return look_at_tanks(build if stock is None else stock)
+        view = look_at_tanks(build if stock is None else stock)
+        if self.wide:
+            # Slow the first time, and kept: here it holds up no key.
+            for drawn in view.tanks:
+                _ = drawn.outlines
+        return view
 
     def show(self, view: TanksView) -> None:
         """The same tank as before where it is still there, at the same tilt and quantity."""
         self.tank_at = min(self.tank_at, max(0, len(view.tanks) - 1))
         self.map = {drawn: found for drawn, found in self.map.items() if drawn in view.tanks}
+        self.gains, self.curve = (), ()
         if view.tanks:
             self.take_tank(keep=self.asked is not None)
         self.draw_still()
@@ -124,11 +131,19 @@ class FuelScreen(FuelTurning):
             self.query_one(f"#fuel-rule-{name}", Area).draw(rule(width - left - 1, self.lines))
         step = "0.25 gal" if self.shown_in is Display.US else "1 L"
         keys = f"{_MOVES[self.area].format(step=step)}   PgUp PgDn {step}   Tab next: tilt, fuel, cut, cell"
-        self.query_one("#fuel-keys", Area).draw(f"{keys}\n{_BACK if self.listed else _KEYS}")
+        self.query_one("#fuel-keys", Area).draw(
+            f"{keys}\n{_WIDE_KEYS if self.wide else _BACK if self.listed else _KEYS}"
+        )
         moves = f"arrows move: {self.area.upper()}"
         head = f"FROM ABOVE, nose to the top{moves:>{left - 28}}"
         self.query_one("#fuel-above", Area).draw(head)
         self.query_one("#fuel-ends", Area).draw(self._ends(left))
+        if self.wide and drawn is not None:
+            outline, stretch = outline_text(drawn.outlines, drawn.marks, self._room(left, _WIDE_OUTLINE))
+            title = f"TRUE OUTLINE, holes where they are{_stretched('length', stretch)}"
+            self.query_one("#fuel-outline-title", Area).draw(title)
+            self.query_one("#fuel-outline", Area).draw(outline)
+        self.draw_beside()
 
     def _ends(self, width: int) -> str:
         """Which end is the tip: the one farther from the middle of the aircraft."""
@@ -159,11 +174,7 @@ class FuelScreen(FuelTurning):
         figures = self._room(self.app.size.width - left - 1, _FIGURES)
         self.query_one("#fuel-figures", Area).draw(figures_text(drawn, now, self.shown_in, figures))
         if self.wide:
-            outline, stretch = outline_text(drawn.outlines, drawn.marks, self._room(left, _WIDE_OUTLINE))
-            title = f"TRUE OUTLINE, holes where they are{_stretched('length', stretch)}"
-            self.query_one("#fuel-outline-title", Area).draw(title)
-            self.query_one("#fuel-outline", Area).draw(outline)
-        self.draw_beside()
+            self.draw_beside()
 
     def _cut_title(self, now: TankNow, room: Room) -> str:
         cut = now.cut
@@ -179,24 +190,30 @@ class FuelScreen(FuelTurning):
         drawn = self.drawn
         if drawn is None or not self.is_mounted:
             return
-        found = self.map.get(drawn)
+        now = self.now_stands
         if self.wide:
             side, height = self.app.size.width - self._left_width() - 1, self.app.size.height
-            gains = gains_text(self.gains, self.shown_in, self._room(side, height - 5 - 5 - _FIGURES - 14))
+            gains = gains_text(
+                self.gains, self.shown_in, self._room(side, height - 5 - 5 - _FIGURES - 2 - _MAP)
+            )
             self.query_one("#fuel-gains", Area).draw(gains)
-            if found is not None:
-                drawing = self._map_text(drawn, found, self._room(side, 12))
-                self.query_one("#fuel-map", Area).draw(drawing)
+            beside = self._room(side, _MAP)
+            curve = "" if now is None else curve_text(self.curve, now, self.shown_in, beside)
+            self.query_one("#fuel-map", Area).draw(
+                self._map_text(drawn, beside) if self.listed == "map" else curve
+            )
+            return
         if self.listed == "openings":
             listed = self._room(self._left_width(), self.app.size.height - 10)
             self.query_one("#fuel-listed", Area).draw(gains_text(self.gains, self.shown_in, listed))
         elif self.listed == "map":
             listed = self._room(self._left_width(), self.app.size.height - 10)
-            words = "reckoning the map"
-            text = words if found is None else self._map_text(drawn, found, listed)
-            self.query_one("#fuel-listed", Area).draw(text)
+            self.query_one("#fuel-listed", Area).draw(self._map_text(drawn, listed))
 
-    def _map_text(self, drawn: TankDrawn, found: tuple[tuple[float | None, ...], ...], room: Room) -> Text:
+    def _map_text(self, drawn: TankDrawn, room: Room) -> Text:
+        found = self.map.get(drawn)
+        if found is None:
+            return Text("reckoning the map")
         return map_text(
             PITCHES_DEG, ROLLS_DEG, found, most_m3=drawn.most_m3, display=self.shown_in, room=room
         )

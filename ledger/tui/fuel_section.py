@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import groupby
 
 from rich.text import Text
 
@@ -55,13 +56,12 @@ def section_text(cut: Cut, room: Room) -> Text:
     if not cut.cells:
         words = "no cell of this tank is cut here"
         canvas[room.height // 2][: len(words)] = list(words[: room.width])
+    styles = {FEEDS: room.signs.fuel, TRAPPED: room.signs.trapped}
     rows = []
     for line in canvas:
-        text = Text("".join(line[: room.width]))
-        for sign, style in ((FEEDS, room.signs.fuel), (TRAPPED, room.signs.trapped)):
-            for column, character in enumerate(line):
-                if character == sign and style:
-                    text.stylize(style, column, column + 1)
+        text = Text()
+        for style, run in groupby(line[: room.width], lambda sign: styles.get(sign, "")):
+            text.append("".join(run), style=style)
         rows.append(text)
     return Text("\n").join(rows)
 

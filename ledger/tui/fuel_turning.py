@@ -13,7 +13,7 @@ from ledger.tui.fuel_plan_view import neighbour
 from ledger.units import Dimension, UnitError, read_number, read_quantity, show
 
 _CUTS = 40
-NO_TANK = "the plan has no tank: add tanks.toml to its folder, then wingledger adopt BOOK PLAN"
+NO_TANK = "no tank in the plan: add tanks.toml to it, then wingledger adopt BOOK PLAN"
 
 
 class FuelTurning(FuelAsking):
@@ -36,10 +36,8 @@ class FuelTurning(FuelAsking):
             cells = [foot.cell for foot in drawn.footprints if foot.cell == thing.name]
             cells += [mark.cells[0] for mark in drawn.marks if mark.name == thing.name]
             if cells:
-                moved, self.tank_at, self.cell = place != self.tank_at, place, cells[0]
-                if moved:
-                    self.take_tank(keep=True)
-                    self.draw_still()
+                if place != self.tank_at:
+                    self._go_to_tank(place)
                 self._choose(cells[0])
                 return True
         return False
@@ -199,8 +197,8 @@ class FuelTurning(FuelAsking):
 
     def list_instead(self, what: str) -> None:
         """A list in place of the drawing; where there is room for both it stands beside it already."""
-        self.listed = "" if self.wide else what
-        self.set_class(bool(self.listed), "-listed")
+        self.listed = "" if self.wide and what == "openings" else what
+        self.set_class(bool(self.listed) and not self.wide, "-listed")
         self.draw_still()
         self.draw_beside()
         self.ask_gains()
@@ -253,7 +251,7 @@ class FuelTurning(FuelAsking):
 
     def _go_to_tank(self, place: int) -> None:
         self.tank_at = place
-        self.gains = ()
+        self.gains, self.curve = (), ()
         self.now_stands = None
         self.take_tank(keep=True)
         self.draw_still()

@@ -49,12 +49,15 @@ def _second(plate: Plate | None, width: int, signs: Signs) -> Text:
     usable = show(plate.usable_m3, Dimension.VOLUME, display, rounding=Rounding.DOWN)
     fs = show(plate.cg_fs_m, Dimension.LENGTH, display, places=0 if display.value == "metric" else 1)
     left = f"now {best} +-{spread}  CG FS {fs}  usable {usable}  weighed {100 * plate.share_actual:.0f} %"
-    row = Text(left)
     right = Text()
     right.append(f"STOP {plate.stops}", style=signs.stop if plate.stops else signs.quiet)
     right.append("  ")
     right.append(f"LOOK {plate.looks}", style=signs.look if plate.looks else signs.quiet)
-    row.pad_right(max(1, width - len(left) - len(right.plain)))
+    # US units are longer: the counts at the end must never be what is cut.
+    room = width - len(right.plain) - 1
+    shorter = (left, left.replace("  ", " "), left.replace("  ", " ").replace("CG FS", "CG"))
+    row = Text(next((words for words in shorter if len(words) <= room), shorter[-1][:room]))
+    row.pad_right(width - len(row.plain) - len(right.plain))
     row.append_text(right)
     row.truncate(width)
     return row

@@ -30,7 +30,7 @@ from ledger.tui.field_text import (
 from ledger.units import Display
 
 _COMMON = (
-    Field(word="at", key="at", takes=Takes.TEXT, tip="when it was done; empty is now", required=False),
+    Field(word="at", key="at", takes=Takes.TEXT, tip="such as 10:15; empty is now", required=False),
     Field(word="remark", key="remark", takes=Takes.TEXT, tip="anything to remember", required=False),
 )
 
@@ -170,8 +170,7 @@ class Slip:
         if missing:
             return self.moved_to(missing[0])
         # Never on `log`: the Enter that opened the slip may still be held down.
-        first = "batches" if self.cup_is_short else "lots"
-        return self.moved_to(first if self.kind == "lay" else self.fields[0].word)
+        return self.moved_to("lots" if self.kind == "lay" else self.fields[0].word)
 
     # -- filling
 
@@ -214,12 +213,25 @@ class Slip:
             return self._with_mass(field, text)
         taken = fit(field, text, self.unit(field), find)
         if isinstance(taken, Misfit):
-            return Refusal(text=f"{_label(field)}: {taken.what}; {taken.do}")
+            further = self._typed_further(text, find)
+            return further or Refusal(text=f"{_label(field)}: {taken.what}; {taken.do}")
         if field.word == "batches" and self.cup_is_short and taken not in self.value(field.word):
             taken = f"{self._emptied_cups()}; {taken}"
         if takes_person(field) and by is not None and taken == by:
             return Refusal(text=f"{taken} logs: somebody else must have seen it")
         return self.put(field.word, taken).gone_on()
+
+    def _typed_further(self, text: str, find: Find) -> Slip | None:
+        """A number typed that names what one of the next fields wants goes there, as a scan would."""
+        thing = find(text)
+        if thing is None:
+            return None
+        for field in self._where_it_may_go():
+            named = field.takes in (Takes.NAME, Takes.SHARE)
+            taken = self._fitted(field, text, thing, find) if named else None
+            if taken is not None:
+                return self._filled(field, taken)
+        return None
 
     def scanned(self, text: str, find: Find, by: str | None) -> Slip | Refusal:
         """A scan: into the field the mark is on, or, while nobody moved the mark, where it belongs next."""
@@ -240,12 +252,12 @@ class Slip:
         # A required field that is still empty must be filled before anything else is.
         if self.current is not None and self.current.required and not self.value(self.current.word):
             return here
-        around = (*self.fields[self.at_field + 1 :], *self.fields[: self.at_field])
-        open_yet = tuple(
-            field for field in around if not self.value(field.word) or field.word in self.proposed
-        )
-        more = tuple(field for field in reversed(around) if field.many and field not in open_yet)
-        return (*here, *open_yet, *more)
+        # Never back: a rib scanned by mistake must not take the place of the skin in hand.
+        after = self.fields[self.at_field + 1 :]
+        return (*here, *(field for field in after if self._is_open(field)))
+
+    def _is_open(self, field: Field) -> bool:
+        return not self.value(field.word) or field.word in self.proposed or field.many
 
     def _fitted(self, field: Field, text: str, thing: FoundThing | None, find: Find) -> str | None:
         if field.takes in (Takes.NAME, Takes.SHARE) and field.mints is None:

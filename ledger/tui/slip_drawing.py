@@ -11,7 +11,7 @@ from ledger.model.declare import Field
 from ledger.model.things import ThingKind
 from ledger.operations.find_thing import FoundThing
 from ledger.operations.judge_reading import Judged
-from ledger.tui.bench_drawing import cut, filled, signed, stroke_of
+from ledger.tui.bench_drawing import broken, cut, filled, signed, stroke_of
 from ledger.tui.room import Room
 from ledger.tui.slip import Slip
 from ledger.units import Display, show_small_mass
@@ -99,20 +99,6 @@ def judged_lines(judged: Judged, display: Display) -> tuple[tuple[str, str], ...
         hand = ", the opposite hand" if one.opposite else ""
         lines.append(("LOOK", f"it fits {one.piece} ({show_small_mass(one.expected_kg, display)}){hand}"))
     return tuple(lines)
-
-
-def broken(text: str, width: int) -> list[str]:
-    """Words broken into lines."""
-    lines: list[str] = []
-    line = ""
-    for word in text.split():
-        longer = f"{line} {word}".strip()
-        if len(longer) > width and line:
-            lines.append(line)
-            line = word[:width]
-        else:
-            line = longer[:width]
-    return [*lines, line] if line else lines
 
 
 def _head(slip: Slip, now: datetime, room: Room) -> list[Text]:

@@ -21,12 +21,14 @@ Seen = frozenset[str]
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Act:
-    """One act: what to type, and the figure that then stands on the screen."""
+    """One act: what to do, the figure that then stands on the screen, and what to look at once there."""
 
     number: int
     says: str
     figure: str
     over: Callable[[tuple[Logged, ...], Seen], bool]
+    screen: str = "bench"
+    there: str = ""
 
 
 def _laid(logged: tuple[Logged, ...], _: Seen) -> bool:
@@ -65,21 +67,26 @@ ACTS: tuple[Act, ...] = (
     ),
     Act(
         number=4,
-        says="type weights: which skin is heavy?",
-        figure="593.5 g heavy",
+        says="type weights: is the wing heavy by chance, and where?",
+        figure="HEAVY 1.06 kg, not chance",
         over=lambda _, seen: "weights" in seen,
+        screen="weights",
+        there="LEFT skins are 0.650 kg heavy, LOOK; most of it is resin",
     ),
     Act(
         number=5,
-        says="type fuel: litres that stay, behind which drain?",
-        figure="0.7",
+        says="type fuel: what stays behind which drain?",
+        figure="L6 0.7 L",
         over=lambda _, seen: "fuel" in seen,
+        screen="fuel",
+        there="press End until best climb: 0.7 L stays in L6, behind drain L4-L6",
     ),
     Act(
         number=6,
         says="type trace, then B014Z: the cup mixed wrong",
-        figure="B014Z",
+        figure="IN 1 piece, it is FITTED: 805.0 g of 805.0 g",
         over=lambda _, seen: BAD_CUP in seen,
+        screen="trace",
     ),
 )
 
@@ -93,6 +100,14 @@ def act_now(logged: tuple[Logged, ...], seen: Iterable[str]) -> Act | None:
     """The first act not over yet; None once all are."""
     known = frozenset(seen)
     return next((act for act in ACTS if not act.over(logged, known)), None)
+
+
+def words_on(screen: str, act: Act | None) -> str:
+    """What a screen other than the bench says of the acts: what to look at there, then what is next."""
+    here = next((one for one in ACTS if one.screen == screen and one.there), None)
+    look = "" if here is None else f" Act {here.number}: {here.there}."
+    going_on = "" if act is None or here is None else " Next,"
+    return f"{INVENTED}.{look}{going_on} {line_of(act)}"
 
 
 def line_of(act: Act | None) -> str:

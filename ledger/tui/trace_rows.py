@@ -42,7 +42,7 @@ def headline_text(view: TraceView, room: Room) -> Text:
         return Text("scan or type a number to see where it came from and where it went")
     tag = "" if view.number is None or view.number == traced.what else f" tag {view.number}"
     state = traced.state.upper() if traced.state in ("on hold", "scrapped", "expired") else traced.state
-    text = Text(clean(traced.what), style=room.signs.head)
+    text = Text().append(clean(traced.what), style=room.signs.head)
     words = "; ".join(clean(reason) for reason in view.why if reason != traced.state)
     text.append(
         shortened(f"{tag}  {traced.kind}, {state}  {words}", max(1, room.width - len(text.plain) - 6)),
@@ -108,11 +108,10 @@ def links_text(rows: Sequence[LinkRow], title: str, at: int, display: Display, r
     masses = (show_small_mass(row.link.mass_kg, display) for row in rows)
     mass_width = max((_MASS, *(1 + len(mass) for mass in masses)))
     name_width = max(8, room.width - mass_width - _STATE - 1)
+    head_width = name_width + mass_width - len(" mass")
     lines = [
         Text(
-            f"{shortened(head, name_width):<{name_width}}{'mass':>{mass_width}} {'now':<{_STATE}}"[
-                : room.width
-            ],
+            f"{shortened(head, head_width):<{head_width}} mass {'now':<{_STATE}}"[: room.width],
             style=room.signs.mark if room.here else room.signs.head,
         )
     ]
@@ -159,7 +158,7 @@ def suspects_text(suspects: Sequence[Suspect], at: int, room: Room) -> Text:
     for place in window(len(suspects), at if room.here else 0, room.height - 1):
         one = suspects[place]
         marked = room.here and place == at
-        row = Text(f"{'>' if marked else ' '}", style=room.signs.mark if marked else "")
+        row = Text().append(">" if marked else " ", style=room.signs.mark if marked else "")
         row.append(f"{one.verdict:<5}", style=room.signs.of(one.verdict))
         row.append(shortened(f"{one.what:<16} {one.why}", room.width - 6), style="bold" if marked else "")
         lines.append(row)
@@ -185,7 +184,7 @@ def findings_text(view: TraceView, room: Room) -> Text:
     lines = [Text("FINDINGS ABOUT IT", style=room.signs.head)]
     for finding in view.findings:
         word = {"stop": "STOP", "look": "LOOK"}.get(finding.severity.value, "note")
-        row = Text(word, style=room.signs.of(word))
+        row = Text().append(word, style=room.signs.of(word))
         row.append(shortened(f"  {finding.what}", room.width - 4), style="")
         lines += [row, Text(shortened(f"      {finding.do}", room.width))]
     if not view.findings:

@@ -24,7 +24,7 @@ def headline_text(view: WeightsView, room: Room) -> Text:
     best = show(total.best_kg, Dimension.MASS, display)
     spread = show(total.best_u_kg, Dimension.MASS, display, rounding=Rounding.UP)
     estimated = show(total.estimated_kg, Dimension.MASS, display)
-    text = Text("FINISHED ", style=room.signs.head)
+    text = Text().append("FINISHED ", style=room.signs.head)
     text.append(f"{best} +-{spread}   estimated {estimated}   ", style="")
     word, style = _verdict(view, room)
     text.append(word, style=style)
@@ -52,7 +52,7 @@ def known_text(total: TotalMass, room: Room) -> Text:
     lead = "known by   "
     space = room.width - len(lead) - sum(2 + len(word) for word in words)
     lengths = _whole_parts(shares, max(3, space))
-    text = Text(lead, style=room.signs.head)
+    text = Text().append(lead, style=room.signs.head)
     for letter, length, word in zip(_LETTERS, lengths, words, strict=True):
         text.append(f"{letter} {letter * length}{word}", style="")
     text.truncate(room.width)
@@ -144,7 +144,7 @@ def _findings(view: WeightsView, row: WeightRow, room: Room) -> list[Text]:
     rows = []
     for finding in view.findings.get(row.key, ()):
         word = {"stop": "STOP", "look": "LOOK"}.get(finding.severity.value, "note")
-        text = Text(word, style=room.signs.of(word))
+        text = Text().append(word, style=room.signs.of(word))
         text.append(f"  {clean(finding.what)}", style="")
         rows += [*_wrapped(text, room.width), *_wrapped(Text(f"      {clean(finding.do)}"), room.width)]
     return rows or [Text("ok    no rule has noticed anything", style=room.signs.quiet)]

@@ -19,7 +19,7 @@ _FIXED = _BUILT + 2 * _MASS + _SPREAD + _BY + _OFF + _FLAG
 _HALF, _WIDE_HALF = 5, 10
 _WIDE = 90
 _LEAST_NAME = 21
-NO_PARTS = "the plan has no parts: fill parts.csv in its folder, then wingledger adopt BOOK PLAN"
+NO_PARTS = "no parts in the plan: fill its parts.csv, then wingledger adopt BOOK PLAN"
 
 
 def seen_rows(rows: Sequence[WeightRow], opened: AbstractSet[str]) -> tuple[int, ...]:

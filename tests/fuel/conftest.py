@@ -100,6 +100,34 @@ class Builder:
         )
 
     @staticmethod
+    def pitched(degrees: float, **more: Any) -> Attitude:
+        """A flight attitude named after its pitch."""
+        return Attitude(name=f"pitch {degrees:g}", pitch_deg=degrees, **more)
+
+    @staticmethod
+    def one_box(**outlet: Any) -> tuple[Opening, ...]:
+        """Outlet at the floor's edge, filler at 0.19 and vent at the lid of a box 1 x 0.5 x 0.2."""
+        return (
+            Builder.slot("outlet", "A outlet", 0.0, 0.0, at=(1.0, 0.0), **outlet),
+            Builder.slot("filler", "A filler", 0.19, 0.19, at=(0.5, 0.2)),
+            Builder.slot("vent", "A vent", 0.2, 0.2, at=(0.5, 0.2)),
+        )
+
+    @staticmethod
+    def prism(section: list[tuple[float, float]]) -> ClosedCell:
+        """An anticlockwise polygon of x and z drawn out from y 0 to 1, hollow only at its second point."""
+        n = len(section)
+        corners = [(x, y, z) for y in (0.0, 1.0) for x, z in section]
+        faces = []
+        for k in range(n):
+            j = (k + 1) % n
+            faces += [(k, j, n + j), (k, n + j, n + k)]
+        for k in range(2, n):
+            a, b = k, (k + 1) % n
+            faces += [(1, b, a), (n + 1, n + a, n + b)]
+        return ClosedCell.from_mesh(np.array(corners), np.array(faces)[:, ::-1])
+
+    @staticmethod
     def row_of_boxes(count: int, *, width: float = 1.0, height: float = 1.0) -> dict[str, ClosedCell]:
         """Boxes A, B, C … side by side along y, each 1 m deep in x."""
         names = "ABCDEFGHIJ"[:count]

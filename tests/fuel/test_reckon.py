@@ -6,28 +6,13 @@ import math
 from dataclasses import replace
 from typing import Any
 
-import numpy as np
 import pytest
 
 from ledger.fuel.reckon import reckon
 from ledger.fuel.stood import System
-from ledger.geometry.closed_cell import ClosedCell
 from ledger.model.attitude import Attitude
 from ledger.model.plan import FuelGrade
 from ledger.model.tanks import Cell, Feed, Join, Tank, Tanks
-
-
-def pitched(degrees: float, **more: Any) -> Attitude:
-    return Attitude(name=f"pitch {degrees:g}", pitch_deg=degrees, **more)
-
-
-def one_box(build: Any, **outlet: Any) -> tuple[Any, ...]:
-    """Outlet at the floor's edge, filler at 0.19 and vent at the lid of a box 1 x 0.5 x 0.2."""
-    return (
-        build.slot("outlet", "A outlet", 0.0, 0.0, at=(1.0, 0.0), **outlet),
-        build.slot("filler", "A filler", 0.19, 0.19, at=(0.5, 0.2)),
-        build.slot("vent", "A vent", 0.2, 0.2, at=(0.5, 0.2)),
-    )
 
 
 def test_no_tanks_is_an_empty_report(level: Attitude) -> None:
@@ -39,7 +24,7 @@ def test_a_box_pitched_away_from_its_outlet_traps_the_wedge_of_the_closed_form(
     build: Any, ground: Any
 ) -> None:
     cells = {"A": build.box((0.0, 0.0, 0.0), (1.0, 0.5, 0.2))}
-    tank = build.report(cells, one_box(build), (ground, pitched(-5.0))).tanks[0]
+    tank = build.report(cells, build.one_box(), (ground, build.pitched(-5.0))).tanks[0]
     # checks: box 1 x 0.5 x 0.2, pitch 5 deg, drain at the high floor edge (computed)
     assert build.at(tank, "pitch -5").trapped_m3 == pytest.approx(0.021872166, abs=5e-10)
     assert build.at(tank, "pitch -5").trapped_m3 == pytest.approx(
@@ -64,152 +49,15 @@ def test_fuel_behind_a_lip_is_the_wedge_of_the_closed_form(build: Any, ground: A
         build.slot("filler", "A filler", 0.19, 0.19),
         build.slot("vent", "A vent", 0.2, 0.2),
     )
-    tank = build.report(cells, openings, (ground, pitched(pitch))).tanks[0]
+    tank = build.report(cells, openings, (ground, build.pitched(pitch))).tanks[0]
     trapped = build.at(tank, f"pitch {pitch:g}").trapped_m3
     assert trapped == pytest.approx(chord * lip**2 / (2.0 * slope), rel=1e-9)
     assert round(1000.0 * trapped, 4) == litres
 
 
-def test_a_bay_joined_only_by_a_low_hole_that_the_outlets_pool_covers_keeps_its_fuel(build: Any) -> None:
-    cells = build.row_of_boxes(2)
-    openings = (
-        build.slot("outlet", "A outlet", 0.0, 0.10),
-        build.slot("low hole", "A B", 0.0, 0.08, at=(0.5, 1.0)),
-        build.slot("filler", "A filler", 0.9, 0.9),
-        build.slot("vent", "A vent", 1.0, 1.0),
-    )
-    tank = build.report(cells, openings).tanks[0]
-    assert build.kept(tank, "A").trapped_m3 == pytest.approx(0.10, rel=1e-12)
-    assert build.kept(tank, "B").trapped_by == "no air"
-    assert build.kept(tank, "B").trapped_m3 == pytest.approx(1.0, rel=1e-12)
-    higher = (*openings[:1], build.slot("low hole", "A B", 0.0, 0.12, at=(0.5, 1.0)), *openings[2:])
-    tank = build.report(cells, higher).tanks[0]
-    assert build.kept(tank, "B").trapped_m3 == pytest.approx(0.10, rel=1e-12)
-    assert build.kept(tank, "B").trapped_by == "outlet"
-
-
-def test_a_vent_lower_than_the_filler_limits_filling(build: Any) -> None:
-    cells = build.row_of_boxes(1)
-    openings = (
-        build.slot("outlet", "A outlet", 0.0, 0.0),
-        build.slot("filler", "A filler", 0.9, 0.95),
-        build.pipe("vent", "A vent", ((0.5, 0.5, 0.95), (0.5, 0.5, 0.7), (0.5, 2.0, 0.7)), 0.0),
-    )
-    tank = build.report(cells, openings).tanks[0]
-    assert (tank.capacity_limit, tank.capacity_m3) == ("filler", pytest.approx(0.9))
-    lower = build.pipe("vent", "A vent", ((0.5, 0.5, 0.6), (0.5, 0.5, 0.7), (0.5, 2.0, 0.7)), 0.0)
-    tank = build.report(cells, (*openings[:2], lower)).tanks[0]
-    assert (tank.capacity_limit, tank.capacity_m3) == ("vent", pytest.approx(0.7))
-
-
-def test_a_cell_behind_an_air_locked_cell_stays_dry_on_filling(build: Any) -> None:
-    cells = build.row_of_boxes(3)
-    openings = (
-        build.slot("outlet", "A outlet", 0.0, 0.0),
-        build.slot("low A-B", "A B", 0.0, 0.1, at=(0.5, 1.0)),
-        build.slot("high B-C", "B C", 0.5, 0.6, at=(0.5, 2.0)),
-        build.slot("filler", "A filler", 0.9, 0.9),
-        build.slot("vent", "A vent", 1.0, 1.0),
-    )
-    tank = build.report(cells, openings).tanks[0]
-    filled = {cell.cell: cell for cell in tank.cells}
-    assert filled["B"].filled_m3 == pytest.approx(0.1)
-    assert (filled["B"].air_caught_by, filled["B"].caught_air_m3) == ("low A-B", pytest.approx(0.8))
-    assert (filled["C"].filled_m3, filled["C"].reached, filled["C"].dry) == (0.0, False, False)
-    assert tank.caught_air_m3 == pytest.approx(0.8)
-    assert tank.capacity_m3 == pytest.approx(1.0)
-
-
-def test_a_one_way_flap_that_air_cannot_pass_back_keeps_the_fuel_behind_it(build: Any) -> None:
-    cells = build.row_of_boxes(2)
-
-    def openings(**flap: Any) -> tuple[Any, ...]:
-        return (
-            build.slot("outlet", "A outlet", 0.0, 0.0),
-            build.slot("flap", "A B", 0.0, 0.9, at=(0.5, 1.0), one_way="A", **flap),
-            build.slot("filler", "B filler", 0.9, 0.9),
-            build.slot("vent", "A vent", 1.0, 1.0),
-        )
-
-    shut = build.report(cells, openings()).tanks[0]
-    assert (build.kept(shut, "B").trapped_by, build.kept(shut, "B").trapped_m3) == ("no air", 1.0)
-    breathing = build.report(cells, openings(air_both=True)).tanks[0]
-    assert build.kept(breathing, "B").trapped_m3 == 0.0
-    stiff = build.report(cells, openings(air_both=True, opens_at_m=0.03)).tanks[0]
-    assert build.kept(stiff, "B").trapped_m3 == pytest.approx(0.03)
-    assert build.kept(stiff, "B").trapped_by == "flap"
-
-
-@pytest.mark.parametrize(("join", "left"), [(Join.TEE, 0.30 + 0.15), (Join.SELECT, 0.05 + 0.15)])
-def test_two_floor_outlets_on_a_tee_stop_at_the_higher_and_on_a_selector_each_at_its_own(
-    build: Any, join: Join, left: float
-) -> None:
-    cells = {
-        "A": build.box((0.0, 0.0, 0.0), (1.0, 1.0, 1.0)),
-        "B": build.box((0.0, 1.0, 0.15), (1.0, 2.0, 1.0)),
-    }
-    openings = (
-        build.slot("out A", "A outlet", 0.0, 0.05),
-        build.slot("out B", "B outlet", 0.15, 0.30, at=(0.0, 1.5)),
-        build.slot("join", "A B", 0.3, 1.0, at=(0.5, 1.0)),
-        build.slot("filler", "A filler", 0.95, 0.95),
-        build.slot("vent", "A vent", 1.0, 1.0),
-    )
-    feeds = (Feed(name="engine", outlets=("out A", "out B"), join=join),)
-    report = build.report(cells, openings, feeds=feeds)
-    assert build.at(report.tanks[0]).trapped_m3 == pytest.approx(left, rel=1e-12)
-    assert report.feeds[0].usable_m3 == pytest.approx(report.tanks[0].usable_m3, rel=1e-12)
-
-
-def test_a_bay_that_no_way_joins_is_dry_and_traps_nothing(build: Any) -> None:
-    cells = build.row_of_boxes(2)
-    openings = (
-        build.slot("outlet", "A outlet", 0.0, 0.0),
-        build.slot("filler", "A filler", 0.9, 0.9),
-        build.slot("vent", "A vent", 1.0, 1.0),
-    )
-    tank = build.report(cells, openings).tanks[0]
-    kept = build.kept(tank, "B")
-    assert (kept.trapped_m3, kept.trapped_by, kept.level_m) == (0.0, "dry", None)
-    assert [cell.dry for cell in tank.cells] == [False, True]
-    assert tank.usable_m3 == pytest.approx(0.9)
-
-
-def test_two_bays_each_vented_for_itself_at_half_height_hold_half(build: Any) -> None:
-    cells = build.row_of_boxes(2)
-    openings = (
-        build.slot("outlet", "A outlet", 0.0, 0.0),
-        build.slot("low", "A B", 0.0, 0.2, at=(0.5, 1.0)),
-        build.slot("filler", "A filler", 0.9, 1.0),
-        build.slot("vent A", "A vent", 0.5, 0.5),
-        build.slot("vent B", "B vent", 0.5, 0.5, at=(0.0, 1.5)),
-    )
-    tank = build.report(cells, openings, expansion=0.5).tanks[0]
-    assert (tank.capacity_m3, tank.capacity_limit, tank.caught_air_m3) == (pytest.approx(1.0), "vent", 0.0)
-    assert build.at(tank).trapped_m3 == pytest.approx(0.0, abs=1e-15)
-
-
-def test_too_little_vented_space_is_cut_from_capacity(build: Any) -> None:
-    cells = build.row_of_boxes(2)
-    openings = (
-        build.slot("outlet", "A outlet", 0.0, 0.0),
-        build.slot("low", "A B", 0.0, 0.2, at=(0.5, 1.0)),
-        build.slot("high", "A B", 0.85, 0.95, at=(0.5, 1.0)),
-        build.slot("filler", "A filler", 0.96, 1.0),
-        build.slot("vent", "A vent", 1.0, 1.0),
-    )
-    # The air of B leaves under 0.95: B's space is then shut off, and only A's 0.04 is vented.
-    tank = build.report(cells, openings, expansion=0.03).tanks[0]
-    full = 0.96 + 0.95
-    assert tank.expansion_missing_m3 == pytest.approx(0.03 * 2.0 - 0.04, rel=1e-9)
-    assert tank.capacity_m3 == pytest.approx(full - 0.02, rel=1e-12)
-    assert tank.capacity_limit == "expansion"
-    assert build.report(cells, openings, expansion=0.02).tanks[0].capacity_limit == "filler"
-
-
 def test_a_tank_with_no_vent_feeds_nothing(build: Any) -> None:
     cells = {"A": build.box((0.0, 0.0, 0.0), (1.0, 0.5, 0.2))}
-    tank = build.report(cells, one_box(build)[:2]).tanks[0]
+    tank = build.report(cells, build.one_box()[:2]).tanks[0]
     assert (tank.usable_m3, build.kept(tank, "A").trapped_by) == (0.0, "no air")
     assert tank.capacity_m3 == pytest.approx(0.095)
 
@@ -218,7 +66,7 @@ def test_usable_is_none_without_an_outlet_a_flight_attitude_or_a_filler(
     build: Any, ground: Attitude, level: Attitude
 ) -> None:
     cells = {"A": build.box((0.0, 0.0, 0.0), (1.0, 0.5, 0.2))}
-    outlet, filler, vent = one_box(build)
+    outlet, filler, vent = build.one_box()
     assert build.report(cells, (filler, vent)).tanks[0].usable_m3 is None
     assert build.report(cells, (outlet, filler, vent), (ground,)).tanks[0].usable_m3 is None
     assert build.report(cells, (outlet, filler, vent), (level,)).tanks[0].capacity_m3 is None
@@ -228,11 +76,13 @@ def test_usable_is_none_without_an_outlet_a_flight_attitude_or_a_filler(
 
 def test_usable_is_over_all_flight_attitudes_whatever_is_listed(build: Any, ground: Attitude) -> None:
     cells = {"A": build.box((0.0, 0.0, 0.0), (1.0, 0.5, 0.2))}
-    attitudes = (ground, pitched(-2.0), pitched(-5.0), pitched(-3.0))
-    tanks = build.tanks(cells, one_box(build))
+    attitudes = (ground, build.pitched(-2.0), build.pitched(-5.0), build.pitched(-3.0))
+    tanks = build.tanks(cells, build.one_box())
     whole = reckon(tanks, cells, {}, attitudes, None, levels=2)
     assert whole.tanks[0].governing_attitude == "pitch -5"
-    part = reckon(tanks, cells, {}, attitudes, None, levels=2, listed=("pitch -2",), asked=pitched(-40.0))
+    part = reckon(
+        tanks, cells, {}, attitudes, None, levels=2, listed=("pitch -2",), asked=build.pitched(-40.0)
+    )
     assert part.tanks[0].usable_m3 == whole.tanks[0].usable_m3
     assert [one.attitude for one in part.tanks[0].attitudes] == ["pitch -2", "pitch -40"]
     assert not part.tanks[0].attitudes[1].flight
@@ -241,13 +91,13 @@ def test_usable_is_over_all_flight_attitudes_whatever_is_listed(build: Any, grou
 def test_pockets_not_counted_leave_trapped_and_usable_unknown(build: Any, ground: Attitude) -> None:
     # A floor with a ridge: two lowest edges when level, one when pitched enough.
     section = [(0.0, 0.0), (0.5, 0.2), (1.0, 0.0), (1.0, 1.0), (0.0, 1.0)]
-    cells = {"A": prism(section)}
+    cells = {"A": build.prism(section)}
     openings = (
         build.slot("outlet", "A outlet", 0.0, 0.0),
         build.slot("filler", "A filler", 0.9, 0.9),
         build.slot("vent", "A vent", 1.0, 1.0),
     )
-    report = build.report(cells, openings, (ground, pitched(0.0), pitched(30.0)))
+    report = build.report(cells, openings, (ground, build.pitched(0.0), build.pitched(30.0)))
     tank = report.tanks[0]
     assert (tank.usable_m3, tank.governing_attitude) == (None, None)
     assert build.at(tank, "pitch 0").trapped_m3 is None
@@ -258,22 +108,8 @@ def test_pockets_not_counted_leave_trapped_and_usable_unknown(build: Any, ground
     )
     assert build.at(tank, "pitch 30").trapped_m3 is not None
     assert [(one.cell, one.attitude, one.places) for one in report.pocketed] == [("A", "pitch 0", 2)]
-    alone = build.report(cells, openings, (ground, pitched(30.0))).tanks[0]
+    alone = build.report(cells, openings, (ground, build.pitched(30.0))).tanks[0]
     assert alone.usable_m3 is not None
-
-
-def prism(section: list[tuple[float, float]]) -> ClosedCell:
-    """A polygon of x and z drawn anticlockwise, drawn out from y 0 to 1; concave only at its second point."""
-    n = len(section)
-    corners = [(x, 0.0, z) for x, z in section] + [(x, 1.0, z) for x, z in section]
-    faces = []
-    for k in range(n):
-        j = (k + 1) % n
-        faces += [(k, j, n + j), (k, n + j, n + k)]
-    for k in range(2, n):
-        a, b = 1 + k - 1, 1 + k if 1 + k < n else 0
-        faces += [(1, b, a), (n + 1, n + a, n + b)]
-    return ClosedCell.from_mesh(np.array(corners), np.array(faces)[:, ::-1])
 
 
 def test_what_stands_above_the_vents_spill_height_is_lost_overboard(build: Any, ground: Attitude) -> None:
@@ -283,7 +119,7 @@ def test_what_stands_above_the_vents_spill_height_is_lost_overboard(build: Any, 
         build.slot("filler", "A filler", 0.19, 0.19, at=(0.5, 0.2)),
         build.slot("vent", "A vent", 0.195, 0.195, at=(1.0, 0.2)),
     )
-    tank = build.report(cells, openings, (ground, pitched(3.0), pitched(-3.0))).tanks[0]
+    tank = build.report(cells, openings, (ground, build.pitched(3.0), build.pitched(-3.0))).tanks[0]
     assert build.at(tank, "ground").lost_m3 == 0.0
     assert build.at(tank, "pitch -3").lost_m3 == 0.0
     # Nose up the aft wall is deepest: the surface there falls to the vent, and what is above runs out.
@@ -374,7 +210,7 @@ def test_the_opening_moved_by_1_mm_in_the_plan_frees_what_was_said(build: Any, g
         "A": build.box((0.0, 0.0, 0.0), (1.0, 1.0, 1.0)),
         "B": build.box((0.0, 1.0, 0.0), (1.0, 2.0, 1.0)),
     }
-    up = pitched(4.0).up
+    up = build.pitched(4.0).up
 
     def report(shift: float) -> Any:
         centre = tuple(c - shift * u for c, u in zip((0.5, 1.0, 0.05), up, strict=True))
@@ -385,7 +221,7 @@ def test_the_opening_moved_by_1_mm_in_the_plan_frees_what_was_said(build: Any, g
             build.slot("filler", "A filler", 0.9, 0.9),
             build.slot("vent", "A vent", 1.0, 1.0),
         )
-        return build.report(cells, openings, (ground, pitched(4.0))).tanks[0]
+        return build.report(cells, openings, (ground, build.pitched(4.0))).tanks[0]
 
     before, after = (build.at(report(shift), "pitch 4").trapped_m3 for shift in (0.0, 0.001))
     said = build.kept(report(0.0), "B", "pitch 4").frees_lower_1mm_m3
@@ -394,9 +230,9 @@ def test_the_opening_moved_by_1_mm_in_the_plan_frees_what_was_said(build: Any, g
 
 def test_a_displaced_volume_is_off_gross_and_capacity_and_never_off_trapped(build: Any, ground: Any) -> None:
     cells = {"A": build.box((0.0, 0.0, 0.0), (1.0, 0.5, 0.2))}
-    attitudes = (ground, pitched(-5.0))
-    plain = build.report(cells, one_box(build), attitudes).tanks[0]
-    fitted = build.report(cells, one_box(build), attitudes, displaced_m3=0.003).tanks[0]
+    attitudes = (ground, build.pitched(-5.0))
+    plain = build.report(cells, build.one_box(), attitudes).tanks[0]
+    fitted = build.report(cells, build.one_box(), attitudes, displaced_m3=0.003).tanks[0]
     assert fitted.gross_m3 == pytest.approx(plain.gross_m3 - 0.003)
     assert fitted.capacity_m3 == pytest.approx(plain.capacity_m3 - 0.003)
     assert build.at(fitted, "pitch -5").trapped_m3 == build.at(plain, "pitch -5").trapped_m3
@@ -416,7 +252,7 @@ def test_a_displaced_solid_is_taken_off_at_every_level(build: Any, ground: Any) 
     cells = {"A": build.box((0.0, 0.0, 0.0), (1.0, 0.5, 0.2))}
     solid = {"A": build.box((0.2, 0.1, 0.0), (0.4, 0.3, 0.1))}
     attitudes = (ground, Attitude(name="level"))
-    tank = build.report(cells, one_box(build), attitudes, displaced=solid, levels=20).tanks[0]
+    tank = build.report(cells, build.one_box(), attitudes, displaced=solid, levels=20).tanks[0]
     assert tank.gross_m3 == pytest.approx(0.1 - 0.004)
     for row in build.at(tank).table[1:]:
         h = row.level_m
@@ -433,34 +269,9 @@ def test_a_displaced_solid_is_taken_off_at_every_level(build: Any, ground: Any) 
         assert row.cg_m[0] == pytest.approx(moment / q, rel=1e-9)
 
 
-def test_sealant_is_off_what_is_held_and_never_off_what_is_trapped(build: Any, ground: Any) -> None:
-    cells = {"A": build.box((0.0, 0.0, 0.0), (1.0, 0.5, 0.2))}
-    attitudes = (ground, pitched(-5.0), Attitude(name="level"))
-    plain = build.report(cells, one_box(build), attitudes).tanks[0]
-    coated = build.report(cells, one_box(build), attitudes, sealant_thickness_m=0.0004).tanks[0]
-    assert plain.gross_m3 - coated.gross_m3 == pytest.approx(0.0004 * (2 * 0.5 + 3.0 * 0.2), rel=1e-9)
-    assert plain.capacity_m3 - coated.capacity_m3 == pytest.approx(0.0004 * (0.5 + 3.0 * 0.19), rel=1e-9)
-    assert build.at(coated, "pitch -5").trapped_m3 == build.at(plain, "pitch -5").trapped_m3
-    for row in build.at(coated).table[1:-1]:
-        assert row.volume_m3 == pytest.approx(
-            0.5 * row.level_m - 0.0004 * (0.5 + 3.0 * row.level_m), rel=1e-9
-        )
-    assert build.at(coated).table[-1].volume_m3 == pytest.approx(coated.gross_m3, rel=1e-12)
-
-
-def test_a_fillet_takes_the_square_less_the_quarter_round_along_every_inner_corner(build: Any) -> None:
-    cells = {"A": build.box((0.0, 0.0, 0.0), (1.0, 0.5, 0.2))}
-    plain = build.report(cells, one_box(build)).tanks[0]
-    filleted = build.report(cells, one_box(build), sealant_fillet_m=0.006).tanks[0]
-    # checks: concave fillet 0.2146 r^2
-    section = (1.0 - math.pi / 4.0) * 0.006**2
-    assert section == pytest.approx(0.2146 * 0.006**2, rel=2e-4)
-    assert plain.gross_m3 - filleted.gross_m3 == pytest.approx(4.0 * (1.0 + 0.5 + 0.2) * section, rel=1e-9)
-
-
 def test_mass_follows_the_temperature(build: Any, ground: Any, level: Any) -> None:
     cells = {"A": build.box((0.0, 0.0, 0.0), (1.0, 0.5, 0.2))}
-    tanks = build.tanks(cells, one_box(build))
+    tanks = build.tanks(cells, build.one_box())
     fuel = FuelGrade(grade="avgas", density_15c_kg_m3=710.0)
     cold = reckon(tanks, cells, {}, (ground, level), fuel, levels=2, temperature_k=253.15).tanks[0]
     row = build.at(cold).drained[-1]
@@ -482,7 +293,7 @@ def test_usable_uncertainty_is_of_walls_and_surfaces(build: Any) -> None:
 
 def test_a_listed_name_that_is_no_attitude_is_a_mistake_of_the_program(build: Any, ground: Any) -> None:
     cells = {"A": build.box((0.0, 0.0, 0.0), (1.0, 0.5, 0.2))}
-    tanks = build.tanks(cells, one_box(build))
+    tanks = build.tanks(cells, build.one_box())
     with pytest.raises(ValueError, match="no attitude"):
         reckon(tanks, cells, {}, (ground,), None, listed=("climb",))
     with pytest.raises(ValueError, match="step"):
@@ -505,9 +316,9 @@ def test_an_opening_far_from_a_cell_it_should_join_is_measured(build: Any) -> No
 
 def test_cells_that_share_space_are_named_and_cells_that_touch_are_not(build: Any) -> None:
     cells = build.row_of_boxes(2)
-    assert build.report(cells, one_box(build)).overlaps == ()
+    assert build.report(cells, build.one_box()).overlaps == ()
     cells["C"] = build.box((0.5, 0.9, 0.0), (0.7, 1.1, 0.5))
-    found = build.report(cells, one_box(build)).overlaps
+    found = build.report(cells, build.one_box()).overlaps
     assert [(one.one, one.two) for one in found] == [("A", "C"), ("B", "C")]
     assert [one.volume_m3 for one in found] == pytest.approx([0.01, 0.01], rel=1e-5)
 
@@ -517,7 +328,7 @@ def test_cells_in_no_tank_are_no_matter(build: Any, ground: Any, level: Any) -> 
     tanks = Tanks(
         tanks=(Tank(name="t", cells=("A",)),),
         cells=(Cell(name="A", mesh="a"), Cell(name="B", mesh="b")),
-        openings=one_box(build),
+        openings=build.one_box(),
     )
     report = reckon(tanks, cells, {}, (ground, level), None, levels=2)
     assert report.tanks[0].gross_m3 == pytest.approx(1.0)

@@ -76,7 +76,7 @@ def begun(tmp_path_factory: pytest.TempPathFactory) -> Path:
     return folder / "begun.book"
 
 
-@pytest.fixture()
+@pytest.fixture
 def make_shop(tmp_path: Path, begun: Path) -> Callable[[str], Any]:
     """A fresh book under a name, begun with the plan."""
 
@@ -101,7 +101,7 @@ def stocked(begun: Path) -> Shop:
     return made
 
 
-@pytest.fixture()
+@pytest.fixture
 def shop(tmp_path: Path, stocked: Shop) -> Any:
     """The usual book: a copy of the stocked one."""
     shutil.copyfile(stocked.book, tmp_path / "wing.book")

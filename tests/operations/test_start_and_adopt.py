@@ -157,6 +157,31 @@ def test_an_iteration_has_a_name_of_its_own(plan: Path, tmp_path: Path) -> None:
     assert newest_entry(book)[0] == 1
 
 
+def test_no_number_is_given_out_that_a_part_of_the_plan_has(tmp_path: Path) -> None:
+    parts = "P0,pin,fitting,C,WING,item,,,m,0 0 0,1 g,1\nP0016,plug,fitting,C,WING,item,,,m,0 0 0,2 g,1\n"
+    book = tmp_path / "wing.book"
+    start_book(book, _plan(tmp_path / "plan", "r1", parts=parts), by="JK")
+    logged = log_entry(book, "weigh", {"what": "P0", "reading": "1 g"}, by="JK")
+    assert [(one.name, one.number) for one in logged.minted] == [("P0/1", "P0024")]
+    assert log_entry(book, "weigh", {"what": "P0016", "reading": "2 g"}, by="JK").says.startswith("P0016/1")
+
+
+def test_a_part_with_the_number_of_something_in_the_book_is_refused(tmp_path: Path) -> None:
+    book = tmp_path / "wing.book"
+    start_book(book, _plan(tmp_path / "first", "r1"), by="JK")
+    log_entry(book, "receive", {"material": "carbon", "quantity": "5 m2", "lot": "CLOTH"}, by="JK")
+    log_entry(book, "weigh", {"what": "SKIN-L", "reading": "900 g"}, by="JK")
+    parts = "cloth,bag,fitting,C,WING,item,,,m,0 0 0,1 g,1\nP0016,plug,fitting,C,WING,item,,,m,0 0 0,2 g,1\n"
+    with pytest.raises(Refused) as caught:
+        adopt_plan(book, _plan(tmp_path / "second", "r1", parts=parts), by="JK")
+    assert [(finding.code, str(finding.where)) for finding in caught.value.findings] == [
+        ("iteration-taken", "plan.toml:name"),
+        ("number-taken", "parts.csv:cloth:part"),
+        ("number-taken", "parts.csv:P0016:part"),
+    ]
+    assert newest_entry(book)[0] == 3
+
+
 def test_a_part_that_the_new_plan_drops_keeps_its_pieces(tmp_path: Path) -> None:
     extra = "CLIP,clip,fitting,C,WING,item,,,m,0 0 0,1 g,1\n"
     book = tmp_path / "wing.book"

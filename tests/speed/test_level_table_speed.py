@@ -5,13 +5,11 @@ All ratios are of medians of seven inside one run, so a slow machine or a busy o
 
 from __future__ import annotations
 
-import statistics
-import time
 import tracemalloc
 from collections.abc import Callable
+from typing import Any
 
 import numpy as np
-import pytest
 import trimesh
 from numpy.typing import NDArray
 
@@ -19,18 +17,6 @@ from ledger.geometry import level_table
 
 Floats = NDArray[np.float64]
 LEVELS = 101
-TIMES = 7
-
-
-def medians(*works: Callable[[], object], times: int = TIMES) -> list[float]:
-    """Median seconds of each work, taken turn by turn so that a disturbance falls on all."""
-    taken: list[list[float]] = [[] for _ in works]
-    for _ in range(times):
-        for work, row in zip(works, taken, strict=True):
-            start = time.perf_counter()
-            work()
-            row.append(time.perf_counter() - start)
-    return [statistics.median(row) for row in taken]
 
 
 def sliver_prism(sides: int) -> trimesh.Trimesh:
@@ -59,57 +45,49 @@ def table_work(mesh: trimesh.Trimesh, up: Floats) -> Callable[[], object]:
     return lambda: level_table(vertices, faces, up, levels)
 
 
-def say(rows: list[tuple[str, float, float | None]]) -> None:
-    print()
-    for name, ratio, limit in rows:
-        print(f"{name:<58}{ratio:>10.3f}" + ("" if limit is None else f"{limit:>10.1f}"))
-
-
-def test_a_ball_of_80_thousand_triangles(capsys: pytest.CaptureFixture[str]) -> None:
+def test_a_ball_of_80_thousand_triangles(race: Any, say: Any) -> None:
     mesh = trimesh.creation.icosphere(subdivisions=6)
     assert len(mesh.faces) == 81920
     up = np.array([0.1, 0.2, 1.0])
     up /= np.linalg.norm(up)
     corner_heights = (np.array(mesh.vertices) @ up)[np.array(mesh.faces)].ravel()
-    table, cut, sort = medians(
+    table, cut, sort = race.medians(
         table_work(mesh, up),
         lambda: mesh.slice_plane([0.0, 0.0, 0.0], -up, cap=True),
         lambda: np.argsort(corner_heights),
     )
-    with capsys.disabled():
-        say(
-            [
-                (f"table of {LEVELS} levels, ball of 81,920: ms", 1e3 * table, None),
-                ("  in capped cuts", table / cut, 1.0),
-                ("  in sorts of the corner heights", table / sort, 4.0),
-            ]
-        )
+    say(
+        [
+            (f"table of {LEVELS} levels, ball of 81,920: ms", 1e3 * table, None),
+            ("  in capped cuts", table / cut, 1.0),
+            ("  in sorts of the corner heights", table / sort, 4.0),
+        ]
+    )
     assert table < cut
     assert table < 4.0 * sort
 
 
-def test_a_prism_of_slivers_that_nearly_every_level_cuts(capsys: pytest.CaptureFixture[str]) -> None:
+def test_a_prism_of_slivers_that_nearly_every_level_cuts(race: Any, say: Any) -> None:
     mesh = sliver_prism(20480)
     assert len(mesh.faces) == 81920
     up = np.array([0.02, 0.01, 1.0])
     up /= np.linalg.norm(up)
     work = table_work(mesh, up)
     # Capping a ring of tens of thousands of corners takes many seconds: one cut is enough to know.
-    (table,) = medians(work)
-    (cut,) = medians(lambda: sliver_prism(2048).slice_plane([0.0, 0.0, 1.0], -up, cap=True), times=1)
-    (small,) = medians(table_work(sliver_prism(2048), up))
+    (table,) = race.medians(work)
+    (cut,) = race.medians(lambda: sliver_prism(2048).slice_plane([0.0, 0.0, 1.0], -up, cap=True), times=1)
+    (small,) = race.medians(table_work(sliver_prism(2048), up))
     tracemalloc.start()
     work()
     peak = tracemalloc.get_traced_memory()[1] / 1e6
     tracemalloc.stop()
-    with capsys.disabled():
-        say(
-            [
-                (f"table of {LEVELS} levels, 81,920 slivers: ms", 1e3 * table, None),
-                ("  8,192 slivers, in capped cuts", small / cut, 2.0),
-                ("  peak memory: MB", peak, 300.0),
-            ]
-        )
+    say(
+        [
+            (f"table of {LEVELS} levels, 81,920 slivers: ms", 1e3 * table, None),
+            ("  8,192 slivers, in capped cuts", small / cut, 2.0),
+            ("  peak memory: MB", peak, 300.0),
+        ]
+    )
     assert small < 2.0 * cut
     assert table < 2.0 * 10.0 * cut
     assert peak < 300.0

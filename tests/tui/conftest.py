@@ -11,6 +11,7 @@ from pathlib import Path
 from typing import Any
 
 import pytest
+from textual import events
 from textual.pilot import Pilot
 
 from ledger.cli.app import run_command
@@ -18,6 +19,7 @@ from ledger.operations.find_thing import FoundThing, find_thing
 from ledger.operations.log_entry import log_entry
 from ledger.operations.start_book import start_book
 from ledger.tui.app import LedgerApp
+from ledger.tui.listening import ListeningScreen
 from ledger.tui.work_screen import WorkScreen
 
 START = datetime(2026, 11, 3, 9, 0, tzinfo=UTC)
@@ -29,7 +31,10 @@ name = "r1"
 title = "Small wing for tests"
 display = "metric"
 """,
-    "materials.csv": """material,kind,areal_mass [g/m2],density [kg/m3],thickness [mm],resin_uptake [g/m2],ratio,ratio_tolerance [%],pot_life [min]
+    "materials.csv": (
+        "material,kind,areal_mass [g/m2],density [kg/m3],thickness [mm],"
+        "resin_uptake [g/m2],ratio,ratio_tolerance [%],pot_life [min]"
+        """
 twill,fabric,200,,,,,,
 glass,fabric,80,,,,,,
 foam,core,,75,3,90,,,
@@ -38,8 +43,11 @@ lam resin,resin,,1150,,,100:27,4,25
 lam hardener,hardener,,980,,,,,
 bond base,paste,,1150,,,100:44,5,40
 bond hardener,hardener,,1020,,,,,
-""",
-    "laminates.csv": """laminate,areal_mass [g/m2],step,material,orientation [deg],coverage [%],resin_fraction [%]
+"""
+    ),
+    "laminates.csv": (
+        "laminate,areal_mass [g/m2],step,material,orientation [deg],coverage [%],resin_fraction [%]"
+        """
 SKIN,,1,glass,0,100,50
 SKIN,,2,twill,45,100,45
 SKIN,,3,twill,45,100,45
@@ -48,14 +56,19 @@ SKIN,,5,twill,45,100,45
 SKIN,,6,twill,0,30,45
 SKIN,,7,peel,,100,
 PANEL,900,,,,,
-""",
-    "parts.csv": """part,title,class,side,assembly,form,made_of,geometry,geometry_unit,origin [m],quantity,planned_mass [g],mirror_of
+"""
+    ),
+    "parts.csv": (
+        "part,title,class,side,assembly,form,made_of,geometry,geometry_unit,origin [m],"
+        "quantity,planned_mass [g],mirror_of"
+        """
 SKIN.UPR-L,upper skin,skin,L,WING/LEFT/skins,skin,SKIN,geometry/skin.obj,mm,,1,,
 SKIN.UPR-R,upper skin,skin,R,WING/RIGHT/skins,skin,SKIN,,,,1,,SKIN.UPR-L
 RIB.01-L,rib,rib,L,WING/LEFT/ribs,item,,,,2.5 -0.5 0,1,312,
 RIB.01-R,rib,rib,R,WING/RIGHT/ribs,item,,,,2.5 0.5 0,1,350,RIB.01-L
 FIT.MAIN-L,fitting,fitting,L,WING/LEFT,item,,,,2.4 -0.3 0,1,640,
-""",
+"""
+    ),
     "geometry/skin.obj": """v 2000 -200 0
 v 3000 -200 0
 v 3000 -1200 0
@@ -202,6 +215,7 @@ class Bench:
     def __init__(self, pilot: Pilot[None], clock: Clock) -> None:
         self.pilot = pilot
         self.clock = clock
+        self.only_scans = False
 
     @property
     def app(self) -> LedgerApp:
@@ -209,12 +223,13 @@ class Bench:
         return self.pilot.app
 
     async def scan(self, code: str, end: str = "enter") -> None:
-        """A reader: characters 5 ms apart and its own Enter, then silence."""
-        for char in code:
-            await self._press(char)
-            self.clock.go_on(milliseconds=5)
-        if end != "silence":
-            await self.pilot.press(end)
+        """A reader: all characters at once and its own Enter, then silence."""
+        keys = [("space" if char == " " else char, char) for char in code]
+        for key, char in (*keys, *(() if end == "silence" else ((end, None),))):
+            screen = self.app.screen
+            assert isinstance(screen, ListeningScreen)
+            # Straight to the screen: through the pilot's queue every key of a scan waits for a redraw.
+            screen.on_key(events.Key(key, char))
         self.clock.go_on(seconds=0.5)
         self.app.let_silence_speak()
         self.clock.go_on(seconds=1)
@@ -222,13 +237,19 @@ class Bench:
 
     async def type(self, text: str, *, enter: bool = True) -> None:
         """Hands: a fifth of a second between keys."""
+        assert not self.only_scans
         for char in text:
             await self._press(char)
             self.clock.go_on(milliseconds=200)
         if enter:
             await self.key("enter")
 
+    async def settle(self) -> None:
+        await settled(self.pilot)
+        await self.pilot.pause()
+
     async def key(self, *keys: str) -> None:
+        assert not self.only_scans
         for key in keys:
             self.clock.go_on(milliseconds=900)
             await self.pilot.press(key)
@@ -261,6 +282,25 @@ def open_bench(open_screen: Opened, clock: Clock) -> Callable[..., AbstractAsync
             yield Bench(pilot, clock)
 
     return opened
+
+
+@pytest.fixture
+def at_nine_thirty() -> datetime:
+    """A moment between the last entry of the small book and the clock of the bench."""
+    return START + timedelta(minutes=30)
+
+
+@pytest.fixture
+def cup_of_600(small_book: Path) -> str:
+    """The number of a cup of 600 g of resin, ten minutes old."""
+    logged = log_entry(
+        small_book,
+        "mix",
+        {"resin_lot": "RESIN-A", "resin": "600 g", "hardener_lot": "HARD-A", "hardener": "162 g"},
+        by="MT",
+        now=START + timedelta(minutes=92),
+    )
+    return logged.minted[0].number
 
 
 @pytest.fixture

@@ -1,4 +1,4 @@
-"""A small wing: a six-ply skin, a rib from a sheet, two clips, a joint, a weight, and a tank that is a box."""
+"""A small wing: a six-ply skin, a rib from a sheet, two clips, a joint, a weight, and a box of a tank."""
 
 from __future__ import annotations
 
@@ -28,7 +28,8 @@ flight = false
 name = "climb"
 pitch_deg = 5.0
 """
-MATERIALS = """material,kind,areal_mass [g/m2],density [kg/m3],linear_mass [g/m],ratio,ratio_tolerance [%],pot_life [min]
+MATERIALS = """\
+material,kind,areal_mass [g/m2],density [kg/m3],linear_mass [g/m],ratio,ratio_tolerance [%],pot_life [min]
 twill,fabric,200,,,,,
 lam resin,resin,,1150,,100:27,3,25
 lam hardener,hardener,,950,,,,
@@ -45,7 +46,8 @@ SIX,,5,twill,45,50
 SIX,,6,twill,0,50
 """
 PARTS = """\
-part,title,class,side,assembly,form,made_of,geometry,geometry_unit,origin,across,up_axis,quantity,planned_mass [g]
+part,title,class,side,assembly,form,made_of,geometry,geometry_unit,origin,across,up_axis,quantity,\
+planned_mass [g]
 SKIN-L,skin,skin,L,WING/LEFT,skin,SIX,geometry/skin.obj,m,,,,,
 RIB-L,rib,rib,L,WING/LEFT,panel,SHEET,geometry/rib.dxf,m,0 0 0,1 0 0,0 0 1,,
 CLIP-L,clip,fitting,L,WING/LEFT,panel,SHEET,geometry/clip.dxf,m,0 0.2 0,1 0 0,0 0 1,2,

@@ -5,6 +5,7 @@ from __future__ import annotations
 import json
 import math
 import shutil
+from datetime import datetime, timedelta
 from pathlib import Path
 from typing import Any
 
@@ -71,6 +72,32 @@ def test_enter_prints_its_number_what_it_gave_out_and_the_last_digest(bench: Any
     assert (ran.code, lines[0].split()[:3], lines[-1].split()[0]) == (0, ["entry", "8", "receive"], "digest")
     assert lines[-1].split()[1] == bench.rows()[-1]["digest"]
     assert bench.rows()[-1]["by"] == "MT"
+
+
+def test_an_entry_is_read_back_as_it_was_typed_and_as_it_was_understood(bench: Any) -> None:
+    words = ("receive", "material=lam resin", "quantity=2 US gal", "lot=R-9")
+    assert "R-9 received: 2 US gal (0.00757082 m3) lam resin" in bench.run("enter", bench.book, *words).out
+    words = ("instrument", "instrument=W7", "what=scale", "resolution=0.1 oz")
+    assert "scale W7 entered, reads to 0.1 oz (2.83495 g)" in bench.run("enter", bench.book, *words).out
+    words = ("weigh", "what=TIP-L", "reading=9 oz", "scale=W7")
+    assert "TIP-L/1 weighed at 9 oz (255.146 g)" in bench.run("enter", bench.book, *words).out
+    words = ("weigh", "what=TIP-L", "reading=+ 250,5 g", "scale=W1")
+    assert "TIP-L/1 weighed at 250.5 g" in bench.run("enter", bench.book, *words).out
+    words = ("weigh", "what=TIP-L", "reading=250 g; 252 g", "scale=W1")
+    assert "TIP-L/1 weighed at 251 g" in bench.run("enter", bench.book, *words).out
+
+
+def test_an_entry_may_be_five_minutes_ahead_of_this_clock_and_no_more(bench: Any) -> None:
+    now = datetime.now().astimezone()
+    soon, later = (now + timedelta(minutes=minutes) for minutes in (4, 6))
+    assert bench.run("enter", bench.book, "note", "text=a", f"at={soon.isoformat()}").code == 0
+    ran = bench.run("enter", bench.book, "note", "text=b", f"at={later.isoformat()}")
+    assert (ran.code, ran.out) == (1, "")
+    assert "has not come yet" in ran.err
+    bench.enter("note", text="no offset given", at="2026-03-02T09:30")
+    moment = datetime.fromisoformat(bench.rows()[-1]["at"])
+    assert moment.utcoffset() is not None
+    assert moment.replace(tzinfo=None) == datetime(2026, 3, 2, 9, 30)
 
 
 def test_weights_on_paper_and_as_figures_say_the_same(bench: Any) -> None:
@@ -278,21 +305,30 @@ REFUSED: list[tuple[str, ...]] = [
 ]
 
 
-@pytest.mark.parametrize(("code", "words"), [*((2, one) for one in WRONG_USE), *((1, one) for one in REFUSED)])
+ENDS = [*((2, words) for words in WRONG_USE), *((1, words) for words in REFUSED)]
+
+
+@pytest.fixture
+def beside(bench: Any, monkeypatch: pytest.MonkeyPatch) -> Path:
+    """The folder of the book, as the one that commands run in."""
+    monkeypatch.chdir(bench.book.parent)
+    return Path(bench.book.parent)
+
+
+@pytest.mark.parametrize(("code", "words"), ENDS)
 def test_a_command_that_is_not_done_says_why_and_writes_nothing(
-    bench: Any, plan: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch, code: int, words: tuple[str, ...]
+    bench: Any, plan: Path, beside: Path, code: int, words: tuple[str, ...]
 ) -> None:
-    monkeypatch.chdir(tmp_path)
     bench.enter("note", text="begun")
     real = {"BOOK": str(bench.book), "PLAN": str(plan)}
-    before = {path: path.read_bytes() for path in tmp_path.iterdir()}
+    before = {path: path.read_bytes() for path in beside.iterdir()}
     ran = bench.run(*(real.get(word, word) for word in words))
     assert (ran.code, ran.out) == (code, ""), ran.err
     assert ran.err.strip()
     assert "Traceback" not in ran.err
     if code == 1:
         assert all(line.startswith("STOP  ") and "; " in line for line in ran.err.splitlines()), ran.err
-    assert {path: path.read_bytes() for path in tmp_path.iterdir()} == before
+    assert {path: path.read_bytes() for path in beside.iterdir()} == before
 
 
 ON_A_BOOK: list[tuple[str, ...]] = [
@@ -312,7 +348,10 @@ ON_A_BOOK: list[tuple[str, ...]] = [
     ("backup", "BOOK", "COPY"),
     ("restore", "BOOK", "COPY"),
 ]
-SPOILT = ("absent", "empty", "a folder", "text", "another database", "truncated", "cut in its header", "newer")
+SPOILT = (
+    *("absent", "empty", "a folder", "text", "another database"),
+    *("truncated", "cut in its header", "newer"),
+)
 
 
 def spoil(book: Path, how: str) -> None:

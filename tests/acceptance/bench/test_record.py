@@ -1,4 +1,4 @@
-"""The record from outside: its table as any program reads it, its guards on a plain connection, its digests."""
+"""The record from outside: its table as any program reads it, its guards, its digests."""
 
 # ruff: noqa: S608  the statements are written here, for the tables of a book of one's own
 
@@ -12,6 +12,7 @@ import shutil
 import sqlite3
 import subprocess
 import sys
+import time
 from pathlib import Path
 from typing import Any
 
@@ -77,16 +78,29 @@ def _ecmascript(number: float) -> str:
     return f"{mantissa.removesuffix('.0')}e{power:+d}"
 
 
-@pytest.fixture
-def busy(bench: Any) -> Any:
+@pytest.fixture(scope="module")
+def busy_book(run: Any, stocked: Path, tmp_path_factory: pytest.TempPathFactory) -> Path:
     """A book with entries of several kinds, a correction and a withdrawal, and letters of other alphabets."""
-    bench.enter(
-        "mix", resin_lot="RESIN", resin="0.1 g; 1e-4 g; 205 g", hardener_lot="HARD", hardener="55.4 g"
+    book = Path(shutil.copy(stocked, tmp_path_factory.mktemp("busy") / "wing.wingledger"))
+    resin, hardener = (
+        ("resin_lot=RESIN", "resin=0.1 g; 1e-4 g; 205 g"),
+        ("hardener_lot=HARD", "hardener=55.4 g"),
     )
-    bench.enter("weigh", what="TIP-L", reading="251.3 g", scale="W1", remark='翼 é \\ " 𝛑 \x01 \x7f')
-    bench.figures("correct", 9, "reading=252.3 g")
-    bench.figures("withdraw", 8, "--why", "poured away")
-    bench.enter("note", text="\ue000 before 😀", by="Ünal")
+    for words in (
+        ("enter", book, "mix", *resin, *hardener),
+        ("enter", book, "weigh", "what=TIP-L", "reading=251.3 g", "scale=W1", 'remark=翼 é \\ " 𝛑 \x01 \x7f'),
+        ("correct", book, 9, "reading=252.3 g"),
+        ("withdraw", book, 8, "--why", "poured away"),
+        ("enter", book, "note", "text=\ue000 before 😀", "by=Ünal"),
+    ):
+        assert run(*words).code == 0
+    return book
+
+
+@pytest.fixture
+def busy(bench: Any, busy_book: Path) -> Any:
+    """A copy of it of one's own."""
+    shutil.copy(busy_book, bench.book)
     return bench
 
 
@@ -252,6 +266,27 @@ def test_two_processes_that_enter_at_once_both_land(bench: Any, tmp_path: Path) 
     assert (said.count("AA"), said.count("BB")) == (21, 21)
     read = bench.figures("check")
     assert (read["entries"], read["chain_ok"], read["replay_ok"]) == (49, True, True)
+    assert [path.name for path in bench.book.parent.glob("wing.wingledger*")] == ["wing.wingledger"]
+
+
+def test_a_process_killed_while_it_enters_leaves_all_or_none(bench: Any, tmp_path: Path) -> None:
+    rows = tmp_path / "rows.csv"
+    rows.write_text("kind,text\n" + f"note,{'x' * 200}\n" * 3000, encoding="utf-8")
+    child = subprocess.Popen(
+        [sys.executable, "-m", "ledger", "enter", bench.book, "--from", rows],
+        stdout=subprocess.PIPE,
+        env={**os.environ, "PYTHONPATH": str(ROOT)},
+    )
+    deadline = time.monotonic() + 30
+    while not bench.book.with_name("wing.wingledger-wal").exists() and time.monotonic() < deadline:
+        time.sleep(0.001)
+    time.sleep(0.1)
+    child.kill()
+    said = child.communicate()[0]
+    read = bench.figures("check")
+    assert read["entries"] == (3007 if b"digest" in said else 7)
+    assert (read["chain_ok"], read["replay_ok"]) == (True, True)
+    bench.enter("note", text="on")
     assert [path.name for path in bench.book.parent.glob("wing.wingledger*")] == ["wing.wingledger"]
 
 
