@@ -23,7 +23,7 @@ def start_command(book: Path, plan: Path, by: str | None, as_json: bool) -> None
     """Make a new BOOK from the plan folder PLAN."""
     from ledger.operations.start_book import start_book
 
-    _print_adopted(start_book(book, plan, by=by), as_json)
+    _print_adopted(start_book(book, plan, by=by), as_json, began=True)
 
 
 @click.command("adopt")
@@ -39,8 +39,8 @@ def adopt_command(book: Path, plan: Path, by: str | None, preview: bool, as_json
     _print_adopted(adopt_plan(book, plan, by=by, preview=preview), as_json, preview=preview)
 
 
-def _print_adopted(adopted: Adopted, as_json: bool, *, preview: bool = False) -> None:
-    from ledger.reports.entry_lines import adopted_figures, adopted_lines
+def _print_adopted(adopted: Adopted, as_json: bool, *, preview: bool = False, began: bool = False) -> None:
+    from ledger.reports.entry_lines import adopted_figures, started_lines, unfit_lines
 
     # A preview wrote no entry, so it has no number and no digest to keep.
     seq, digest = (None, None) if preview else (adopted.seq, adopted.digest)
@@ -50,5 +50,6 @@ def _print_adopted(adopted: Adopted, as_json: bool, *, preview: bool = False) ->
     else:
         if preview:
             print_lines(("PREVIEW: nothing was written",))
-        print_lines(adopted_lines(adopted.iteration, seq, digest, unfit))
+        # Of a new book nothing is built yet.
+        print_lines((*started_lines(adopted.iteration, seq, digest), *(() if began else unfit_lines(unfit))))
     print_findings(adopted.findings)

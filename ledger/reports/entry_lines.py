@@ -27,17 +27,17 @@ def minted_lines(minted: Iterable[Minted]) -> tuple[str, ...]:
     )
 
 
-def adopted_lines(
-    iteration: str, seq: int | None, digest: str | None, no_longer_fits: Sequence[tuple[str, str, str]]
-) -> tuple[str, ...]:
-    """What taking in a plan did, or would do. Each piece that no longer fits has its state and why."""
+def started_lines(iteration: str, seq: int | None, digest: str | None) -> tuple[str, ...]:
+    """Which plan was taken in, and by which entry; a preview has none."""
     entry = () if seq is None else (f"entry      {seq}",)
-    unfit = how_many(len(no_longer_fits), "built piece") if no_longer_fits else "none"
     last = () if digest is None else (f"digest     {digest}",)
+    return (clean(f"iteration  {iteration}"), *entry, *last)
+
+
+def unfit_lines(no_longer_fits: Sequence[tuple[str, str, str]]) -> tuple[str, ...]:
+    """What a further plan does, or would do, to what is built. Each piece has its state and why."""
+    unfit = how_many(len(no_longer_fits), "built piece") if no_longer_fits else "none"
     return (
-        clean(f"iteration  {iteration}"),
-        *entry,
-        *last,
         f"no longer fits  {unfit}",
         *(clean(f"  {piece}  {state}  {why}") for piece, state, why in no_longer_fits),
     )

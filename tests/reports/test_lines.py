@@ -11,7 +11,7 @@ from ledger.fuel.report import FuelReport
 from ledger.mass.report import WeightReport
 from ledger.mass.trace import Trace
 from ledger.reports.demo_lines import COLUMNS, ROWS, demo_lines
-from ledger.reports.entry_lines import adopted_lines
+from ledger.reports.entry_lines import unfit_lines
 from ledger.reports.finding_lines import counted, finding_line
 from ledger.reports.fuel_lines import fuel_lines, hole_line, trapped_text, usable_text
 from ledger.reports.plain import width_of
@@ -144,8 +144,8 @@ def test_a_trace_says_how_many_pieces_in_plain_words(
 
 @pytest.mark.parametrize(("count", "said"), [(0, "none"), (1, "1 built piece"), (2, "2 built pieces")])
 def test_what_no_longer_fits_is_counted_in_plain_words(count: int, said: str) -> None:
-    lines = adopted_lines("r2", 7, "d" * 64, (("RIB.1/1", "open", "its outline changed"),) * count)
-    assert lines[3] == f"no longer fits  {said}"
+    lines = unfit_lines((("RIB.1/1", "open", "its outline changed"),) * count)
+    assert lines[0] == f"no longer fits  {said}"
 
 
 def test_what_is_further_away_stands_further_in(trace_of_a_cup: Trace) -> None:

@@ -12,7 +12,7 @@ from typing import Any
 import jsonschema
 import pytest
 
-SCHEMAS = Path(__file__).resolve().parents[3] / "schemas" / "output"
+SCHEMAS = Path(__file__).resolve().parents[2] / "schemas" / "output"
 FLOOR_M2, GROSS_M3 = 0.5, 0.1
 COMMANDS = (
     "open",

@@ -18,7 +18,7 @@ from typing import Any
 
 import pytest
 
-ROOT = Path(__file__).resolve().parents[3]
+ROOT = Path(__file__).resolve().parents[2]
 NEXT = "SELECT max(seq) + 1 FROM entry"
 LAST = "(SELECT digest FROM entry ORDER BY seq DESC LIMIT 1)"
 ROW = "'x', '2026-01-01T00:00:00+00:00', '2026-01-01T00:00:00+00:00', 'XX', 'note', '{}'"

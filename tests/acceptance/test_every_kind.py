@@ -16,7 +16,7 @@ import pytest
 from ledger.model import acts  # noqa: F401  the kinds are declared when this is imported
 from ledger.model.declare import KINDS
 
-SCHEMAS = Path(__file__).resolve().parents[3] / "schemas" / "entry"
+SCHEMAS = Path(__file__).resolve().parents[2] / "schemas" / "entry"
 # In an order in which each can be done; every field of every kind is used at least once.
 ENTRIES: dict[str, dict[str, str]] = {
     "instrument": {
