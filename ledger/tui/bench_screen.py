@@ -15,6 +15,7 @@ from ledger.tui.actions import BENCH, Action, action_for_word
 from ledger.tui.bench_face import BenchFace
 from ledger.tui.completing import candidates, completed
 from ledger.tui.crew import read_badge
+from ledger.tui.slip import Slip
 from ledger.tui.slip_drawing import label_of
 from ledger.tui.tour import SKIN
 
@@ -301,13 +302,16 @@ class BenchScreen(BenchFace):
         elif field.required and not slip.value(field.word):
             self.refuse(f"{label_of(field.word)} must be filled: {field.tip}")
         else:
-            self._move(1)
+            self._stand_on(slip.passed())
 
     def _move(self, step: int) -> None:
         if self.desk.slip is not None:
-            self.desk.slip = self.desk.slip.moved(step)
-            self.draw_slip()
-            self.draw_line()
+            self._stand_on(self.desk.slip.moved(step))
+
+    def _stand_on(self, slip: Slip) -> None:
+        self.desk.slip = slip
+        self.draw_slip()
+        self.draw_line()
 
     def _mark(self, step: int) -> None:
         if self.view is None:

@@ -152,6 +152,7 @@ class BenchWriting(WorkScreen[BenchView]):
             return False
         if self.crew.needs_badge(self.now()):
             self.refuse("whose entry is it? scan your badge or type +JK, then log again")
+            self.draw_plate()
             return False
         wall = self.ledger_app.wall
         wall.look(self.ledger_app.last_logged_at)

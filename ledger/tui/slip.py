@@ -144,6 +144,10 @@ class Slip:
         place = max(0, min(len(self.fields), self.at_field + step))
         return replace(self, at_field=place, strayed=True)
 
+    def passed(self) -> Slip:
+        """The mark on the next field, by an Enter on nothing: a scan still finds its own field further on."""
+        return replace(self, at_field=min(len(self.fields), self.at_field + 1))
+
     def gone_on(self) -> Slip:
         """The mark on the next field that nobody filled, past what stands there from last time."""
         place = self.at_field + 1
@@ -305,7 +309,7 @@ class Slip:
         badge = read_badge(text)
         said = f"badge {badge}" if badge else thing.says if thing is not None else f"{text}: nothing known"
         here = self.current
-        wants = "the mark is on log" if here is None else f"{_label(here)} wants {here.tip}"
+        wants = "the mark is on log" if here is None else f"{_label(here)}: {here.tip}"
         others = [
             _label(field)
             for field in self.fields

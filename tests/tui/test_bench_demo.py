@@ -104,3 +104,61 @@ async def test_another_book_is_led_nowhere(small_book: Path, open_bench: OpenBen
         assert INVENTED not in bench.shown
         assert bench.app.tour_line is None
         assert bench.app.bench.desk.slip is None
+
+
+async def test_with_no_colour_at_all_every_state_is_still_a_word(
+    just_laid_out: Path, open_bench: OpenBench, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.setenv("NO_COLOR", "1")
+    async with open_bench(just_laid_out) as bench:
+        assert bench.app.theme == "none"
+        styles = [
+            segment.style
+            for strip in bench.app.screen._compositor.render_strips()
+            for segment in strip
+            if segment.style is not None
+        ]
+        reversed_words = {
+            segment.text.strip()
+            for strip in bench.app.screen._compositor.render_strips()
+            for segment in strip
+            if segment.style is not None and segment.style.reverse and segment.style.bold
+        }
+        assert {"STOP", "STOP 1"} <= reversed_words
+        hues = {style.color.triplet for style in styles if style.color is not None} - {None}
+        assert all(red == green == blue for red, green, blue in hues)
+        for word in ("STOP 1", "LOOK 3", "LOOK needs 494 g", "PAST"):
+            assert word in bench.shown
+
+
+async def test_at_160_by_48_the_stack_its_place_and_every_finding_with_what_to_do_are_added(
+    just_laid_out: Path, open_bench: OpenBench
+) -> None:
+    async with open_bench(just_laid_out, size=(160, 48)) as bench:
+        stack = bench.app.screen.query_one("#stack").words
+        assert [line.split()[0] for line in stack.splitlines()[2:9]] == ["7", "6", "5", "4", "3", "2", "1"]
+        assert " 3 \\ \\" in stack
+        assert "-45 NOW  carbon twill 200" in stack
+        where = bench.app.screen.query_one("#where").words.splitlines()
+        assert where[1] == "upper skin, in WING/LEFT/skins"
+        marks = [line.find("X") for line in where[2:] if "X" in line]
+        assert len(marks) == 1
+        assert 0 <= marks[0] < len(where[0]) / 2
+        findings = bench.app.screen.query_one("#findings").words
+        assert "do not use it; hold it and\n      what it went into" in findings
+        await bench.key("pagedown")
+        await bench.key("pagedown")
+        assert "note" in bench.app.screen.query_one("#findings").words.splitlines()[1]
+        rows = bench.shown.splitlines()
+        assert all(len(row) == 160 for row in rows)
+        assert "ply 3 of 7   -45  \\  as you see it" in rows[4]
+
+
+async def test_a_badge_finds_its_field_after_an_enter_on_nothing(
+    just_laid_out: Path, open_bench: OpenBench
+) -> None:
+    async with open_bench(just_laid_out) as bench:
+        await bench.type("B029L")
+        await bench.type("")
+        await bench.type("+MT")
+        assert bench.app.bench.desk.slip.value("seen_by") == "MT"
