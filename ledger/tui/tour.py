@@ -11,7 +11,7 @@ from ledger.model.snapshot import Snapshot
 
 SKIN = "SKIN.UPR-L"
 INVENTED = "Invented build, nothing here flies"
-DONE = "the six acts are done: help and actions say the rest, leave ends"
+DONE = "The six acts are done: help and actions say the rest, leave ends"
 
 # The cup of the sample that was mixed with too much hardener.
 BAD_CUP = "B014Z"

@@ -18,6 +18,7 @@ import pytest
 from ledger.cli.app import run_command, wingledger
 from ledger.model.acts import Adopt
 from ledger.model.declare import KINDS
+from ledger.tui.tour import ACTS, Act
 
 ROOT = Path(__file__).resolve().parents[2]
 README = (ROOT / "README.md").read_text(encoding="utf-8")
@@ -102,3 +103,12 @@ def test_the_smallest_plan_shown_is_the_one_that_is_run(name: str) -> None:
     assert shown is not None
     kept = ROOT / "sample_builds" / "first_rib" / "plan" / name
     assert shown.group(1) == kept.read_text(encoding="utf-8")
+
+
+@pytest.mark.parametrize("act", ACTS, ids=lambda act: str(act.number))
+def test_each_act_of_the_demo_says_what_to_type_and_the_figure_to_look_for(act: Act) -> None:
+    row = next(line for line in README.splitlines() if line.startswith(f"| {act.number} "))
+    assert f"`{act.figure}`" in row
+    typed = re.findall(r"`([^`]+)`", row.split("|")[2])
+    assert typed
+    assert all(word in act.says for word in typed)

@@ -96,7 +96,7 @@ async def test_the_six_acts_show_their_figures(just_laid_out: Path, open_bench: 
         assert seen == dict.fromkeys(range(1, 7), True), bench.shown
         assert act_now(open_build(just_laid_out).logged, bench.app.toured) is None
         await bench.type("bench")
-        assert "the six acts are done" in bench.shown
+        assert "The six acts are done" in bench.shown
 
 
 async def test_another_book_is_led_nowhere(small_book: Path, open_bench: OpenBench) -> None:
