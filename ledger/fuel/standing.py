@@ -25,7 +25,7 @@ class StandingCell:
     """One cell. Level, volume and share are None where the distribution is unknown.
 
     `level_m` is None too in an empty cell; `percent_full` is of gross. `opening` is the one to move
-    where there is one, with what 1 mm lower frees over the whole tank.
+    where there is one.
     """
 
     cell: str
@@ -35,7 +35,6 @@ class StandingCell:
     trapped_m3: float | None
     trapped_by: str
     opening: str | None
-    frees_lower_1mm_m3: float | None
     pockets: int
 
 
@@ -65,14 +64,14 @@ class TankAt:
         self.trapped_m3 = self.stood.trapped_in(tank)
         self.levels = {cell: self.stood.kept[cell].level_m for cell in tank.cells}
         self._extra = {cell: self._uncoated(cell) for cell in tank.cells}
-        self.freed = {cell: self._frees(cell) for cell in tank.cells}
 
     def _uncoated(self, cell: str) -> float:
         """Sealant below the kept level, which is not taken off what is trapped."""
         bay, level = self.stood.bays[cell], self.levels[cell]
         return bay.volume(level) - bay.net(level)
 
-    def _frees(self, cell: str) -> float | None:
+    def frees_lower(self, cell: str) -> float | None:
+        """What a cell's opening 1 mm lower frees over the tank, m3; None where no move of one frees it."""
         kept = self.stood.kept[cell]
         counted = self.stood.pockets(cell) == 1 and self.stood.trapped(cell, kept) > LEAST_M3
         return freed_lower(self.stood, kept.opening) if counted and kept.opening is not None else None
@@ -139,7 +138,6 @@ def _standing_cell(at: TankAt, bay: Bay, level_m: float | None) -> StandingCell:
         trapped_m3=at.stood.trapped(name, kept) if pockets == 1 else None,
         trapped_by=kept.by,
         opening=kept.opening,
-        frees_lower_1mm_m3=at.freed[name],
         pockets=pockets,
     )
 

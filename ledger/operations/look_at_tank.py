@@ -67,7 +67,6 @@ class CellNow:
     trapped_m3: float | None
     trapped_by: str
     opening: str | None
-    frees_lower_1mm_m3: float | None
     pockets: int
 
 
@@ -85,8 +84,8 @@ class Asked:
 class TankNow:
     """One tank as asked. `attitude` is the plan's name for it, or None for one of the screen's own.
 
-    `outlet_wl_m` is the water line of the surface at the outlet; `frees_wider_10pc_m3` what the opening
-    of the worst cell would free over the tank, below 0 where it would trap more.
+    `outlet_wl_m` is the water line of the surface at the outlet; what is freed is by moving
+    the opening of the worst cell, over the tank, below 0 where that would trap more.
     """
 
     asked: Asked
@@ -97,6 +96,7 @@ class TankNow:
     trapped_m3: float | None
     cells: tuple[CellNow, ...]
     cut: Cut
+    frees_lower_1mm_m3: float | None
     frees_wider_10pc_m3: float | None
 
     @property
@@ -283,12 +283,15 @@ def look_at_tank(drawn: TankDrawn, asked: Asked) -> TankNow:
         trapped_m3=standing.trapped_m3,
         cells=tuple(map(_cell_now, standing.cells, drawn.footprints)),
         cut=_cut(drawn, at, asked, at.levels if unknown else levels),
+        frees_lower_1mm_m3=None,
         frees_wider_10pc_m3=None,
     )
     worst = now.worst
-    if worst is None or worst.frees_lower_1mm_m3 is None or worst.opening is None:
+    lower = None if worst is None else at.frees_lower(worst.cell)
+    if worst is None or lower is None or worst.opening is None:
         return now
-    return replace(now, frees_wider_10pc_m3=freed_wider(at.stood, worst.opening))
+    wider = freed_wider(at.stood, worst.opening)
+    return replace(now, frees_lower_1mm_m3=lower, frees_wider_10pc_m3=wider)
 
 
 def _cell_now(cell: StandingCell, foot: Footprint) -> CellNow:
@@ -304,7 +307,6 @@ def _cell_now(cell: StandingCell, foot: Footprint) -> CellNow:
         trapped_m3=kept,
         trapped_by=cell.trapped_by,
         opening=cell.opening,
-        frees_lower_1mm_m3=cell.frees_lower_1mm_m3,
         pockets=cell.pockets,
     )
 

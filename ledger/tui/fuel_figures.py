@@ -102,7 +102,7 @@ def _trapped(now: TankNow, display: Display, room: Room) -> list[Text]:
     space = room.width - len(head.plain) - 1
     cell, most = clean(worst.cell), trapped_text(worst.trapped_m3, display)
     head.append(f" {_fitting(space, f'{cell} {most}', f'{cell} {most.split()[0]}', cell):>{space}}", style="")
-    lower, wider = worst.frees_lower_1mm_m3, now.frees_wider_10pc_m3
+    lower, wider = now.frees_lower_1mm_m3, now.frees_wider_10pc_m3
     moves = [Text("no hole to move frees it"), Text()]
     if lower is not None and wider is not None:
         moves = [Text(_worth("1 mm lower", lower, display)), Text(_worth("10 % wider", wider, display))]

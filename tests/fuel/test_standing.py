@@ -40,11 +40,12 @@ def test_a_level_tank_stands_at_one_level_in_both_cells(pair: Any) -> None:
 
 def test_near_empty_the_cell_behind_the_hole_keeps_its_own_level(pair: Any) -> None:
     system, tanks, _ = pair
-    shown = stand(tank_at(system, tanks.tanks[0], Attitude(name="now")), 0.05)
+    at = tank_at(system, tanks.tanks[0], Attitude(name="now"))
+    shown = stand(at, 0.05)
     outlet, behind = shown.cells
     assert [outlet.level_m, behind.level_m] == pytest.approx([0.01, 0.04])
     assert (behind.trapped_by, behind.opening) == ("drain", "drain")
-    assert behind.frees_lower_1mm_m3 == pytest.approx(0.001)
+    assert at.frees_lower(behind.cell) == pytest.approx(0.001)
     assert behind.trapped_m3 == pytest.approx(0.04)
     assert shown.level_at_outlet_m == pytest.approx(0.01)
     assert shown.mass_kg is None

@@ -48,7 +48,6 @@ def cell(name: str, share: float | None, trapped: float | None = 0.0, air: float
         trapped_m3=trapped,
         trapped_by="drain",
         opening=None,
-        frees_lower_1mm_m3=None,
         pockets=1,
     )
 
@@ -63,6 +62,7 @@ def standing(*cells: CellNow, attitude: Attitude = LEVEL) -> TankNow:
         trapped_m3=0.0,
         cells=cells,
         cut=Cut(axis=1, at_m=0.5, up=attitude.up, cells=()),
+        frees_lower_1mm_m3=None,
         frees_wider_10pc_m3=None,
     )
 
