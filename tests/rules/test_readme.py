@@ -8,14 +8,18 @@ from __future__ import annotations
 import contextlib
 import fnmatch
 import io
+import json
 import os
 import re
 import shlex
+import shutil
 from pathlib import Path
 
 import pytest
+import trimesh
 
 from ledger.cli.app import run_command, wingledger
+from ledger.exchange import materials_table, openings_toml, parts_table, plan_toml, tanks_toml
 from ledger.model.acts import Adopt
 from ledger.model.declare import KINDS
 from ledger.tui.tour import ACTS, Act
@@ -112,3 +116,51 @@ def test_each_act_of_the_demo_says_what_to_type_and_the_figure_to_look_for(act: 
     typed = re.findall(r"`([^`]+)`", row.split("|")[2])
     assert typed
     assert all(word in act.says for word in typed)
+
+
+def test_the_tank_of_two_cells_that_is_shown_can_be_used(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    shown = re.search(r"```toml\n(length_unit.*?)```", README, flags=re.DOTALL)
+    assert shown is not None
+    plan = tmp_path / "plan"
+    shutil.copytree(ROOT / "sample_builds" / "one_cell_box" / "plan", plan)
+    (plan / "tanks.toml").write_text(shown.group(1), encoding="utf-8")
+    for name, outboard_mm in (("L1", -600.0), ("L2", -1100.0)):
+        box = trimesh.creation.box(bounds=[[2000.0, outboard_mm, 0.0], [3000.0, outboard_mm + 500.0, 200.0]])
+        box.export(plan / "geometry" / f"{name}.obj")
+    monkeypatch.setenv("WINGLEDGER_BY", "JK")
+    book = str(tmp_path / "two.wingledger")
+    assert run_command(["start", book, str(plan)], lambda _book: None) == 0
+    capsys.readouterr()
+    assert run_command(["fuel", book, "--json"], lambda _book: None) == 0
+    printed = capsys.readouterr()
+    (tank,) = json.loads(printed.out)["tanks"]
+    assert tank["gross_m3"] == pytest.approx(0.2, rel=1e-9)
+    # The filler's ring stands at 195 mm; the vent hole's upper edge is there too, so no air stays under it.
+    assert tank["capacity_m3"] == pytest.approx(0.195, rel=1e-9)
+    assert tank["caught_air_m3"] == 0.0
+    # Level, L1 keeps what lies below the outlet's upper edge at 13 mm, and L2 its like, whose hole is lower.
+    level = next(one for one in tank["attitudes"] if one["attitude"] == "level")
+    assert level["trapped_m3"] == pytest.approx(0.5 * 0.013 * 2, rel=1e-9)
+    assert not any(word in printed.err for word in ("opening-far", "farther", "STOP"))
+
+
+def _known_words() -> list[str]:
+    tables = (parts_table._COLUMNS, materials_table._MATERIAL_COLUMNS, materials_table._LAMINATE_COLUMNS)
+    columns = [column for table in tables for column in table]
+    shapes = [key for keys in openings_toml._SHAPES.values() for key in keys]
+    keys = (
+        *plan_toml._KEYS,
+        *plan_toml._ATTITUDE_KEYS,
+        *openings_toml._KEYS,
+        *shapes,
+        *tanks_toml._CELL_KEYS,
+    )
+    return sorted({*columns, *keys, "expansion_percent", "outlets", "join", "length_unit"})
+
+
+@pytest.mark.parametrize("word", _known_words())
+def test_every_column_and_key_of_a_plan_is_explained(word: str) -> None:
+    chapter = README[README.index("## The plan, file by file") : README.index("## Methods")]
+    assert re.search(rf"[`\[ ]{word}[`\]]|`{word} =", chapter)
