@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
+import dataclasses
 import sqlite3
 import uuid
 from datetime import datetime
 
-from ledger.book.chain import canonical, digest_of
+from ledger.book.chain import canonical, digest_of_entry
 from ledger.book.project import TablesInBook, needs_rebuild, project, rebuild
 from ledger.book.reading import last_of, read_logged
 from ledger.model.acts import Act
@@ -37,27 +38,11 @@ def append_entry(
     Raises
         NotText: a text or number that canonical JSON cannot hold.
     """
-    last_seq, previous = last_of(connection)
-    seq = last_seq + 1
-    body = canonical(body_of(act))
-    canonical(by)
-    id_text, at_text, logged_text = str(uuid.uuid4()), _text_of(at), _text_of(logged_at)
-    digest = digest_of(
-        previous, seq=seq, id=id_text, at=at_text, logged_at=logged_text, by=by, kind=kind, body=body
+    entry = _next_entry(
+        connection, kind=kind, body=canonical(body_of(act)), by=by, at=at, logged_at=logged_at
     )
-    entry = Entry(
-        seq=seq,
-        id=id_text,
-        at=at_text,
-        logged_at=logged_text,
-        by=by,
-        kind=kind,
-        body=body,
-        previous=previous,
-        digest=digest,
-    )
-    connection.execute(_INSERT, (seq, id_text, at_text, logged_text, by, kind, body, previous, digest))
-    logged = Logged(seq=seq, at=at, logged_at=logged_at, by=by, kind=kind, act=act)
+    connection.execute(_INSERT, dataclasses.astuple(entry))
+    logged = Logged(seq=entry.seq, at=at, logged_at=logged_at, by=by, kind=kind, act=act)
     if not needs_rebuild(logged):
         project(logged, TablesInBook(connection))
     elif rebuild_now:
@@ -65,5 +50,20 @@ def append_entry(
     return entry
 
 
-def _text_of(moment: datetime) -> str:
-    return moment.isoformat()
+def _next_entry(
+    connection: sqlite3.Connection, *, kind: str, body: str, by: str, at: datetime, logged_at: datetime
+) -> Entry:
+    canonical(by)
+    last_seq, previous = last_of(connection)
+    entry = Entry(
+        seq=last_seq + 1,
+        id=str(uuid.uuid4()),
+        at=at.isoformat(),
+        logged_at=logged_at.isoformat(),
+        by=by,
+        kind=kind,
+        body=body,
+        previous=previous,
+        digest="",
+    )
+    return dataclasses.replace(entry, digest=digest_of_entry(entry, previous))

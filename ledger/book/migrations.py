@@ -69,7 +69,7 @@ def run_steps(connection: sqlite3.Connection, migrations: Sequence[Migration]) -
     import sqlite_utils
 
     connection.execute("BEGIN IMMEDIATE")
-    try:
+    with connection:
         (now,) = connection.execute("PRAGMA user_version").fetchone()
         for migration in migrations:
             if migration.format > now:
@@ -77,11 +77,6 @@ def run_steps(connection: sqlite3.Connection, migrations: Sequence[Migration]) -
         put_guards(connection)
         connection.execute(f"PRAGMA application_id = {APPLICATION_ID}")
         connection.execute(f"PRAGMA user_version = {migrations[-1].format}")
-        connection.execute("COMMIT")
-    except BaseException:
-        if connection.in_transaction:
-            connection.execute("ROLLBACK")
-        raise
 
 
 def migrate(connection: sqlite3.Connection, book: Path, migrations: Sequence[Migration]) -> Path | None:

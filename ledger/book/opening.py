@@ -120,15 +120,9 @@ def open_for_writing(book: Path) -> Iterator[sqlite3.Connection]:
 
             migrate(connection, book, MIGRATIONS)
         _insist(lambda: connection.execute("BEGIN IMMEDIATE"))
-        try:
+        with connection:
             _check_inside(book, connection)
             yield connection
-        except BaseException:
-            if connection.in_transaction:
-                connection.execute("ROLLBACK")
-            raise
-        if connection.in_transaction:
-            connection.execute("COMMIT")
 
 
 def _begin_reading(connection: sqlite3.Connection) -> None:
@@ -149,19 +143,18 @@ def connect_new(path: Path) -> sqlite3.Connection:
 def _connect(book: Path) -> sqlite3.Connection:
     # A connection in mode=ro cannot tidy up and leaves side files behind; mode=rw never makes the book.
     connection = sqlite3.connect(_address(book, "mode=rw"), uri=True, timeout=_WAIT_S, isolation_level=None)
-    try:
-        _insist(lambda: connection.execute("SELECT 1 FROM sqlite_master LIMIT 1").fetchone())
-    except sqlite3.OperationalError as error:
-        connection.close()
-        if _primary(error) not in {sqlite3.SQLITE_CANTOPEN, sqlite3.SQLITE_READONLY}:
-            raise
-        if _side_file(book).exists():
-            raise
-        # A book on a disk that cannot be written: nobody else can write it either.
-        return sqlite3.connect(_address(book, "immutable=1"), uri=True, isolation_level=None)
-    except BaseException:
-        connection.close()
-        raise
+    with contextlib.ExitStack() as unless_read:
+        unless_read.callback(connection.close)
+        try:
+            _insist(lambda: connection.execute("SELECT 1 FROM sqlite_master LIMIT 1").fetchone())
+        except sqlite3.OperationalError as error:
+            if _primary(error) not in {sqlite3.SQLITE_CANTOPEN, sqlite3.SQLITE_READONLY}:
+                raise
+            if _side_file(book).exists():
+                raise
+            # A book on a disk that cannot be written: nobody else can write it either.
+            return sqlite3.connect(_address(book, "immutable=1"), uri=True, isolation_level=None)
+        unless_read.pop_all()
     return connection
 
 

@@ -90,39 +90,28 @@ def _misfit(act: Fit, known: Known, where: Where) -> list[Finding]:
     piece = known.piece(act.piece)
     now_in = None if piece is None else piece.fitted_into
     if act.out_of is not None:
-        if now_in == act.out_of:
-            return []
-        so = (
-            f"{act.piece} is in {now_in}"
-            if now_in is not None
-            else f"{act.piece} is not fitted into anything"
-        )
-        return [
-            _stop(
-                where, "out_of", "not-fitted-there", f"{so}, not in {act.out_of}", "name where it really is"
-            )
-        ]
+        return _not_out_of(act.piece, act.out_of, now_in, where)
     if now_in is not None:
-        return [
-            _stop(
-                where,
-                "into",
-                "fitted-already",
-                f"{act.piece} is already in {now_in}",
-                f"take it out first: fit piece={act.piece} out_of={now_in}",
-            )
-        ]
+        what = f"{act.piece} is already in {now_in}"
+        do = f"take it out first: fit piece={act.piece} out_of={now_in}"
+        return [_stop(where, "into", "fitted-already", what, do)]
+    return _not_into_itself(act, known, where)
+
+
+def _not_out_of(piece: str, out_of: str, now_in: str | None, where: Where) -> list[Finding]:
+    if now_in == out_of:
+        return []
+    so = f"{piece} is in {now_in}" if now_in is not None else f"{piece} is not fitted into anything"
+    return [_stop(where, "out_of", "not-fitted-there", f"{so}, not in {out_of}", "name where it really is")]
+
+
+def _not_into_itself(act: Fit, known: Known, where: Where) -> list[Finding]:
     within = act.into
     while within is not None:
         if within == act.piece:
+            what = f"{act.into} is {act.piece} itself or sits inside it"
             return [
-                _stop(
-                    where,
-                    "into",
-                    "fitted-into-itself",
-                    f"{act.into} is {act.piece} itself or sits inside it",
-                    "name the piece or assembly it goes into",
-                )
+                _stop(where, "into", "fitted-into-itself", what, "name the piece or assembly it goes into")
             ]
         holder = known.piece(within)
         within = None if holder is None else holder.fitted_into
