@@ -26,8 +26,8 @@ BINARY = {".png", ".jpg", ".pdf", ".xlsx", ".3mf", ".stl", ".db", ".wingledger"}
 
 
 def kept_files() -> list[Path]:
-    """Every file that git keeps, or would keep."""
-    command = ["git", "ls-files", "--cached", "--others", "--exclude-standard", "-z"]
+    """Every file that git keeps. What a user makes beside them, such as books, is no concern of these."""
+    command = ["git", "ls-files", "--cached", "-z"]
     done = subprocess.run(command, cwd=ROOT, capture_output=True, text=True, check=False)
     if done.returncode != 0:
         pytest.skip("not a git checkout")
@@ -54,7 +54,8 @@ def test_no_forbidden_word_stands_in_any_file() -> None:
 
 
 def test_no_file_names_a_path_of_this_machine() -> None:
-    here = f"{ROOT.parent}/"
+    # A neighbour's path is as wrong as our own; at the top of the disk every path has such a neighbour.
+    here = f"{ROOT.parent if ROOT.parent != Path('/') else ROOT}/"
     assert [path for path, text in texts() if here in text] == []
 
 
