@@ -8,7 +8,7 @@ import sqlite3
 
 from ledger.book.names import Known, choices
 from ledger.errors import Finding, Severity, Where
-from ledger.model.acts import Act, Fit, Lay, Release, Withdraw
+from ledger.model.acts import Act, Fit, Lay, Release, Weigh, Withdraw
 from ledger.model.declare import KINDS, Field, Takes
 from ledger.model.gather import split_piece_name
 from ledger.model.things import KeptOffcut, Measure, Share
@@ -28,6 +28,8 @@ def impossible(kind: str, act: Act, known: Known, *, where: Where) -> tuple[Find
             findings.extend(_no_such_step(act, known, where))
         case Release():
             findings.extend(_not_held(act, known.connection, where))
+        case Weigh():
+            findings.extend(_tare_above_reading(act, where))
         case Withdraw():
             findings.extend(_not_to_withdraw(act, known.connection, where))
         case _:
@@ -116,6 +118,15 @@ def _not_into_itself(act: Fit, known: Known, where: Where) -> list[Finding]:
         holder = known.piece(within)
         within = None if holder is None else holder.fitted_into
     return []
+
+
+def _tare_above_reading(act: Weigh, where: Where) -> list[Finding]:
+    mean_kg = sum(act.reading_kg) / len(act.reading_kg) if act.reading_kg else math.inf
+    if act.tare_kg is None or act.tare_kg < mean_kg:
+        return []
+    what = "the tare is as much as the reading or more, so nothing is left"
+    do = "write the reading with the tare in it, or leave the tare out where the scale took it off"
+    return [_stop(where, "tare", "tare-above-reading", what, do)]
 
 
 def _no_such_step(act: Lay, known: Known, where: Where) -> list[Finding]:

@@ -19,6 +19,7 @@ from ledger.model.declare import KINDS, Field, Takes
 from ledger.model.gather import BEGINNING, split_piece_name
 from ledger.model.things import TYPE_LETTER, Minted, Share, ThingKind
 
+_MAKING = ("cut", "lay")
 _NOT_IN_NUMBERS = set(";,/=\"'")
 
 
@@ -163,14 +164,19 @@ class _Resolving:
         live = [piece for piece in pieces if not piece.scrapped]
         planned = self.known.part(part)
         quantity = 0 if planned is None else planned.quantity
-        fresh = begins and planned is not None and (not live or (self.kind == "cut" and len(live) < quantity))
+        # What was scrapped is made again by cutting or laying; on a scale it is more likely the scrap itself.
+        again = not pieces or self.kind in _MAKING
+        fresh = begins and planned is not None
+        fresh = fresh and ((not live and again) or (self.kind == "cut" and len(live) < quantity))
         if fresh:
             return self._begin(part, 1 + max((piece.running for piece in pieces), default=0))
         if not live:
             raise NameRefused(
                 "piece-not-begun",
                 f"no piece of {part} has begun" if not pieces else f"every piece of {part} is scrapped",
-                "log how it was made first, for example cut or lay",
+                "log how it was made first, for example cut or lay"
+                if not begins or planned is None
+                else f"write {part}/{1 + pieces[-1].running} if this is a new one",
             )
         if len(live) == 1 and not (self.kind == "cut" and quantity > 1):
             return live[0].name

@@ -36,7 +36,7 @@ def bonded_without_peel_ply_recorded(facts: Facts) -> tuple[Finding, ...]:
                 severity=Severity.STOP if left_on else Severity.LOOK,
                 where=Where(entry=logged.seq, thing=faces[0]),
                 what=(
-                    f"bonded with {', '.join(faces)}: "
+                    f"{' and '.join(faces)} bonded, "
                     + ("peel ply recorded as still on" if left_on else "peel ply not recorded as removed")
                 ),
                 do="open the joint" if left_on else "correct the bond with peel_ply_removed, or inspect it",

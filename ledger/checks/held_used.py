@@ -6,9 +6,10 @@ from datetime import datetime
 
 from ledger.checks.batches_used import stock_of
 from ledger.checks.facts import Facts
+from ledger.checks.live_pieces import is_live, pieces_of
 from ledger.errors import Finding, Severity, Where
-from ledger.model.acts import Act, Bond, Coat, Cut, Fit, Lay
-from ledger.model.snapshot import PieceState, Snapshot
+from ledger.model.acts import Act, Bond, Fit
+from ledger.model.snapshot import Snapshot
 
 CODE = "held-used"
 
@@ -30,12 +31,12 @@ def held_used(facts: Facts) -> tuple[Finding, ...]:
                 continue
             if logged.at >= holds[origin] and logged.seq > snapshot.held[origin]:
                 used.append(_used(logged.seq, what, origin, logged.kind))
-            for piece in _pieces_of(logged.act):
+            for piece in pieces_of(logged.act):
                 if piece != origin:
                     holding.setdefault(piece, set()).add(origin)
     return (
         *used,
-        *(_holds(piece, origins) for piece, origins in holding.items() if _is_live(piece, snapshot)),
+        *(_holds(piece, origins) for piece, origins in holding.items() if is_live(piece, snapshot)),
     )
 
 
@@ -55,21 +56,6 @@ def _made_of_held(snapshot: Snapshot, holds: dict[str, datetime]) -> dict[str, s
             if source in tainted:
                 tainted.setdefault(number, tainted[source])
     return tainted
-
-
-def _pieces_of(act: Act) -> tuple[str, ...]:
-    match act:
-        case Cut() | Bond():
-            return act.pieces
-        case Lay():
-            return (act.piece,)
-        case Coat():
-            return () if act.piece is None else (act.piece,)
-        case Fit():
-            return () if act.into is None else (act.into,)
-        case _:
-            piece = getattr(act, "piece", None)
-            return (piece,) if isinstance(piece, str) else ()
 
 
 def _pieces_moved(act: Act) -> tuple[str, ...]:
@@ -101,8 +87,3 @@ def _holds(piece: str, origins: set[str]) -> Finding:
         what=f"holds {', '.join(sorted(origins))}, which is on hold",
         do="hold the piece too, or release the hold",
     )
-
-
-def _is_live(piece: str, snapshot: Snapshot) -> bool:
-    known = snapshot.pieces.get(piece)
-    return known is not None and known.state is not PieceState.SCRAPPED

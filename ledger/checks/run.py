@@ -14,6 +14,7 @@ from ledger.checks.cut_turned import cut_turned
 from ledger.checks.cut_twice import cut_twice
 from ledger.checks.density_out_of_range import density_out_of_range
 from ledger.checks.dry_cell import dry_cell
+from ledger.checks.fabric_wet_with_paste import fabric_wet_with_paste
 from ledger.checks.facts import Facts, Rule
 from ledger.checks.feed_flow_unknown import feed_flow_unknown
 from ledger.checks.few_adverse_attitudes import few_adverse_attitudes
@@ -23,6 +24,7 @@ from ledger.checks.lot_expired import lot_expired
 from ledger.checks.mass_off_plan import mass_off_plan
 from ledger.checks.mass_unknown import mass_unknown
 from ledger.checks.mix_ratio_out import mix_ratio_out
+from ledger.checks.mix_ratio_out_used import mix_ratio_out_used
 from ledger.checks.mix_ratio_unprovable import mix_ratio_unprovable
 from ledger.checks.names_something_withdrawn import names_something_withdrawn
 from ledger.checks.no_drain import no_drain
@@ -32,6 +34,7 @@ from ledger.checks.peel_ply_not_said import peel_ply_not_said
 from ledger.checks.ply_missing import ply_missing
 from ledger.checks.ply_not_in_plan import ply_not_in_plan
 from ledger.checks.ply_of_other_material import ply_of_other_material
+from ledger.checks.ply_out_of_order import ply_out_of_order
 from ledger.checks.ply_twice import ply_twice
 from ledger.checks.ply_wrong_way import ply_wrong_way
 from ledger.checks.pocket_not_counted import pocket_not_counted
@@ -60,6 +63,7 @@ RULES: tuple[Rule, ...] = (
     cut_twice,
     density_out_of_range,
     dry_cell,
+    fabric_wet_with_paste,
     feed_flow_unknown,
     few_adverse_attitudes,
     held_used,
@@ -68,6 +72,7 @@ RULES: tuple[Rule, ...] = (
     mass_off_plan,
     mass_unknown,
     mix_ratio_out,
+    mix_ratio_out_used,
     mix_ratio_unprovable,
     names_something_withdrawn,
     no_drain,
@@ -77,6 +82,7 @@ RULES: tuple[Rule, ...] = (
     ply_missing,
     ply_not_in_plan,
     ply_of_other_material,
+    ply_out_of_order,
     ply_twice,
     ply_wrong_way,
     pocket_not_counted,

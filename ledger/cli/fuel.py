@@ -24,7 +24,11 @@ ASKED = "asked"
 @click.option("--pitch", type=float, metavar="DEGREES", help="One more attitude, nose up positive.")
 @click.option("--roll", type=float, metavar="DEGREES", help="Its roll, right wing down positive.")
 @click.option(
-    "--levels", type=click.IntRange(1, 10_000), default=100, show_default=True, help="Steps of the tables."
+    "--levels",
+    type=click.IntRange(1, 10_000),
+    default=100,
+    show_default=True,
+    help="Steps of the tables of --json; text shows about ten rows at most.",
 )
 @click.option("--temperature", metavar="TEXT", help="Of the fuel, for its density, for example '28 C'.")
 @json_option
@@ -44,22 +48,26 @@ def fuel_command(
     """
     from ledger.operations.reckon_fuel import reckon_fuel
 
+    temperature_k = _temperature(temperature)
     fuel = reckon_fuel(
         book,
         attitudes=attitudes,
         asked=_asked(pitch, roll),
         levels=levels,
-        temperature_k=_temperature(temperature),
+        temperature_k=temperature_k,
     )
     if as_json:
         from ledger.reports.figures import fuel_figures
 
         print_json(fuel_figures(fuel.report))
     else:
-        from ledger.reports.fuel_lines import fuel_lines
+        from ledger.reports.fuel_lines import density_line, fuel_lines
 
+        density = None
+        if temperature_k is not None:
+            density = density_line(fuel.density_kg_m3, temperature_k, fuel.display)
         chosen = bool(attitudes) or pitch is not None or roll is not None
-        print_lines(fuel_lines(fuel.report, fuel.display, tables=chosen))
+        print_lines(fuel_lines(fuel.report, fuel.display, tables=chosen, density=density))
     print_findings(fuel.findings)
 
 

@@ -16,6 +16,8 @@ from ledger.model.tanks import Opening, Tanks
 
 # How far an opening may lie from a wall beyond its own depth: paste, sealant and drawing tolerance.
 ALLOWED_M = 0.005
+# A hole drawn in the middle of its wall is as far from both cells as it may be, to the last bits.
+_SAME_M = 1e-6
 # Cells that run less than this into one another only touch.
 _TOUCH_M = 1e-6
 _LEAST_OVERLAP_SHARE = 1e-6
@@ -28,7 +30,7 @@ def far_openings(tanks: Tanks, cells: Mapping[str, ClosedCell]) -> tuple[FarOpen
         allowed = (opening.depth_m or 0.0) + ALLOWED_M
         for name in opening.cells:
             distance = _distance(opening, cells[name], allowed)
-            if distance > allowed:
+            if distance > allowed + _SAME_M:
                 far.append(
                     FarOpening(opening=opening.name, cell=name, distance_m=distance, allowed_m=allowed)
                 )

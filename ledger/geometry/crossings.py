@@ -6,6 +6,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ledger.errors import MeshRefused
+from ledger.geometry.named_place import named_place
 from ledger.geometry.proof import shells_of
 from ledger.geometry.solids import volume_integrals
 from ledger.geometry.standing import Floats, Indices
@@ -31,10 +32,9 @@ def refuse_overlap(vertices: Floats, faces: Indices) -> None:
     """
     place = _first_crossing(vertices, faces)
     if place is not None:
-        x, y, z = place
         raise MeshRefused(
             "mesh-overlaps",
-            f"the mesh runs through itself near ({x:.6g}, {y:.6g}, {z:.6g}) m",
+            f"the mesh runs through itself near {named_place(place)}",
             "unite the overlapping bodies into one solid and export again",
         )
     shells = shells_of(faces)
@@ -49,7 +49,7 @@ def _refuse_misplaced_shell(vertices: Floats, faces: Indices, shells: Indices, n
     outward = volume_integrals(vertices, own)[0] >= 0.0
     others = faces[shells != number]
     wound = _winding_outside(vertices, own, others)
-    where = "({:.6g}, {:.6g}, {:.6g}) m".format(*vertices[own[0, 0]])
+    where = named_place(vertices[own[0, 0]])
     if not outward and wound == 0:
         raise MeshRefused(
             "mesh-flipped",

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 
 from ledger.errors import Unplaced
 from ledger.geometry.curves import Curve, Line
+from ledger.geometry.named_place import named_place
 from ledger.geometry.sectors import Point
 
 NAMED = 3
@@ -37,11 +38,6 @@ def polygon(points_m: Iterable[Iterable[float]]) -> Loop:
     return Loop(curves=tuple(Line(start=a, end=b) for a, b in zip(corners, following, strict=True)))
 
 
-def named_point(point: Point) -> str:
-    """A point of an outline in a message, metres."""
-    return f"({point[0]:.6g}, {point[1]:.6g})"
-
-
 def chain(curves: Sequence[Curve], gap_m: float) -> tuple[Loop, ...]:
     """Loops of loose curves drawn in any order and direction.
 
@@ -60,11 +56,12 @@ def chain(curves: Sequence[Curve], gap_m: float) -> tuple[Loop, ...]:
     partner = _partners(loose, gap_m)
     free = [end for end in range(2 * len(loose)) if end not in partner]
     if free:
-        named = ", ".join(named_point(_end_of(loose, end)) for end in free[:NAMED])
+        named = ", ".join(named_place(_end_of(loose, end)) for end in free[:NAMED])
         rest = f" and {len(free) - NAMED} more" if len(free) > NAMED else ""
         raise OutlineRefused(
             "outline-open",
-            f"the outline is open: {len(free)} ends meet no other within {gap_m:g} m, at {named}{rest} (m)",
+            f"the outline is open: {len(free)} ends meet no other within {1000.0 * gap_m:g} mm,"
+            f" at {named}{rest}",
             "join the ends there or remove the loose piece",
         )
     loops = [Loop(curves=_bridged([curve])) for curve in whole]
@@ -141,7 +138,7 @@ def _refuse_doubled(loose: list[Curve], gap_m: float) -> None:
             if (same or turned) and _apart(middle, _middle(other)) <= near:
                 raise OutlineRefused(
                     "outline-doubled",
-                    f"a curve is drawn twice from {named_point(curve.start)} to {named_point(curve.end)} (m)",
+                    f"a curve is drawn twice from {named_place(curve.start)} to {named_place(curve.end)}",
                     "remove the copy",
                 )
         seen.setdefault(at, []).append(curve)

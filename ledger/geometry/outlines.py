@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 import math
+import re
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from ledger.geometry.curves import Arc, Curve, EllipseArc, Line, Spline
-from ledger.geometry.loops import Loop, OutlineRefused, chain, named_point, polygon
+from ledger.geometry.loops import Loop, OutlineRefused, chain, polygon
+from ledger.geometry.named_place import named_place
 from ledger.geometry.sectors import Point, Sector, add_sectors
 
 if TYPE_CHECKING:
@@ -123,7 +125,7 @@ def _refuse_open(loop: Loop) -> None:
         if math.dist(curve.end, following.start) > near:
             raise OutlineRefused(
                 "outline-open",
-                f"the outline is open from {named_point(curve.end)} to {named_point(following.start)} (m)",
+                f"the outline is open from {named_place(curve.end)} to {named_place(following.start)}",
                 "join the ends there",
             )
 
@@ -150,13 +152,13 @@ def _polygon_of(loop: Loop) -> Polygon:
     if flat is None or flat.convex_hull.area <= EMPTY_SHARE * size * size:
         raise OutlineRefused(
             "outline-empty",
-            f"the loop at {named_point(loop.curves[0].start)} (m) encloses no area",
+            f"the loop at {named_place(loop.curves[0].start)} encloses no area",
             "remove it or draw it whole",
         )
     if not flat.is_valid:
         raise OutlineRefused(
             "outline-crosses",
-            f"the outline crosses or touches itself: {explain_validity(flat)} (m)",
+            f"the outline crosses or touches itself {_crossing(explain_validity(flat))}",
             "mend the drawing there",
         )
     return flat
@@ -189,6 +191,12 @@ def _depths(polygons: list[Polygon]) -> list[int]:
     return depths
 
 
+def _crossing(explained: str) -> str:
+    # Shapely says for example `Self-intersection[0.5 0.25]`, in the drawing's own metres.
+    found = re.search(r"\[(\S+) (\S+)\]", explained)
+    return explained if found is None else f"at {named_place(map(float, found.groups()))}"
+
+
 def _refuse_meeting(one: Polygon, two: Polygon, touch: float) -> None:
     from shapely import shortest_line
 
@@ -198,11 +206,11 @@ def _refuse_meeting(one: Polygon, two: Polygon, touch: float) -> None:
     x, y = shortest_line(ring, other).coords[0]
     if ring.hausdorff_distance(other) <= touch:
         raise OutlineRefused(
-            "outline-doubled", f"a loop is drawn twice at {named_point((x, y))} (m)", "remove the copy"
+            "outline-doubled", f"a loop is drawn twice at {named_place((x, y))}", "remove the copy"
         )
     raise OutlineRefused(
         "outline-crosses",
-        f"two loops cross or touch at {named_point((x, y))} (m)",
+        f"two loops cross or touch at {named_place((x, y))}",
         "mend the drawing there",
     )
 

@@ -6,6 +6,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from ledger.errors import MeshRefused
+from ledger.geometry.named_place import named_place
 from ledger.geometry.standing import Floats, Indices
 
 # Corners nearer than this share of the mesh's size are one corner: the rounding of a file, not a gap.
@@ -147,24 +148,20 @@ def _edge_runs(faces: Indices) -> tuple[Indices, Indices, Indices]:
 
 
 def _edge_refusal(vertices: Floats, code: str, edges: Indices) -> MeshRefused:
-    named = "; ".join(f"{_point(vertices[a])} to {_point(vertices[b])}" for a, b in edges[:NAMED])
+    named = "; ".join(f"{named_place(vertices[a])} to {named_place(vertices[b])}" for a, b in edges[:NAMED])
     rest = f" and {len(edges) - NAMED} more" if len(edges) > NAMED else ""
     edge = "edge" if len(edges) == 1 else "edges"
     if code == "mesh-open":
         return MeshRefused(
             code,
-            f"the mesh is not closed at {len(edges)} {edge} (m): {named}{rest}",
+            f"the mesh is not closed at {len(edges)} {edge}: {named}{rest}",
             "close the hole there, or remove the triangle that hangs on it, and export again",
         )
     return MeshRefused(
         code,
-        f"triangles face opposite ways across {len(edges)} {edge} (m): {named}{rest}",
+        f"triangles face opposite ways across {len(edges)} {edge}: {named}{rest}",
         "make all faces look outward and export again",
     )
-
-
-def _point(corner: Floats) -> str:
-    return "(" + ", ".join(f"{value:.6g}" for value in corner) + ")"
 
 
 def refuse_flat(vertices: Floats, faces: Indices, volume_m3: float) -> None:

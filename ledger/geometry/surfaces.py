@@ -7,6 +7,7 @@ from numpy.typing import ArrayLike
 
 from ledger.errors import MeshRefused
 from ledger.geometry.moments import Moments, matrix
+from ledger.geometry.named_place import named_place
 from ledger.geometry.proof import checked_arrays
 from ledger.geometry.standing import Floats, Indices
 from ledger.geometry.vectors import vector
@@ -51,8 +52,8 @@ def _refuse_doubled(vertices: Floats, faces: Indices) -> None:
         corner = vertices[distinct[counts > 1][0]].mean(axis=0)
         raise MeshRefused(
             "surface-doubled",
-            f"{int((counts > 1).sum())} triangles of the surface are there twice, the first near "
-            + "({:.6g}, {:.6g}, {:.6g}) m".format(*corner),
+            f"{int((counts > 1).sum())} triangles of the surface are there twice, the first near"
+            f" {named_place(corner)}",
             "remove the copies and export again",
         )
 

@@ -193,10 +193,22 @@ class _Layers:
                 step in covered or (len(lays) > 1 and not is_one_ply(lays, self.measure * layer.coverage))
             ):
                 yield PlyNotice(piece=piece, step=step, what="twice", seqs=seqs)
+        yield from self._skipped(piece, planned)
         if finished and (laid or self.cuts):
             for layer in self._left():
                 if _makes_a_ply(layer):
                     yield PlyNotice(piece=piece, step=layer.number, what="missing", seqs=())
+
+    def _skipped(self, piece: str, planned: dict[int, Layer]) -> Iterator[PlyNotice]:
+        """Each planned step that was not there when a later one was laid."""
+        there = self._covered() | self.coated
+        told: set[int] = set()
+        for one in self.lays:
+            for number, layer in planned.items():
+                if number < (one.step or 0) and _makes_a_ply(layer) and number not in there | told:
+                    told.add(number)
+                    yield PlyNotice(piece=piece, step=number, what="skipped", seqs=(one.seq,))
+            there.add(one.step or 0)
 
     def _covered(self) -> set[int]:
         covered: set[int] = set()

@@ -167,10 +167,11 @@ class Unknown:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class PlyNotice:
-    """A step of a piece that is not as its laminate wants. `what` is missing, twice, not in plan or to come.
+    """A step of a piece that is not as its laminate wants. `what` says how.
 
-    A step to come is noticed only on a piece already weighed: the weighing does not hold it. `seqs`
-    are the entries that laid the step.
+    It is missing, twice, not in plan, skipped or to come. A step to come is noticed only on a piece
+    already weighed: the weighing does not hold it. `seqs` are the entries that laid the step; of a
+    step skipped, the one that laid a later step over it.
     """
 
     piece: str

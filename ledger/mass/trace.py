@@ -152,10 +152,14 @@ class _Ways:
         self.assemblies = _assemblies(self.snapshot)
         for way in (*_supplied(self.snapshot), *_charged(charges(self.snapshot)), *_joined(self.snapshot)):
             self._add(way)
-        self.ends = {account.batch: _ends(account) for account in _accounts(self.snapshot)}
+        self.ends = {account.batch: self._ends_of(account) for account in _accounts(self.snapshot)}
         for path in self.assemblies:
             if "/" in path:
                 self._add(_Way(source=path, into=path.rpartition("/")[0], how="part of", mass_kg=None))
+
+    def _ends_of(self, account: BatchAccount) -> tuple[TraceLink, ...]:
+        known = all(way.mass_kg is not None for way in self.onward.get(account.batch, ()))
+        return _ends(account, may_be_left=known and account.batch not in self.snapshot.gone)
 
     def _add(self, way: _Way) -> None:
         self.onward[way.source].append(way)
@@ -305,12 +309,20 @@ def _joined(snapshot: Snapshot) -> list[_Way]:
     return ways
 
 
-def _ends(account: BatchAccount) -> tuple[TraceLink, ...]:
-    """Where the rest of a batch is: left in the cup, drawn off, or known to nobody."""
+def _ends(account: BatchAccount, *, may_be_left: bool) -> tuple[TraceLink, ...]:
+    """Where the rest of a batch is: left in the cup, drawn off, or known to nobody.
+
+    Of a cup whose residue nobody has weighed, what was not used `may_be_left` in it; how much of that
+    was lost no entry says.
+    """
+    lost = ("not accounted for", "unaccounted", account.unaccounted_kg)
+    unused = account.mixed_kg - account.charged_kg - account.scrapped_kg - (account.bled_kg or 0.0)
+    if account.residue_kg is None and may_be_left and unused >= 0.0:
+        lost = ("in the cup or lost", "unaccounted", unused)
     rest = (
         ("left in the cup", "residue", account.residue_kg),
         ("bled off", "bled", account.bled_kg),
-        ("not accounted for", "unaccounted", account.unaccounted_kg),
+        lost,
     )
     return tuple(
         TraceLink(what=what, kind=kind, mass_kg=mass_kg, how="by the record", state="")

@@ -10,6 +10,7 @@ from pathlib import Path
 from ledger.checks.facts import Facts
 from ledger.checks.run import run_rules
 from ledger.errors import Finding, Refused, Severity, Where
+from ledger.fuel.density import density_at
 from ledger.fuel.report import FuelReport
 from ledger.mass.weigh_up import weigh_up
 from ledger.model.attitude import Attitude
@@ -21,11 +22,15 @@ _LEVELS = 100
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Fuel:
-    """The fuel of a build. `display` is that of the current plan."""
+    """The fuel of a build. `display` is that of the current plan.
+
+    `density_kg_m3` is at the temperature asked for, None where the plan gives no density.
+    """
 
     report: FuelReport
     findings: tuple[Finding, ...]
     display: Display
+    density_kg_m3: float | None = None
 
 
 def reckon_fuel(
@@ -52,6 +57,7 @@ def reckon_fuel(
         report=_listed(report, shown) if attitudes else report,
         findings=(*build.warnings, *run_rules(facts)),
         display=snapshot.plan.display,
+        density_kg_m3=density_at(snapshot.plan.fuel, temperature_k),
     )
 
 

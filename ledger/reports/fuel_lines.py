@@ -15,11 +15,14 @@ _NAMES_SHOWN = 3
 _NO_HOLE = ("no way out", "no air", "dry")
 
 
-def fuel_lines(report: FuelReport, display: Display, *, tables: bool = False) -> tuple[str, ...]:
+def fuel_lines(
+    report: FuelReport, display: Display, *, tables: bool = False, density: str | None = None
+) -> tuple[str, ...]:
     """Everything `fuel` prints, line by line; with `tables`, a short dip table for every attitude."""
     if not report.tanks:
         return ("no tanks in the plan",)
     lines = ["FUEL", f"{CAUTION}; not approved weight and balance"]
+    lines += [] if density is None else [density]
     for tank in report.tanks:
         lines += ["", *_tank_lines(tank, display)]
         for attitude in tank.attitudes if tables else ():
@@ -31,6 +34,15 @@ def fuel_lines(report: FuelReport, display: Display, *, tables: bool = False) ->
             clean(f"FEED {feed.feed}  joined by {feed.join}  usable {usable}{_at(feed.governing_attitude)}"),
         ]
     return tuple(lines)
+
+
+def density_line(density_kg_m3: float | None, temperature_k: float, display: Display) -> str:
+    """The density the masses of a report rest on, at the temperature that was asked for."""
+    if density_kg_m3 is None:
+        return "density not known: the plan's [fuel] has no density_15C"
+    degrees = float(shown_number(temperature_k, Dimension.TEMPERATURE, display))
+    unit = shown_unit(Dimension.TEMPERATURE, display)
+    return f"density {show(density_kg_m3, Dimension.DENSITY, display)} at {degrees:g} {unit}"
 
 
 def usable_text(volume_m3: float | None, display: Display) -> str:
@@ -104,7 +116,7 @@ def _attitude_lines(tank: TankFuel, display: Display) -> tuple[str, ...]:
         "roll",
         "flight",
         f"trapped {shown_unit(Dimension.VOLUME, display)}",
-        "lost",
+        f"lost out of vents {shown_unit(Dimension.VOLUME, display)}",
         "mostly in",
     )
     rows = [
@@ -113,13 +125,18 @@ def _attitude_lines(tank: TankFuel, display: Display) -> tuple[str, ...]:
             f"{attitude.pitch_deg:.1f}",
             f"{attitude.roll_deg:.1f}",
             "yes" if attitude.flight else "no",
-            _up(attitude.trapped_m3, display),
+            "-" if _all_dry(attitude) else _up(attitude.trapped_m3, display),
             _up(attitude.lost_m3, display),
             _worst_cell(attitude, display),
         )
         for attitude in tank.attitudes
     ]
     return aligned(heads, rows, right=(1, 2, 4, 5))
+
+
+def _all_dry(attitude: AttitudeFuel) -> bool:
+    """Whether no fuel ever comes into the tank: then 0 trapped would read as if all of it came out."""
+    return bool(attitude.cells) and all(cell.trapped_by == "dry" for cell in attitude.cells)
 
 
 def _worst_cell(attitude: AttitudeFuel, display: Display) -> str:
@@ -146,7 +163,7 @@ def behind(trapped_by: str) -> str:
 def _table_lines(tank: str, attitude: AttitudeFuel, display: Display) -> tuple[str, ...]:
     length, volume = shown_unit(Dimension.LENGTH, display), shown_unit(Dimension.VOLUME, display)
     heads = (f"level {length}", f"volume {volume}", "FS", "BL", "WL")
-    stride = max(1, (len(attitude.table) - 1) // _ROWS_SHOWN)
+    stride = max(1, math.ceil((len(attitude.table) - 1) / _ROWS_SHOWN))
     rows = [
         (
             shown_number(row.level_m, Dimension.LENGTH, display),

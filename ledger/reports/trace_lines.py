@@ -49,7 +49,7 @@ def _side(head: str, links: tuple[TraceLink, ...], way: str, display: Display) -
     rows = _rows(links, way, display, 1)
     if not rows:
         return (head, f"{_INDENT}nothing in the record")
-    return aligned((head, "kind", "how", "mass", "now"), rows, right=(3,))
+    return aligned((head, "kind", "how", "used", "now"), rows, right=(3,))
 
 
 def _rows(

@@ -16,6 +16,9 @@ from ledger.units import Dimension, Display, Rounding, show, shown_number, shown
 
 _OUNCES_PER_GAL = 128.0
 _MAP_NOSE = 8
+_TRAPPED_ROWS = 4
+_SOONER = "its top edge draws air sooner"
+_SHORT_SOONER = "(its top draws air sooner)"
 
 
 def small_volume(volume_m3: float | None, display: Display) -> str:
@@ -41,11 +44,13 @@ def tilt_words(pitch_deg: float, roll_deg: float) -> tuple[str, str]:
 def figures_text(drawn: TankDrawn, now: TankNow, display: Display, room: Room) -> Text:
     """What is in the tank, what stays in it and behind which hole, and what the tank holds."""
     rule = Text(room.lines.h * room.width)
+    trapped = _trapped(drawn, now, display, room)
+    # Where a reason needs a row of its own, it takes that of the rule: the column has none to spare.
     rows = [
         *_standing(now, display, room),
         rule,
-        *_trapped(now, display, room),
-        rule,
+        *trapped,
+        *([rule] if len(trapped) == _TRAPPED_ROWS else []),
         *_holds(drawn, display, room),
     ]
     for row in rows:
@@ -85,7 +90,7 @@ def _standing(now: TankNow, display: Display, room: Room) -> list[Text]:
     return [*rows, Text(f"CG FS {fs} BL {bl} {shown_unit(Dimension.LENGTH, display)}")]
 
 
-def _trapped(now: TankNow, display: Display, room: Room) -> list[Text]:
+def _trapped(drawn: TankDrawn, now: TankNow, display: Display, room: Room) -> list[Text]:
     worst = now.worst
     head = Text("TRAPPED ", style=room.signs.trapped)
     head.append(trapped_text(now.trapped_m3, display), style="")
@@ -106,6 +111,10 @@ def _trapped(now: TankNow, display: Display, room: Room) -> list[Text]:
     moves = [Text("no hole to move frees it"), Text()]
     if lower is not None and wider is not None:
         moves = [Text(_worth("1 mm lower", lower, display)), Text(_worth("10 % wider", wider, display))]
+        outlets = {mark.name for mark in drawn.marks if mark.sign == "out"}
+        if wider < 0.0 and worst.opening in outlets:
+            full = f"{moves[1].plain}: {_SOONER}"
+            moves[1:] = [Text(full)] if len(full) <= room.width else [moves[1], Text(_SHORT_SOONER)]
     return [head, Text(shortened(behind(worst.trapped_by), room.width)), *moves]
 
 
@@ -161,6 +170,9 @@ def gains_text(gains: Sequence[Gain], display: Display, room: Room) -> Text:
         rows.append(Text(f"{name:<{wide}}{lower:>14}{wider:>14}"))
     if not gains:
         rows.append(Text("no opening traps anything", style=room.signs.quiet))
+    if any(gain.wider_10pc_m3 < 0.0 for gain in gains):
+        why = f"below 0: traps more; of an outlet, {_SOONER}"
+        rows = [*rows[: room.height - 1], Text(shortened(why, room.width), style=room.signs.quiet)]
     rows = rows[: room.height]
     return Text("\n").join([*rows, *[Text()] * (room.height - len(rows))])
 

@@ -12,6 +12,9 @@ from ledger.reports.plain import clean
 from ledger.tui.fuel_section import draw_wall, scale_for
 from ledger.tui.room import Room
 
+# One place is all a hole has here, and the first letter of `out` is the sign of caught air.
+OUTLET = "X"
+
 
 def outline_text(
     outlines: Mapping[str, Sequence[tuple[float, float]]], marks: Sequence[HoleMark], room: Room
@@ -41,7 +44,12 @@ def outline_text(
                 _put(canvas, column, int((scale.top_m + middle[1]) / scale.row_m), clean(name))
         for mark in marks:
             column = int((mark.at_m[1] - scale.left_m) / scale.column_m)
-            _put(canvas, column, int((scale.top_m + mark.at_m[0]) / scale.row_m), mark.sign[:1])
+            _put(
+                canvas,
+                column,
+                int((scale.top_m + mark.at_m[0]) / scale.row_m),
+                OUTLET if mark.sign == "out" else mark.sign,
+            )
     return Text("\n").join([Text("".join(row)) for row in canvas]), stretch
 
 

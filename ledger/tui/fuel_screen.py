@@ -16,7 +16,7 @@ from ledger.tui.area import Area
 from ledger.tui.bench_drawing import rule
 from ledger.tui.fuel_asking import PITCHES_DEG, ROLLS_DEG
 from ledger.tui.fuel_figures import curve_text, figures_text, gains_text, map_text, small_volume, tilt_words
-from ledger.tui.fuel_outline import outline_text
+from ledger.tui.fuel_outline import OUTLET, outline_text
 from ledger.tui.fuel_plan_view import plan_text
 from ledger.tui.fuel_section import scale_of, section_text
 from ledger.tui.fuel_turning import NO_TANK, FuelTurning
@@ -35,6 +35,7 @@ _MOVES = {
 }
 _KEYS = "Home level  End next attitude  Enter openings by litres  Space map  tank: next"
 _WIDE_KEYS = "Home level  End next attitude  Space map or curve  tank: next"
+_HOLES = "d v hole low, high  p pipe  V vent  D drain  F filler  out outlet"
 _BACK = "Esc or Enter back to the drawing  Space map  openings"
 
 
@@ -125,7 +126,7 @@ class FuelScreen(FuelTurning):
             for name in ("plan", "outline", "outline-title", "cut", "cut-title", "figures", "gains", "map"):
                 self.query_one(f"#fuel-{name}", Area).draw("")
         self.query_one("#fuel-rule-top", Area).draw(rule(width, self.lines, [(left, self.lines.tee_down)]))
-        self.query_one("#fuel-rule-bottom", Area).draw(rule(width, self.lines, [(left, self.lines.tee_up)]))
+        self.query_one("#fuel-rule-bottom", Area).draw(self._rule_of_holes(width, left))
         self.query_one("#fuel-bar", Area).draw("\n".join([self.lines.v] * self.app.size.height))
         for name in ("gains", "map"):
             self.query_one(f"#fuel-rule-{name}", Area).draw(rule(width - left - 1, self.lines))
@@ -140,7 +141,7 @@ class FuelScreen(FuelTurning):
         self.query_one("#fuel-ends", Area).draw(self._ends(left))
         if self.wide and drawn is not None:
             outline, stretch = outline_text(drawn.outlines, drawn.marks, self._room(left, _WIDE_OUTLINE))
-            title = f"TRUE OUTLINE, holes where they are{_stretched('length', stretch)}"
+            title = f"TRUE OUTLINE, holes where they are, {OUTLET} outlet{_stretched('length', stretch)}"
             self.query_one("#fuel-outline-title", Area).draw(title)
             self.query_one("#fuel-outline", Area).draw(outline)
         self.draw_beside()
@@ -154,8 +155,15 @@ class FuelScreen(FuelTurning):
         first, last = ("tip", "root") if high <= abs(low) and high <= 0.0 else ("root", "tip")
         if low < 0.0 < high:
             first, last = "left", "right"
-        legend = "d v holes low, high  o air"
+        legend = "# trapped  = feeds  o air  > chosen"
         return f"{first}{legend:^{max(0, width - len(first) - len(last))}}{last}"
+
+    def _rule_of_holes(self, width: int, left: int) -> Text:
+        """The rule below the drawing, with what the letters of its holes mean: no row is free for them."""
+        bottom = rule(width, self.lines, [(left, self.lines.tee_up)])
+        if self.drawn is None or (self.listed and not self.wide):
+            return bottom
+        return Text(f"{self.lines.h} {_HOLES} ") + bottom[len(_HOLES) + 3 :]
 
     def draw_tank(self) -> None:
         """All that changes with tilt, quantity, cut or cell."""

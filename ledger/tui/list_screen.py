@@ -165,7 +165,12 @@ _HELP: dict[str, Listed] = {
         ("bell", "one: done; two: refused; three: a cup's clock"),
     ),
     "weights": (("A C E", "known by: actual (weighed), calculated (as logged), estimated (plan)"),),
-    "fuel": (("= # o", "feeds, trapped, air caught"), ("COMPUTED", "a flow test decides what is unusable")),
+    "fuel": (
+        ("= # o >", "feeds, trapped, air caught, the chosen cell"),
+        ("d v p", "between cells: hole low in the wall, hole high in it, pipe"),
+        ("out V D F", "to outside: outlet (X on the true outline), vent, drain, filler"),
+        ("COMPUTED", "a flow test decides what is unusable"),
+    ),
     "trace": (("scan", "a number: what it was made from, what it went into"),),
 }
 

@@ -108,10 +108,10 @@ def links_text(rows: Sequence[LinkRow], title: str, at: int, display: Display, r
     masses = (show_small_mass(row.link.mass_kg, display) for row in rows)
     mass_width = max((_MASS, *(1 + len(mass) for mass in masses)))
     name_width = max(8, room.width - mass_width - _STATE - 1)
-    head_width = name_width + mass_width - len(" mass")
+    head_width = name_width + mass_width - len(" used")
     lines = [
         Text(
-            f"{shortened(head, head_width):<{head_width}} mass {'now':<{_STATE}}"[: room.width],
+            f"{shortened(head, head_width):<{head_width}} used {'now':<{_STATE}}"[: room.width],
             style=room.signs.mark if room.here else room.signs.head,
         )
     ]

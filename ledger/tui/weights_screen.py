@@ -12,6 +12,7 @@ from ledger.model.things import ThingKind
 from ledger.operations.find_thing import FoundThing
 from ledger.operations.look_at_weights import WeightRow, WeightsView, look_at_weights
 from ledger.operations.open_build import Build
+from ledger.reports.plain import clean, shortened
 from ledger.tui.actions import Action
 from ledger.tui.area import Area
 from ledger.tui.bench_drawing import rule
@@ -22,6 +23,7 @@ from ledger.tui.work_screen import WorkScreen
 
 _CAUSES = 5
 _SIDE = 62
+_TITLE = 24
 _FIXED_ROWS = 5
 
 
@@ -29,7 +31,7 @@ class WeightsScreen(WorkScreen[WeightsView]):
     """The tree of assemblies, parts and pieces with a mark that goes along it."""
 
     WORD = "weights"
-    AREAS = ("parts",)
+    AREAS = ("causes of the wing", "causes of the row")
     ACTIONS: ClassVar[tuple[Action, ...]] = (
         Action(name="row_before", word="row before", key="up", tip="the mark to the row above"),
         Action(name="row_after", word="row after", key="down", tip="the mark to the row below"),
@@ -92,6 +94,11 @@ class WeightsScreen(WorkScreen[WeightsView]):
         self._put_mark_on(self._key)
         self.draw_all()
 
+    def area_changed(self) -> None:
+        """Tab: what moved the whole wing, or only the row under the mark."""
+        if self.view is not None:
+            self._draw_causes(self.view)
+
     def draw_all(self) -> None:
         """Every area."""
         view = self.view
@@ -105,8 +112,6 @@ class WeightsScreen(WorkScreen[WeightsView]):
         self.query_one("#weights-rule-middle", Area).draw(rule(self._tree_width(), self.lines))
         self.query_one("#weights-bar", Area).draw("\n".join([self.lines.v] * self.app.size.height))
         self.query_one("#weights-head", Area).draw(head_text(self._room(self._tree_width(), 1)))
-        causes = causes_text(view.off_plan, view.display, self._room(self._tree_width(), _CAUSES))
-        self.query_one("#weights-causes", Area).draw(causes)
         self._draw_tree(view)
 
     def _draw_tree(self, view: WeightsView) -> None:
@@ -117,6 +122,19 @@ class WeightsScreen(WorkScreen[WeightsView]):
         if self.wide:
             beside = self._room(_SIDE, self._tree_height() + _CAUSES + 2)
             self.query_one("#weights-chosen", Area).draw(chosen_text(view, row, beside))
+
+        self._draw_causes(view)
+
+    def _draw_causes(self, view: WeightsView) -> None:
+        row = self.chosen if self.area == self.AREAS[1] else None
+        if not self.is_mounted:
+            return
+        room = self._room(self._tree_width(), _CAUSES)
+        off_plan, title = view.off_plan, ""
+        if row is not None:
+            off_plan, title = row.off_plan, f"{shortened(clean(row.name), _TITLE)} "
+        causes = causes_text(off_plan, view.display, room, title=title)
+        self.query_one("#weights-causes", Area).draw(causes)
 
     @property
     def chosen(self) -> WeightRow | None:

@@ -102,6 +102,25 @@ def test_after_scrap_the_next_running_number_begins(stocked: Any) -> None:
     assert _body(stocked.enter("weigh", Weigh(what="RIB.01-L/1", reading_kg=(0.1,))))["what"] == "RIB.01-L/1"
 
 
+def test_a_scale_begins_no_new_piece_of_a_part_whose_pieces_are_scrapped(stocked: Any) -> None:
+    stocked.enter("cut", Cut(pieces=("RIB.01-L",), sheet="PLATE"))
+    stocked.enter("scrap", Scrap(what="RIB.01-L/1", why="cutter slipped"))
+    weigh = Weigh(what="RIB.01-L", reading_kg=(0.3,))
+    code, column, what, do = _only(stocked.refusals("weigh", weigh))
+    assert (code, column, what) == ("piece-not-begun", "what", "every piece of RIB.01-L is scrapped")
+    assert do == "write RIB.01-L/2 if this is a new one"
+    body = _body(stocked.enter("weigh", Weigh(what="RIB.01-L/2", reading_kg=(0.3,))))
+    assert body["what"] == "RIB.01-L/2"
+
+
+def test_a_tare_that_leaves_nothing_is_refused(stocked: Any) -> None:
+    weigh = Weigh(what="RIB.01-L", reading_kg=(0.3, 0.31), tare_kg=0.306)
+    code, column, what, _ = _only(stocked.refusals("weigh", weigh))
+    assert (code, column) == ("tare-above-reading", "tare")
+    assert what == "the tare is as much as the reading or more, so nothing is left"
+    stocked.enter("weigh", Weigh(what="RIB.01-L", reading_kg=(0.3, 0.31), tare_kg=0.304))
+
+
 def test_cut_begins_the_next_of_several_until_all_have_begun(stocked: Any) -> None:
     assert _body(stocked.enter("cut", Cut(pieces=("CLIP",), sheet="PLATE")))["pieces"] == ["CLIP/1"]
     only = _body(stocked.enter("weigh", Weigh(what="CLIP", reading_kg=(0.1,))))

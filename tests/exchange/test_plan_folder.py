@@ -402,5 +402,5 @@ def test_a_stop_leaves_no_plan_and_a_look_does(read_with: Read) -> None:
 def test_open_part_of_another_file_is_named_with_its_place(read_with: Read, told: Told, box: Box) -> None:
     row = "BLOCK,block,closeout,R,WING,solid,alloy,g/block.obj,m,,,,,1,,"
     (line,) = told(read_with({"g/block.obj": box((0, 0, 0), (1, 1, 1), skip=1)}, parts=[row]))
-    assert line.startswith("parts.csv:2:geometry  the mesh is not closed at 4 edges (m): ")
+    assert line.startswith("parts.csv:2:geometry  the mesh is not closed at 4 edges: ")
     assert line.endswith("close the hole there, or remove the triangle that hangs on it, and export again")

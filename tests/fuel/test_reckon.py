@@ -314,6 +314,20 @@ def test_an_opening_far_from_a_cell_it_should_join_is_measured(build: Any) -> No
     assert far[0].allowed_m == pytest.approx(0.009)
 
 
+def test_a_hole_in_the_middle_of_a_wall_twice_the_allowance_is_not_far(build: Any) -> None:
+    cells = {
+        "A": build.box((0.0, 0.0, 0.0), (1.0, 1.0, 1.0)),
+        "B": build.box((0.0, 1.01, 0.0), (1.0, 2.0, 1.0)),
+    }
+    openings = (
+        build.slot("outlet", "A outlet", 0.1, 0.2, at=(0.5, 0.5)),
+        build.hole("drain", "A B", (0.5, 1.005, 0.5), 0.01, (0.0, 1.0, 0.0)),
+        build.slot("filler", "A filler", 0.9, 0.9),
+        build.slot("vent", "A vent", 1.0, 1.0),
+    )
+    assert [one.opening for one in build.report(cells, openings).far_openings] == []
+
+
 def test_cells_that_share_space_are_named_and_cells_that_touch_are_not(build: Any) -> None:
     cells = build.row_of_boxes(2)
     assert build.report(cells, build.one_box()).overlaps == ()

@@ -72,7 +72,7 @@ def test_an_open_mesh_names_its_first_three_edges(shapes: Any) -> None:
     vertices, faces = shapes.box(1.0, 0.5, 0.2)
     error = refusal(vertices, np.delete(faces, [0, 5], axis=0))
     assert error.code == "mesh-open"
-    assert "(0, 0, 0) to (1, 0, 0)" in error.what
+    assert "(0, 0, 0) mm to (1000, 0, 0) mm" in error.what
     assert error.what.count(" to ") == 3
     assert "at 4 edges" in error.what
     assert "and 1 more" in error.what

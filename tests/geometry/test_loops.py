@@ -63,10 +63,10 @@ def test_two_arcs_that_fall_short_of_one_another_are_bridged() -> None:
 
 
 def test_a_wider_gap_is_refused_and_its_ends_are_named() -> None:
-    with pytest.raises(OutlineRefused, match=r"4 ends meet no other within 0\.0001 m") as caught:
+    with pytest.raises(OutlineRefused, match=r"4 ends meet no other within 0\.1 mm") as caught:
         chain(slot(1e-3), 1e-4)
     assert caught.value.code == "outline-open"
-    assert "(0.001, 0)" in caught.value.what
+    assert "(1, 0) mm" in caught.value.what
     assert "and 1 more" in caught.value.what
 
 

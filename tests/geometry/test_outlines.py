@@ -296,7 +296,7 @@ def test_a_thin_ring_is_not_a_doubled_loop() -> None:
 
 
 def test_the_ends_of_an_open_outline_are_named() -> None:
-    with pytest.raises(OutlineRefused, match=r"open from \(1, 1\) to \(0, 0\)"):
+    with pytest.raises(OutlineRefused, match=r"open from \(1000, 1000\) mm to \(0, 0\) mm"):
         moments(Loop(curves=(Line(start=(0, 0), end=(1, 0)), Line(start=(1, 0), end=(1, 1)))))
 
 

@@ -10,6 +10,7 @@ import pytest
 from ledger.checks.batch_account_short import batch_account_short
 from ledger.checks.bonded_without_peel_ply_recorded import bonded_without_peel_ply_recorded
 from ledger.checks.cut_turned import cut_turned
+from ledger.checks.fabric_wet_with_paste import fabric_wet_with_paste
 from ledger.checks.facts import Facts, Rule
 from ledger.checks.held_used import held_used
 from ledger.checks.instrument_out_of_calibration import instrument_out_of_calibration
@@ -17,11 +18,13 @@ from ledger.checks.lot_expired import lot_expired
 from ledger.checks.mass_off_plan import mass_off_plan
 from ledger.checks.mass_unknown import mass_unknown
 from ledger.checks.mix_ratio_out import mix_ratio_out
+from ledger.checks.mix_ratio_out_used import mix_ratio_out_used
 from ledger.checks.mix_ratio_unprovable import mix_ratio_unprovable
 from ledger.checks.peel_ply_not_said import peel_ply_not_said
 from ledger.checks.ply_missing import ply_missing
 from ledger.checks.ply_not_in_plan import ply_not_in_plan
 from ledger.checks.ply_of_other_material import ply_of_other_material
+from ledger.checks.ply_out_of_order import ply_out_of_order
 from ledger.checks.ply_twice import ply_twice
 from ledger.checks.ply_wrong_way import ply_wrong_way
 from ledger.checks.pot_life_exceeded import pot_life_exceeded
@@ -120,6 +123,34 @@ def test_an_account_that_makes_plies_impossibly_wet_is_looked_at(shop: Any) -> N
     assert say(shop, resin_share_far_off) == []
 
 
+def test_every_live_piece_and_cell_that_holds_a_bad_cup_stops(shop: Any) -> None:
+    shop.scale("W2", 0.0001, 0.0001)
+    shop.mix("B1", 0.4, 0.1, scale="W2")
+    shop.mix("B2", 0.4, 0.13, scale="W2")
+    shop.log(lay(1, batches=(Share(what="B1"),)))
+    assert say(shop, mix_ratio_out_used) == []
+    shop.log(lay(2, batches=(Share(what="B1"), Share(what="B2"))))
+    shop.log(Coat(cell="L1", batch="B2", mass_kg=0.01))
+    shop.log(BuildUp(piece="RIB.1/1", batch="B2", mass_kg=0.01))
+    assert say(shop, mix_ratio_out_used) == [
+        ("stop", "SKIN/1", None),
+        ("stop", "L1", None),
+        ("stop", "RIB.1/1", None),
+    ]
+    shop.log(Scrap(what="SKIN/1", why="wrong mix"))
+    assert say(shop, mix_ratio_out_used) == [("stop", "L1", None), ("stop", "RIB.1/1", None)]
+
+
+def test_a_fabric_wet_with_a_cup_of_paste_stops(shop: Any) -> None:
+    shop.receive("LP", "paste")
+    shop.mix("B1", 0.4, 0.1)
+    shop.mix("B2", 0.4, 0.1, resin_lot="LP")
+    shop.log(lay(1, batches=(Share(what="B1"),)))
+    assert say(shop, fabric_wet_with_paste) == []
+    seq = shop.log(lay(2, batches=(Share(what="B1"), Share(what="B2"))))
+    assert say(shop, fabric_wet_with_paste) == [("stop", "SKIN/1", seq)]
+
+
 # -- plies ---------------------------------------------------------------------------------------
 
 
@@ -131,6 +162,22 @@ def test_a_ply_is_missing_only_from_a_finished_piece(shop: Any) -> None:
     assert say(shop, ply_missing) == [("stop", "SKIN/1", None)]
     shop.log(lay(4))
     assert say(shop, ply_missing) == []
+
+
+def test_a_step_laid_over_one_that_was_not_there_is_looked_at_once(shop: Any) -> None:
+    shop.log(lay(1), minute=50)
+    over = shop.log(lay(3), minute=52)
+    shop.log(lay(4), minute=53)
+    assert say(shop, ply_out_of_order) == [("look", "SKIN/1", over)]
+    shop.log(lay(2), minute=54)
+    assert say(shop, ply_out_of_order) == [("look", "SKIN/1", over)]
+
+
+def test_a_step_entered_late_with_its_true_time_was_there(shop: Any) -> None:
+    shop.log(lay(1), minute=50)
+    shop.log(lay(3), minute=52)
+    shop.log(lay(2), minute=51)
+    assert say(shop, ply_out_of_order) == []
 
 
 def test_peel_ply_not_logged_is_no_ply_missing(make: Any) -> None:
