@@ -258,6 +258,20 @@ def test_a_cell_no_fuel_comes_to_on_filling_is_dry_though_joined_above() -> None
     assert "on filling" in found.what
 
 
+def test_a_tank_without_a_filler_is_named_once_and_not_cell_by_cell() -> None:
+    (found,) = findings("dry_cell", facts(without("filler")))
+    assert found.where.thing == "tank A"
+    assert found.what.startswith("the tank has no filler")
+    assert "filler" in found.do
+
+
+def test_one_of_two_tanks_without_a_filler_is_the_one_that_is_named() -> None:
+    unfilled = {name: one for name, one in APART.items() if name != "filler B"}
+    (found,) = findings("dry_cell", facts(unfilled, split=True))
+    assert found.where.thing == "tank B"
+    assert found.what.startswith("the tank has no filler")
+
+
 def test_the_missing_attitudes_are_named() -> None:
     (found,) = findings("few_adverse_attitudes", facts(attitudes=(GROUND, FLIGHTS[2])))
     for words in ("nose up", "nose down", "left wing down"):

@@ -45,12 +45,24 @@ def test_a_cup_went_into_each_ply_and_the_rest_is_not_accounted_for(shop: Any) -
     assert sum(link.mass_kg or 0.0 for link in went) == pytest.approx(0.25, abs=1e-12)
 
 
-def test_without_a_residue_what_is_missing_is_not_known(shop: Any) -> None:
+def test_without_a_residue_what_was_not_used_is_in_the_cup_or_lost(shop: Any) -> None:
     shop.mix("B1", 0.2, 0.05)
+    fresh = trace(shop.snapshot(), "B1").went_into
+    assert [(link.what, link.mass_kg) for link in fresh] == [("in the cup or lost", pytest.approx(0.25))]
     shop.log(lay(1, "B1", 0.09))
     went = trace(shop.snapshot(), "B1").went_into
-    assert link_to(went, "not accounted for").mass_kg is None
-    assert "left in the cup" not in names(went)
+    assert names(went) == ["SKIN/1", "in the cup or lost"]
+    assert went[1].mass_kg == pytest.approx(0.16)
+
+
+def test_of_a_scrapped_cup_and_of_one_overdrawn_what_is_missing_is_not_known(shop: Any) -> None:
+    shop.mix("B1", 0.2, 0.05)
+    shop.log(Scrap(what="B1", why="past"))
+    shop.mix("B2", 0.2, 0.05)
+    shop.log(lay(1, "B2", 0.3))
+    for cup in ("B1", "B2"):
+        went = trace(shop.snapshot(), cup).went_into
+        assert (went[-1].what, went[-1].mass_kg) == ("not accounted for", None)
 
 
 def test_a_cup_was_made_from_its_two_lots_on_its_scale(shop: Any) -> None:

@@ -13,7 +13,7 @@ from ledger.mass.trace import Trace
 from ledger.reports.demo_lines import COLUMNS, ROWS, demo_lines
 from ledger.reports.entry_lines import unfit_lines
 from ledger.reports.finding_lines import counted, finding_line
-from ledger.reports.fuel_lines import fuel_lines, hole_line, trapped_text, usable_text
+from ledger.reports.fuel_lines import density_line, fuel_lines, hole_line, trapped_text, usable_text
 from ledger.reports.plain import width_of
 from ledger.reports.trace_lines import trace_lines
 from ledger.reports.weight_lines import weight_lines
@@ -74,6 +74,32 @@ def test_a_way_out_that_is_missing_is_not_said_to_be_behind_something(fuel: Fuel
     assert "behind no way out" not in text
 
 
+def test_a_tank_dry_throughout_has_no_trapped_figure(fuel: FuelReport) -> None:
+    tank = fuel.tanks[0]
+    climb = tank.attitudes[0]
+    dry = tuple(dataclasses.replace(cell, trapped_m3=0.0, trapped_by="dry") for cell in climb.cells)
+    for cells, trapped in ((dry, "-"), ((dry[0], dataclasses.replace(dry[1], trapped_by="outlet")), "0.0")):
+        one = dataclasses.replace(climb, trapped_m3=0.0, cells=cells)
+        report = dataclasses.replace(fuel, tanks=(dataclasses.replace(tank, attitudes=(one,)),))
+        row = line_with(fuel_lines(report, Display.METRIC), "best climb  ")
+        assert row.removeprefix("best climb").split()[3:] == [trapped, "0.0", "-"]
+
+
+def test_what_is_lost_says_of_what_and_in_which_unit(fuel: FuelReport) -> None:
+    for display, unit in ((Display.METRIC, "L"), (Display.US, "US gal")):
+        assert f"  lost out of vents {unit}  " in line_with(fuel_lines(fuel, display), "attitude")
+
+
+def test_the_density_stands_under_the_caution_when_a_temperature_was_asked_for(fuel: FuelReport) -> None:
+    # 1 kg/m3 = 0.0624279605761 lb/ft3: exact definitions of pound and foot
+    assert density_line(703.14, 301.15, Display.METRIC) == "density 703.1 kg/m3 at 28 C"
+    assert density_line(703.14, 301.15, Display.US) == "density 43.90 lb/ft3 at 82.4 F"
+    assert density_line(None, 301.15, Display.METRIC).startswith("density not known")
+    lines = fuel_lines(fuel, Display.METRIC, density="density 1 kg/m3 at 28 C")
+    assert lines[2] == "density 1 kg/m3 at 28 C"
+    assert not any(line.startswith("density") for line in fuel_lines(fuel, Display.METRIC))
+
+
 def test_a_plan_without_tanks_says_so() -> None:
     assert fuel_lines(FuelReport(tanks=(), feeds=()), Display.METRIC) == ("no tanks in the plan",)
 
@@ -111,6 +137,12 @@ def test_a_trace_shows_state_first_and_grams_of_each_destination(trace_of_a_cup:
     assert any("SKIN.LWR-L/1" in line and "258.0 g" in line and "fitted" in line for line in lines)
     assert any("not accounted for" in line and "11.0 g" in line for line in lines)
     assert lines[-1] == "entries  12, 14"
+
+
+def test_a_mass_of_a_trace_is_what_was_used_not_what_is_in_stock(trace_of_a_cup: Trace) -> None:
+    lines = trace_lines(trace_of_a_cup, Display.METRIC)
+    heads = [line.split()[-4:] for line in lines if line.startswith(("MADE FROM", "WENT INTO"))]
+    assert heads == [["kind", "how", "used", "now"]] * 2
 
 
 def test_a_trace_counts_the_pieces_near_and_far_once_each(trace_of_a_cup: Trace) -> None:

@@ -14,7 +14,9 @@ import pytest
 
 from ledger.operations.start_book import start_book
 from ledger.tui.area import Area
+from ledger.tui.fuel_actions import FUEL_ACTIONS
 from ledger.tui.fuel_screen import FuelScreen
+from ledger.tui.list_screen import help_listed
 from ledger.units import M3_PER_US_GAL
 
 OpenBench = Callable[..., AbstractAsyncContextManager[Any]]
@@ -225,7 +227,52 @@ async def test_enter_lists_the_openings_by_what_moving_them_frees_and_enter_draw
         assert bench.app.screen.query_one("#fuel-plan").display
 
 
+@pytest.mark.parametrize("size", [(80, 24), WIDE])
+async def test_a_wider_outlet_that_costs_fuel_says_why(
+    size: tuple[int, int], demo_book: Path, open_bench: OpenBench
+) -> None:
+    async with open_bench(demo_book, screen=FuelScreen, size=size) as bench:
+        await bench.key("f4")
+        figures = words(bench, "figures")
+        place = next(at for at, row in enumerate(figures) if row.startswith("10 % wider costs"))
+        assert figures[place - 2] == "behind outlet left"
+        said = figures[place] if size == WIDE else figures[place + 1]
+        assert "draws air sooner" in said
+        assert figures[-1].startswith("worst at")
+        await bench.type("best climb")
+        figures = "\n".join(words(bench, "figures"))
+        assert "behind drain L4-L6" in figures
+        assert "air sooner" not in figures
+
+
 # -- drawing
+
+
+@pytest.mark.parametrize("size", [(80, 24), WIDE])
+async def test_every_sign_of_the_drawing_is_explained_on_the_screen(
+    size: tuple[int, int], demo_book: Path, open_bench: OpenBench
+) -> None:
+    async with open_bench(demo_book, screen=FuelScreen, size=size) as bench:
+        await bench.key("f4")
+        below = words(bench, "rule-bottom")[0]
+        assert len(below) == size[0]
+        signs = f"{words(bench, 'ends')[0]}  {below}"
+        for sign in ("# trapped", "= feeds", "o air", "> chosen", "d v hole", "p pipe"):
+            assert f"{sign}" in signs, sign
+        for sign in ("V vent", "D drain", "F filler", "out outlet"):
+            assert f" {sign} " in signs, sign
+        if size != WIDE:
+            await bench.key("enter")
+            assert "vent" not in words(bench, "rule-bottom")[0]
+
+
+def test_help_says_which_area_each_arrow_is_of_and_names_enter() -> None:
+    rows = help_listed("fuel", FUEL_ACTIONS)
+    ups = [says for key, says in rows if key == "Up"]
+    assert [says.split(": ")[1] for says in ups] == [f"Tab on {area}" for area in FuelScreen.AREAS]
+    assert [says for key, says in rows if key == "Enter"] == [
+        "openings: on an empty line: openings by litres gained"
+    ]
 
 
 async def test_without_colour_trapped_feeding_empty_and_caught_air_are_told_apart(

@@ -12,6 +12,7 @@ from ledger.model.attitude import Attitude
 from ledger.operations.cut_tank import Cut, CutCell
 from ledger.operations.look_at_tank import Asked, CellNow, Footprint, HoleMark, TankDrawn, TankNow
 from ledger.tui.fuel_figures import map_text, small_volume, tilt_words
+from ledger.tui.fuel_outline import outline_text
 from ledger.tui.fuel_plan_view import arranged, neighbour, plan_text
 from ledger.tui.fuel_section import crossings, scale_of, section_text
 from ledger.tui.room import Room
@@ -186,6 +187,17 @@ def test_a_step_goes_to_the_cell_beside_and_stays_at_the_edge() -> None:
     assert neighbour(arrangement, "R2", -1, 0) == "R1"
     assert neighbour(arrangement, "F1", -1, 0) == "F1"
     assert neighbour(arrangement, "R1", 0, 1) == "R1"
+
+
+def test_on_the_true_outline_an_outlet_has_not_the_sign_of_air() -> None:
+    marks = (
+        HoleMark(name="outlet", cells=("A",), at_m=(0.5, 0.5, 0.0), sign="out"),
+        HoleMark(name="vent", cells=("A",), at_m=(0.2, 0.2, 0.2), sign="V"),
+    )
+    outline = {"A": ((0.0, 0.0), (1.0, 0.0), (1.0, 1.0), (0.0, 1.0))}
+    text, _ = outline_text(outline, marks, Room(width=40, height=9, signs=Signs()))
+    assert text.plain.count("X") == text.plain.count("V") == 1
+    assert "o" not in text.plain
 
 
 # -- section

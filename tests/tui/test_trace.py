@@ -35,6 +35,19 @@ def pieces_of(links: list[dict[str, Any]]) -> dict[str, str]:
 # -- figures
 
 
+async def test_grams_are_headed_used_and_a_fresh_cup_shows_what_is_still_in_it(
+    demo_book: Path, open_bench: OpenBench, printed: Callable[..., Any]
+) -> None:
+    left = printed("trace", demo_book, "B029L")["went_into"][-1]
+    assert left["what"] == "in the cup or lost"
+    async with open_bench(demo_book, screen=TraceScreen) as bench:
+        await bench.scan("B029L")
+        for area in ("from", "into"):
+            assert words(bench, area)[0].split()[-2:] == ["used", "now"]
+        row = next(row for row in words(bench, "into") if "in the cup or lost" in row)
+        assert row.endswith(f" {1000 * left['mass_kg']:.1f} g")
+
+
 @pytest.mark.parametrize(
     "what", ["B014Z", "L004R", "L005P", "W2", "SKIN.LWR-L/1", "SKIN.LE-L/1", "WING/LEFT"]
 )

@@ -252,3 +252,21 @@ async def test_a_title_of_the_user_is_shown_as_it_is_written(
     async with open_bench(book, screen=WeightsScreen, size=WIDE) as bench:
         await bench.scan("RIB.01-L")
         assert words(bench, "weights-chosen")[0] == "RIB.01-L  [bold]rib[/bold]"
+
+
+@pytest.mark.parametrize("size", [(80, 24), WIDE])
+async def test_tab_shows_the_causes_of_the_row_and_of_the_wing_again(
+    size: tuple[int, int], demo_book: Path, open_bench: OpenBench
+) -> None:
+    async with open_bench(demo_book, screen=WeightsScreen, size=size) as bench:
+        wing = words(bench, "weights-causes")
+        await bench.scan("SKIN.LWR-L")
+        assert words(bench, "weights-causes") == wing
+        await bench.key("tab")
+        row = words(bench, "weights-causes")
+        assert row[0].startswith("SKIN.LWR-L OFF PLAN BY CAUSE")
+        assert row[1:] != wing[1:]
+        await bench.key("down")
+        assert not words(bench, "weights-causes")[0].startswith("SKIN.LWR-L OFF")
+        await bench.key("tab")
+        assert words(bench, "weights-causes") == wing
