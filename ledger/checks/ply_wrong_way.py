@@ -33,7 +33,8 @@ def ply_wrong_way(facts: Facts) -> tuple[Finding, ...]:
                 severity=Severity.STOP,
                 where=Where(entry=logged.seq, thing=act.piece),
                 what=(
-                    f"step {act.step} laid at {act.orientation_deg:+g}, wants {wanted:+g}"
+                    f"step {act.step} laid at {act.orientation_deg:+g}, "
+                    f"wants {format(wanted, '+g') if wanted else '0'}"
                     f"{', as on the other hand' if other_hand else ''}"
                 ),
                 do="take the ply off if it is wet; else hold the piece",

@@ -109,7 +109,7 @@ class _Reading:
         for field in self.kind.fields:
             if field.required and field.word not in self._tried:
                 self._stop(
-                    "field-missing", field.word, f"{self.kind.word} needs {field.word}", f"give {field.tip}"
+                    "field-missing", field.word, f"{self.kind.word} needs {field.word}", _how_to_give(field)
                 )
         for group in self.kind.one_of:
             made = [word for word in group if word in self._tried]
@@ -123,7 +123,7 @@ class _Reading:
                 )
         for field in self.kind.fields:
             if field.required and field.many and field.word in self._given and not self._values[field.key]:
-                self._stop("field-missing", field.word, f"{field.word} is empty", f"give {field.tip}")
+                self._stop("field-missing", field.word, f"{field.word} is empty", _how_to_give(field))
 
     def act(self) -> Act:
         """The record of what was read."""
@@ -194,3 +194,8 @@ def _nearest(word: str, words: object) -> str | None:
 
     found = get_close_matches(word.lower(), list(words), n=1, cutoff=0.75)  # type: ignore[call-overload]
     return str(found[0]) if found else None
+
+
+def _how_to_give(field: Field) -> str:
+    # Many tips are sentences already, as `scan the cloth or core`.
+    return field.tip if field.tip.split(" ")[0] in ("scan", "write") else f"give {field.tip}"

@@ -6,13 +6,19 @@ from collections.abc import Iterable
 from dataclasses import dataclass, replace
 from datetime import datetime, timedelta
 
+from ledger.checks.mix_ratio_out import CODE as RATIO_OUT
 from ledger.checks.pot_life_exceeded import pot_life_s
+from ledger.mass.mix_ratio import Verdict
 from ledger.mass.report import WeightReport
 from ledger.model.snapshot import Snapshot
+
+__all__ = ["RATIO_OUT", "Cup", "best_cup", "cups_on_bench", "mixing_cup", "run_clocks"]
 
 # A cup nobody closed stays in sight for this long after its time, so that it is scrapped or accounted for.
 _IN_SIGHT_AFTER = timedelta(hours=4)
 _UNTIMED_IN_SIGHT = timedelta(hours=12)
+# What sticks to the wall of a cup is no pour.
+_LEAST_LEFT_KG = 0.0005
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -32,6 +38,21 @@ class Cup:
     held: bool
     verdict: str
     mixing: bool = False
+
+    @property
+    def out(self) -> bool:
+        """It was mixed out of ratio, beyond doubt."""
+        return self.verdict == Verdict.OUT
+
+    @property
+    def unfit(self) -> bool:
+        """Nothing is to be wetted from it: past, on hold or out of ratio."""
+        return self.past or self.held or self.out
+
+    @property
+    def has_some(self) -> bool:
+        """Whether anything worth pouring may be left."""
+        return self.left_kg is None or self.left_kg >= _LEAST_LEFT_KG
 
     @property
     def past(self) -> bool:
@@ -68,19 +89,25 @@ def cups_on_bench(snapshot: Snapshot, weights: WeightReport, now: datetime) -> t
 
 
 def run_clocks(cups: Iterable[Cup], now: datetime) -> tuple[Cup, ...]:
-    """The same cups at another moment: running ones first, the shortest clock on top, past ones below."""
+    """The same cups at another moment: running ones first, the shortest clock on top; unfit ones below."""
     clocked = [replace(cup, minutes_left=_minutes_left(cup, now)) for cup in cups]
     return tuple(
         sorted(
             clocked,
             key=lambda cup: (
                 cup.past,
+                cup.out,
                 cup.minutes_left is None,
                 abs(cup.minutes_left) if cup.minutes_left is not None else 0.0,
                 cup.number,
             ),
         )
     )
+
+
+def best_cup(cups: Iterable[Cup]) -> Cup | None:
+    """The fit cup to pour from: of those with something in them the first, so that none dies unused."""
+    return next((cup for cup in cups if not cup.unfit and not cup.mixing and cup.has_some), None)
 
 
 def mixing_cup(snapshot: Snapshot, resin_lot: str, stamped_at: datetime, now: datetime) -> Cup:

@@ -6,12 +6,23 @@ import sqlite3
 from dataclasses import dataclass
 from pathlib import Path
 
-from ledger.book.names import KIND_WORD, Known, Meant
+from ledger.book.names import KIND_WORD, Known, Meant, NameRefused
 from ledger.book.opening import open_for_reading
 from ledger.book.reading import NOT_READABLE, entry_at, logged_of
 from ledger.model.things import ThingKind
 from ledger.operations.open_build import open_build
 from ledger.operations.saying import say
+
+# What carries a tag, or is called by its part number.
+_SCANNED = (
+    ThingKind.PIECE,
+    ThingKind.PART,
+    ThingKind.LOT,
+    ThingKind.SHEET,
+    ThingKind.OFFCUT,
+    ThingKind.BATCH,
+    ThingKind.INSTRUMENT,
+)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -43,6 +54,26 @@ def find_thing(book: Path, text: str) -> FoundThing | None:
         return FoundThing(
             kind=meant.kind, number=meant.number, name=meant.name, says=_says(connection, known, meant)
         )
+
+
+def why_unknown(book: Path, text: str) -> str:
+    """What is wrong with a text that names nothing: mistyped, withdrawn, or near to something known.
+
+    Raises
+        BookUnusable: the book cannot be opened.
+    """
+    plan = open_build(book).snapshot.plan
+    with open_for_reading(book) as connection:
+        known = Known(connection, plan)
+        try:
+            known.find(text, _SCANNED)
+        except NameRefused as refused:
+            if refused.code != "name-unknown" or refused.do.startswith("did you mean"):
+                said = (
+                    f"{text.strip()!r} is no number known" if refused.code == "name-unknown" else refused.what
+                )
+                return f"{said}; {refused.do}"
+    return ""
 
 
 def _says(connection: sqlite3.Connection, known: Known, meant: Meant) -> str:

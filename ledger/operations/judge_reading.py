@@ -7,6 +7,7 @@ from dataclasses import dataclass
 
 from ledger.mass.mix_ratio import scale_bound
 from ledger.mass.report import PieceMass
+from ledger.model.gather import split_piece_name
 from ledger.model.snapshot import PieceState
 from ledger.operations.take_stock import Stock
 
@@ -44,7 +45,7 @@ class Judged:
 def judge_reading(stock: Stock, piece: str, got_kg: float, scale: str | None) -> Judged:
     """Hold one reading, net of tare, against the piece's expected mass and everyone else's."""
     masses = {mass.piece: mass for part in stock.weights.parts for mass in part.pieces}
-    mass = masses.get(piece)
+    mass = masses.get(piece) or masses.get(_part_to_begin(stock, piece))
     found = stock.build.snapshot.scales.get(scale or "")
     bound = scale_bound(None if found is None else found.instrument)
     expected = None if mass is None else expected_of(mass)
@@ -56,9 +57,21 @@ def judge_reading(stock: Stock, piece: str, got_kg: float, scale: str | None) ->
     return Judged(piece=piece, expected_kg=expected, band_kg=band, got_kg=got_kg, inside=inside, fits=fits)
 
 
+def _part_to_begin(stock: Stock, piece: str) -> str:
+    # Without the entry that began it, which is being put right, a piece is one still to be begun.
+    split = split_piece_name(piece)
+    return "" if split is None or piece in stock.build.snapshot.pieces else split[0]
+
+
 def expected_of(mass: PieceMass) -> float | None:
     """What a scale should show; for a piece not begun, what it is planned to weigh."""
     return mass.expected_kg if mass.expected_kg is not None else mass.best_kg
+
+
+def band_of(stock: Stock, mass: PieceMass, scale: str | None) -> float:
+    """How far a reading off this scale may lie from what is expected and be by chance."""
+    found = stock.build.snapshot.scales.get(scale or "")
+    return _band(mass, scale_bound(None if found is None else found.instrument))
 
 
 def _band(mass: PieceMass, bound: float) -> float:

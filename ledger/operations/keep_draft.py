@@ -24,7 +24,11 @@ class DraftNotKept(LedgerError):
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Draft:
-    """One slip not yet logged. `stamped_at` is time zero of a cup; `corrects` the entry it puts right."""
+    """One slip not yet logged. `stamped_at` is time zero of a cup; `corrects` the entry it puts right.
+
+    `original` is what stood in it before anyone wrote; `apart` tells two drafts of one kind from each
+    other; `away` is true once a person put it away.
+    """
 
     kind: str
     values: tuple[tuple[str, str], ...]
@@ -33,22 +37,37 @@ class Draft:
     stamped_at: datetime | None = None
     corrects: int | None = None
     by: str | None = None
+    original: tuple[tuple[str, str], ...] = ()
+    apart: str = ""
+    away: bool = False
+
+    @property
+    def name(self) -> str:
+        """What it is kept under: a correction never takes the place of a plain draft of its kind."""
+        return draft_name(self.kind, self.corrects, self.apart)
+
+
+def draft_name(kind: str, corrects: int | None = None, apart: str = "") -> str:
+    """`weigh`, `weigh of RIB.01-L/1`, or `correct No. 12`."""
+    if corrects is not None:
+        return f"correct No. {corrects}"
+    return f"{kind} of {apart}" if apart else kind
 
 
 def keep_draft(book: Path, draft: Draft) -> None:
-    """Write a draft in place of the one of the same kind, and wait until it is on the disk.
+    """Write a draft in place of the one of the same name, and wait until it is on the disk.
 
     Raises
         DraftNotKept: nowhere to write to.
     """
-    others = [other for other in drafts_of(book) if other.kind != draft.kind]
+    others = [other for other in drafts_of(book) if other.name != draft.name]
     _write(book, (*others, draft))
 
 
-def drop_draft(book: Path, kind: str) -> None:
+def drop_draft(book: Path, name: str) -> None:
     """The slip was logged or thrown away."""
     drafts = drafts_of(book)
-    left = tuple(draft for draft in drafts if draft.kind != kind)
+    left = tuple(draft for draft in drafts if draft.name != name)
     if len(left) != len(drafts):
         _write(book, left)
 
@@ -123,6 +142,9 @@ def _plain(draft: Draft) -> dict[str, Any]:
         "stamped_at": None if draft.stamped_at is None else draft.stamped_at.isoformat(),
         "corrects": draft.corrects,
         "by": draft.by,
+        "original": [list(pair) for pair in draft.original],
+        "apart": draft.apart,
+        "away": draft.away,
     }
 
 
@@ -136,4 +158,8 @@ def _draft(plain: dict[str, Any]) -> Draft:
         stamped_at=None if stamped is None else datetime.fromisoformat(stamped),
         corrects=plain["corrects"],
         by=plain["by"],
+        # Drafts kept before these were written have none of them.
+        original=tuple((str(word), str(text)) for word, text in plain.get("original", ())),
+        apart=str(plain.get("apart", "")),
+        away=plain.get("away") is True,
     )

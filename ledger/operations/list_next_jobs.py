@@ -5,12 +5,12 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from ledger.mass.plan_index import PlanIndex
-from ledger.mass.report import PartMass, WeightReport
+from ledger.mass.report import PartMass, PieceMass, WeightReport
 from ledger.model.acts import Lay
 from ledger.model.plan import Form, Part, PartClass
 from ledger.model.snapshot import PieceState, Snapshot
 
-_LAY_ORDER = {"lay on": 0, "weigh": 1, "lay": 2, "cut": 3, "bond": 4, "coat": 5}
+_LAY_ORDER = {"lay on": 0, "weigh": 1, "lay": 2, "cut": 3, "bond": 4, "coat": 5, "finish": 6}
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -65,20 +65,23 @@ def _jobs_of(
         if piece is None:
             jobs.append(_begin(mass.piece, planned, index))
         elif piece.state is PieceState.OPEN and piece.fitted_into is None:
-            jobs.append(_go_on(mass.piece, mass.known_by, planned, index, laid))
+            jobs.append(_go_on(mass, planned, index, laid))
     return [(_LAY_ORDER[rank], job) for rank, job in (found for found in jobs if found is not None)]
 
 
 def _go_on(
-    piece: str, known_by: str, planned: Part, index: PlanIndex, laid: dict[str, set[int]]
+    mass: PieceMass, planned: Part, index: PlanIndex, laid: dict[str, set[int]]
 ) -> tuple[str, Job] | None:
+    piece = mass.piece
     if planned.form is Form.SKIN and planned.made_of in index.laminates:
         steps = [step.number for step in index.laminates[planned.made_of].steps]
         missing = [step for step in steps if step not in laid.get(piece, set())]
-        if missing and known_by != "A":
+        if missing:
             return "lay on", Job(thing=piece, words=in_steps(missing), kind="lay")
-    if known_by != "A":
+    if mass.known_by != "A":
         return "weigh", Job(thing=piece, words="weigh", kind="weigh")
+    if planned.form is Form.SKIN and mass.state == PieceState.OPEN:
+        return "finish", Job(thing=piece, words="weigh finished", kind="weigh")
     return None
 
 

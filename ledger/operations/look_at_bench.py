@@ -15,8 +15,9 @@ from ledger.model.plan import Plan
 from ledger.model.snapshot import PieceState, Snapshot
 from ledger.model.things import ThingKind
 from ledger.operations.clock_cups import Cup, cups_on_bench
-from ledger.operations.judge_reading import expected_of
+from ledger.operations.judge_reading import band_of, expected_of
 from ledger.operations.list_next_jobs import Job, list_next_jobs
+from ledger.operations.propose_entry import last_entry, scale_in_use
 from ledger.operations.saying import say
 from ledger.operations.take_stock import Plate, Stock, take_stock
 from ledger.units import show_small_mass
@@ -56,7 +57,10 @@ class Place:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class BenchView:
-    """What the bench shows at one moment. `today_kg` is what today's entries put into pieces."""
+    """What the bench shows at one moment. `today_kg` is what today's entries put into pieces.
+
+    `bands` say how far from `expected` a reading off the scale in use may lie by chance, in kg.
+    """
 
     plate: Plate
     cups: tuple[Cup, ...]
@@ -68,6 +72,7 @@ class BenchView:
     open_things: Mapping[ThingKind, tuple[OpenThing, ...]]
     expected: Mapping[str, PieceMass]
     places: tuple[Place, ...]
+    bands: Mapping[str, float]
 
     def lines_about(self, name: str) -> tuple[tuple[str, str], ...]:
         """What is expected of a piece on the scale, what comes next for it, and what is wrong with it."""
@@ -75,11 +80,9 @@ class BenchView:
         mass = self.expected.get(name)
         expected = None if mass is None else expected_of(mass)
         if mass is not None and expected is not None:
-            spread = mass.expected_u_kg if mass.expected_kg is not None else mass.best_u_kg
-            shown = "" if spread is None else f" +-{show_small_mass(spread, self.plate.display)}"
-            lines.append(
-                ("", f"expected {show_small_mass(expected, self.plate.display)}{shown}, by {mass.known_by}")
-            )
+            band = show_small_mass(self.bands.get(name), self.plate.display)
+            figure = show_small_mass(expected, self.plate.display)
+            lines.append(("", f"expected {figure}  +-{band}, by {mass.known_by}"))
         job = next((job for job in self.jobs if job.thing == name), None)
         if job is not None:
             lines.append(("", f"next: {job.words}"))
@@ -98,6 +101,9 @@ def look_at_bench(book: Path | Stock, now: datetime) -> BenchView:
     todays = [entry for entry in snapshot.logged if _same_day(entry.at, now)]
     seqs = {entry.seq for entry in todays}
     cups = cups_on_bench(snapshot, weights, now)
+    last = last_entry(stock)
+    expected = {piece.piece: piece for part in weights.parts for piece in part.pieces}
+    scale = scale_in_use(stock)
     return BenchView(
         plate=stock.plate,
         cups=cups,
@@ -110,10 +116,11 @@ def look_at_bench(book: Path | Stock, now: datetime) -> BenchView:
         )
         if todays
         else 0.0,
-        last=_line(snapshot.logged[-1]) if snapshot.logged else None,
+        last=None if last is None else _line(last),
         findings=stock.findings,
-        open_things=open_things(snapshot, tuple(cup.number for cup in cups)),
-        expected={piece.piece: piece for part in weights.parts for piece in part.pieces},
+        open_things=open_things(snapshot, tuple(cup.number for cup in cups if not cup.unfit)),
+        expected=expected,
+        bands={name: band_of(stock, mass, scale) for name, mass in expected.items()},
         places=tuple(
             Place(part=one.part, title=one.title, assembly=one.assembly, x_m=one.cg_m[0], y_m=one.cg_m[1])
             for one in weights.parts
@@ -194,6 +201,11 @@ def _named_by_plan(plan: Plan) -> dict[ThingKind, tuple[OpenThing, ...]]:
 
 def _same_day(at: datetime, now: datetime) -> bool:
     return at.astimezone(now.tzinfo).date() == now.date()
+
+
+def line_of(entry: Logged) -> str:
+    """One entry in words: its number, time, person and what it says."""
+    return f"No. {entry.seq} {entry.at:%H:%M} {entry.by} {say(entry.kind, entry.act)}"
 
 
 def _line(entry: Logged) -> LoggedLine:

@@ -12,11 +12,12 @@ from ledger.model.declare import KINDS, Kind
 from ledger.model.entry import Logged
 from ledger.model.plan import MaterialKind
 from ledger.model.things import ThingKind
-from ledger.operations.clock_cups import Cup, cups_on_bench
+from ledger.operations.clock_cups import Cup, best_cup, cups_on_bench
 from ledger.operations.correct_entry import fields_of
 from ledger.operations.find_thing import FoundThing
 from ledger.operations.list_next_jobs import list_next_jobs
 from ledger.operations.look_at_ply import PlyInHand, is_laid_up, look_at_ply
+from ledger.operations.saying import say
 from ledger.operations.take_stock import Stock
 
 # A measurement is never proposed: only where things come from and what they are called.
@@ -62,10 +63,10 @@ def propose_entry(
         return _lay(stock, about, now, step=step, values=values, notes=notes)
     if kind in _CUP_KINDS:
         _open_cup(stock, kind, now, values, notes)
-    if kind == "withdraw" and stock.build.snapshot.logged:
-        last = stock.build.snapshot.logged[-1]
+    last = last_entry(stock)
+    if kind == "withdraw" and last is not None:
         values.setdefault("seq", str(last.seq))
-        notes.setdefault("seq", "the last entry")
+        notes.setdefault("seq", f"{last.at:%H:%M} {last.by} {say(last.kind, last.act)}")
     if kind == "accept":
         _open_finding(stock.findings, about, values, notes)
     return Proposal(values=values, notes=notes)
@@ -79,9 +80,22 @@ def field_for(declared: Kind, thing: FoundThing) -> str | None:
     )
 
 
+def last_entry(stock: Stock) -> Logged | None:
+    """The entry written last that still counts. A correction stands in its entry's place, and may be it."""
+    counting = (entry for entry in stock.build.snapshot.logged if entry.kind not in ("adopt", "withdraw"))
+    return max(counting, key=lambda entry: entry.seq, default=None)
+
+
 def last_of_kind(stock: Stock, kind: str) -> Logged | None:
     """The entry of a kind logged last."""
     return next((entry for entry in reversed(stock.build.snapshot.logged) if entry.kind == kind), None)
+
+
+def scale_in_use(stock: Stock) -> str | None:
+    """The scale of the last weighing, while it stands."""
+    last = last_of_kind(stock, "weigh")
+    scale = None if last is None else fields_of(last).get("scale")
+    return None if scale in stock.build.snapshot.gone else scale
 
 
 def repeat_last(stock: Stock, kind: str) -> Mapping[str, str]:
@@ -95,11 +109,12 @@ def repeat_last(stock: Stock, kind: str) -> Mapping[str, str]:
 
 def entry_to_correct(stock: Stock, seq: int | None = None) -> tuple[Logged, Mapping[str, str]] | None:
     """The last entry that can be put right, or the one asked for, with its fields as text."""
-    for entry in reversed(stock.build.snapshot.logged):
-        if entry.kind in ("adopt", "withdraw") or (seq is not None and entry.seq != seq):
-            continue
-        return entry, fields_of(entry)
-    return None
+    if seq is None:
+        entry = last_entry(stock)
+    else:
+        logged = (one for one in stock.build.snapshot.logged if one.kind not in ("adopt", "withdraw"))
+        entry = next((one for one in logged if one.seq == seq), None)
+    return None if entry is None else (entry, fields_of(entry))
 
 
 def _as_last(stock: Stock, kind: str, values: dict[str, str], notes: dict[str, str]) -> None:
@@ -149,13 +164,12 @@ def _lay(
 
 def _cups_for_ply(ply: PlyInHand, values: dict[str, str], notes: dict[str, str]) -> list[tuple[str, str]]:
     needs_g = 1000 * (ply.needs_kg or 0.0)
-    usable = [cup for cup in ply.cups if not cup.past and not cup.held and cup.verdict != "out"]
     notes["batches"] = f"needs {needs_g:.0f} g"
     if "batches" in values:
         return []
-    if not usable:
+    first = best_cup(ply.cups)
+    if first is None:
         return [("LOOK", f"ply {ply.step} needs {needs_g:.0f} g and no cup is open: scan one, or new cup")]
-    first = usable[0]
     values["batches"] = first.number
     notes["batches"] = "open cup"
     if first.left_kg is not None and 1000 * first.left_kg < needs_g:
@@ -180,6 +194,8 @@ def covering(needs_kg: float, cups: tuple[Cup, ...]) -> str:
 
 
 def _clock(cup: Cup) -> str:
+    if cup.out or cup.held:
+        return ", OUT OF RATIO" if cup.out else ", ON HOLD"
     if cup.minutes_left is None:
         return ""
     return f", PAST {-cup.minutes_left:.0f} min" if cup.past else f", {cup.minutes_left:.0f} min"
@@ -203,12 +219,14 @@ def _open_cup(stock: Stock, kind: str, now: datetime, values: dict[str, str], no
     field = "batches" if kind == "bond" else "batch"
     if field in values or "lot" in values:
         return
-    for cup in cups_on_bench(snapshot, stock.weights, now):
+
+    def is_for(cup: Cup) -> bool:
         material = snapshot.plan.material(cup.resin_material or "")
-        fits = material is not None and material.kind in _CUP_KINDS[kind]
-        if fits and not cup.past and not cup.held:
-            values[field], notes[field] = cup.number, "open cup"
-            return
+        return material is not None and material.kind in _CUP_KINDS[kind]
+
+    cup = best_cup(filter(is_for, cups_on_bench(snapshot, stock.weights, now)))
+    if cup is not None:
+        values[field], notes[field] = cup.number, "open cup"
 
 
 def _open_finding(

@@ -14,7 +14,7 @@ from textual import events, work
 from textual.app import App
 
 from ledger.errors import LedgerError
-from ledger.operations.find_thing import FoundThing, find_thing
+from ledger.operations.find_thing import FoundThing, find_thing, why_unknown
 from ledger.operations.open_build import Build, newest_entry
 from ledger.operations.take_stock import Plate, Stock, take_stock
 from ledger.tui.actions import SCREENS, Action
@@ -131,6 +131,13 @@ class LedgerApp(App[None], inherit_bindings=False):
         if found is not None and self.current_mode == "trace":
             self.toured.add(found.number or found.name)
         return found
+
+    def why_unknown(self, text: str) -> str:
+        """What is wrong with a number that is not known; nothing where nothing can be said."""
+        try:
+            return why_unknown(self.book, text)
+        except LedgerError:
+            return ""
 
     @property
     def last_logged_at(self) -> datetime | None:

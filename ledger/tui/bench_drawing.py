@@ -92,9 +92,11 @@ def cups_text(cups: Sequence[Cup], room: Room) -> Text:
     if len(shown) < len(cups):
         left = [cup for cup in cups if cup not in shown]
         past = sum(cup.past for cup in left)
+        out = sum(cup.out and not cup.past for cup in left)
         rows.append(
             Text(f"and {len(left)} more", style=room.signs.quiet)
             + Text(f", {past} PAST" if past else "", style=room.signs.stop)
+            + Text(f", {out} OUT" if out else "", style=room.signs.stop)
         )
     if not cups:
         rows.append(Text("no cup is open", style=room.signs.quiet))
@@ -112,7 +114,7 @@ def jobs_text(jobs: Sequence[Job], at: int, room: Room) -> Text:
         name = cut(job.thing.removesuffix("/1"), space - 1)
         rows.append(_marked(f"{name:<{space}}{words}", place == at, room))
     if not jobs:
-        rows.append(Text("nothing left to do", style=room.signs.quiet))
+        rows.append(Text("nothing left that the plan asks for", style=room.signs.quiet))
     return filled(rows, room.height)
 
 
@@ -138,9 +140,11 @@ def _cup_row(cup: Cup, room: Room) -> Text:
     signs = room.signs
     row = Text(f"{cup.number[:6]:<7}{cup.what[:4]:<5}")
     grams = "" if cup.left_kg is None else f"{1000 * max(0.0, cup.left_kg):.0f}"
-    if cup.held:
-        row.append("ON HOLD", style=signs.stop)
-    elif cup.minutes_left is None:
+    if cup.out or cup.held:
+        row.append("OUT OF RATIO" if cup.out else "ON HOLD", style=signs.stop)
+        row.append("STOP".rjust(room.width - len(row.plain)), style=signs.stop)
+        return row
+    if cup.minutes_left is None:
         row.append("no pot life")
     elif cup.past:
         row.append(f"PAST {in_minutes(-cup.minutes_left)}", style=signs.stop)
@@ -157,11 +161,11 @@ def _cup_row(cup: Cup, room: Room) -> Text:
 
 
 def _cups_in_sight(cups: Sequence[Cup], places: int) -> Sequence[Cup]:
-    """Running cups first; past ones are never crowded out: up to two rows are kept for them."""
+    """Running cups first; past and out ones are never crowded out: up to two rows are kept for them."""
     if len(cups) <= places:
         return cups
-    running = [cup for cup in cups if not cup.past]
-    past = [cup for cup in cups if cup.past]
+    running = [cup for cup in cups if not cup.past and not cup.out]
+    past = [cup for cup in cups if cup.past or cup.out]
     rows = places - 1
     kept = running[: max(rows - min(2, len(past)), 0)]
     return [*kept, *past[: rows - len(kept)]]

@@ -21,10 +21,12 @@ from ledger.tui.bench_drawing import (
 from ledger.tui.bench_wide import findings_text, stack_text, where_text
 from ledger.tui.bench_writing import BenchWriting
 from ledger.tui.completing import candidates
+from ledger.tui.large_cups import cups_by_urgency, large_cup
+from ledger.tui.large_print import large_rows
 from ledger.tui.room import Room
 from ledger.tui.scale_reading import weigh_unit
 from ledger.tui.slip_drawing import hand_text, idle_text, judged_lines, label_of, slip_text
-from ledger.tui.slip_foot import foot_of
+from ledger.tui.slip_foot import foot_of, named_cups
 from ledger.tui.tour import INVENTED
 from ledger.units import Dimension, show
 
@@ -124,21 +126,23 @@ class BenchFace(BenchWriting):
         return "scan or type: "
 
     def large_lines(self) -> tuple[str, ...]:
-        """The ply and its cup, or the shortest clocks."""
+        """The ply and its cup, else every cup's minutes; what is left over follows in small letters."""
         cups, slip = self._cups(), self.desk.slip
         ply = None if slip is None else slip.ply
         if slip is None or ply is None or ply.step is None:
-            lines = tuple(line for cup in cups[:3] for line in _large_cup(cup))
-            return lines or super().large_lines()
-        named = slip.value("batches").upper().split()
+            ordered = cups_by_urgency(cups, large_rows(self.app.size.height - 5))
+            return tuple(large_cup(cup) for cup in ordered) or super().large_lines()
+        named = named_cups(slip)
         chosen = [cup for cup in cups if cup.number.upper() in named] or list(cups[:1])
+        others = [cup for cup in cups if cup not in chosen]
         seen = ply.seen_deg
         left_g = 1000 * sum(max(0.0, cup.left_kg or 0.0) for cup in chosen)
         return (
             f"{ply.side[:5]} {ply.step}/{ply.steps} {signed(seen)}{stroke_of(seen)}",
-            *(f"{cup.number} {_large_clock(cup)}" for cup in chosen[:1]),
+            *(large_cup(cup) for cup in chosen[:1]),
             *((f"{left_g:.0f} of {1000 * ply.needs_kg:.0f} g",) if ply.needs_kg else ()),
-            *(f"{cup.number} {_large_clock(cup)}" for cup in chosen[1:]),
+            *(large_cup(cup) for cup in chosen[1:]),
+            *(large_cup(cup) for cup in sorted(others, key=lambda cup: (not cup.unfit, not cup.has_some))),
         )
 
     def _cups(self) -> tuple[Cup, ...]:
@@ -233,16 +237,3 @@ class BenchFace(BenchWriting):
             area.draw(rule(self._side_width(), lines))
         for bar in self.query(".bar").results(Area):
             bar.draw("\n".join([lines.v] * self.app.size.height))
-
-
-def _large_cup(cup: Cup) -> tuple[str, ...]:
-    if cup.minutes_left is None:
-        return (cup.number,)
-    grams = "" if cup.left_kg is None else f" {1000 * max(0.0, cup.left_kg):.0f} g"
-    return (f"{cup.number}{grams}", _large_clock(cup))
-
-
-def _large_clock(cup: Cup) -> str:
-    if cup.minutes_left is None:
-        return ""
-    return f"past {int(-cup.minutes_left)} min" if cup.past else f"{int(cup.minutes_left)} min"

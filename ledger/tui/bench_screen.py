@@ -109,7 +109,11 @@ class BenchScreen(BenchFace):
         if text.strip() and self.desk.weigh(text, scanned=scanned):
             self.reading_taken(scanned=scanned)
             return True
-        return False
+        why = "" if scanned else self.desk.why_no_reading(text)
+        if why and self.find(text) is None:
+            self.ledger_app.line.put_refused(text)
+            self.refuse(why)
+        return bool(why)
 
     def take_thing(self, thing: FoundThing) -> bool:
         """A number with no slip to go into: what it is and what can be done with it."""
@@ -239,6 +243,7 @@ class BenchScreen(BenchFace):
         """Delete."""
         slip = self.desk.slip
         if slip is not None and slip.current is not None:
+            self.settle_said()
             self.desk.slip = slip.put(slip.current.word, "")
             self.desk.keep()
             self.draw_slip()
@@ -249,6 +254,7 @@ class BenchScreen(BenchFace):
         if slip is None or slip.current is None or view is None:
             return
         typed = self.ledger_app.line.text
+        self.ledger_app.line.put(typed)
         found = candidates(slip.current, typed, view.open_things)
         common = os.path.commonprefix([one.text for one in found])  # noqa: RUF071  by character is meant
         if common:
@@ -284,7 +290,7 @@ class BenchScreen(BenchFace):
         why = desk.refusal(text, scanned=scanned)
         if not scanned:
             # What a person typed is theirs to mend; what a reader sent is gone.
-            self.ledger_app.line.put(text)
+            self.ledger_app.line.put_refused(text)
         self.refuse(why or f"{text} does not fit here")
         self.draw_slip()
         return True

@@ -4,9 +4,11 @@ from __future__ import annotations
 
 from pathlib import Path
 
+from ledger.operations.clock_cups import RATIO_OUT
 from ledger.operations.find_thing import FoundThing
 from ledger.operations.judge_reading import Judged
-from ledger.operations.look_at_bench import BenchView
+from ledger.operations.log_entry import LoggedEntry
+from ledger.operations.look_at_bench import BenchView, line_of
 from ledger.operations.take_stock import Stock
 from ledger.tui.crew import Crew, read_badge
 from ledger.tui.desk import Desk
@@ -21,6 +23,7 @@ from ledger.tui.logging_slips import (
     said_of,
     write,
 )
+from ledger.tui.messages import Message
 from ledger.tui.slip import Slip
 from ledger.tui.slip_drawing import judged_lines
 from ledger.tui.work_screen import WorkScreen
@@ -62,6 +65,23 @@ class BenchWriting(WorkScreen[BenchView]):
 
     def draw_all(self) -> None:
         """Every area anew."""
+
+    # -- what is said of the slip
+
+    def refuse(self, text: str, sign: str = "LOOK") -> None:
+        """Say why nothing happened, until something does."""
+        self.remind(sign, text)
+        self.ring(2)
+
+    def remind(self, sign: str, text: str) -> None:
+        """Say what holds only as long as the slip stands as it does."""
+        self.messages = self.messages.with_one(Message(sign=sign, text=text, passing=True))
+        self.draw_messages()
+
+    def settle_said(self) -> None:
+        """The slip changed: refusals and reminders about it say nothing any more."""
+        self.messages = self.messages.settled()
+        self.draw_messages()
 
     # -- readings without a slip
 
@@ -183,9 +203,14 @@ class BenchWriting(WorkScreen[BenchView]):
             return
         self._shown_effect = outcome.request
         self._shown_at = self.ledger_app.clock()
-        self.say("LOOK", f"{effect_of(outcome)}; log once more to do it")
+        self.remind("LOOK", f"{effect_of(outcome, self._withdrawn_by(outcome))}; log once more to do it")
         self.ring(1)
         self.draw_all()
+
+    def _withdrawn_by(self, outcome: Outcome) -> str:
+        seq = outcome.request.fields.get("seq", "") if outcome.request.kind == "withdraw" else ""
+        logged = () if self.stock is None else self.stock.build.logged
+        return next((line_of(entry) for entry in logged if str(entry.seq) == seq), "")
 
     def _written(self, outcome: Outcome) -> None:
         entry = outcome.entry
@@ -195,7 +220,7 @@ class BenchWriting(WorkScreen[BenchView]):
             return
         self._shown_effect = None
         self.ledger_app.wall.marked()
-        self.desk.logged(outcome.request.kind, tuple(one.seq for one in outcome.entries))
+        self.desk.logged(outcome.request.draft, tuple(one.seq for one in outcome.entries))
         for sign, words in said_of(entry):
             self.say(sign, words)
         self.ring(1)
@@ -208,11 +233,18 @@ class BenchWriting(WorkScreen[BenchView]):
     def _go_on(self, outcome: Outcome) -> None:
         entry, kind = outcome.entry, outcome.request.kind
         if entry is not None and kind == "mix":
-            self.desk.come_back(next((minted.number for minted in entry.minted), None))
+            self._come_back(entry)
         elif kind == "lay":
             self.desk.hand = self.find(outcome.request.fields.get("piece", "")) or self.desk.hand
         elif kind == "weigh":
             self.desk.hand = None
+
+    def _come_back(self, mix: LoggedEntry) -> None:
+        out = any(finding.code == RATIO_OUT for finding in mix.findings)
+        cup = next((minted.number for minted in mix.minted), None)
+        self.desk.come_back(None if out else cup)
+        if out and self.desk.slip is not None:
+            self.say("STOP", f"{cup} is out of ratio: not put into {self.desk.slip.kind}; mix another")
 
     def _not_written(self, outcome: Outcome) -> None:
         words, column = refusal_of(outcome)

@@ -6,214 +6,28 @@ No widget here: the screen passes in what was heard and draws what stands afterw
 from __future__ import annotations
 
 from dataclasses import replace
-from datetime import datetime
-from pathlib import Path
-from typing import Protocol
 
-from ledger.model.declare import KINDS, Takes
-from ledger.operations.clock_cups import Cup, mixing_cup, run_clocks
-from ledger.operations.find_thing import FoundThing
+from ledger.model.declare import Takes
+from ledger.operations.clock_cups import Cup, cups_on_bench, mixing_cup, run_clocks
 from ledger.operations.judge_reading import Judged
-from ledger.operations.keep_draft import DraftNotKept, drafts_of, drop_draft, keep_draft
 from ledger.operations.look_at_ply import look_at_ply
-from ledger.operations.propose_entry import (
-    entry_to_correct,
-    propose_entry,
-    repeat_last,
-)
+from ledger.operations.propose_entry import propose_entry, repeat_last
 from ledger.operations.see_changes import Change, see_changes
 from ledger.operations.take_stock import Stock
-from ledger.tui.crew import Crew, read_badge
+from ledger.operations.without_entry import without_entry
+from ledger.tui.crew import read_badge
+from ledger.tui.desk_slips import Shop, SlipsOnDesk
 from ledger.tui.field_text import takes_person
-from ledger.tui.scale_reading import Reading, judge_slip, read_scale, scale_in_use
-from ledger.tui.slip import Refusal, Slip, new_slip, slip_of
-from ledger.units import Display
+from ledger.tui.scale_reading import judge_slip, read_scale, why_no_reading
+from ledger.tui.slip import Refusal, Slip
+
+__all__ = ["Desk", "Shop"]
 
 _SECOND_OF = {"hardener": "resin", "resin": "hardener"}
 
 
-class Shop(Protocol):
-    """What the desk needs from the screen it belongs to."""
-
-    @property
-    def book(self) -> Path:
-        """The book."""
-
-    @property
-    def stock(self) -> Stock | None:
-        """The build as last read."""
-
-    @property
-    def crew(self) -> Crew:
-        """Who logs."""
-
-    @property
-    def units(self) -> Display:
-        """The build's units."""
-
-    def now(self) -> datetime:
-        """The computer's time."""
-
-    def find(self, text: str) -> FoundThing | None:
-        """What a number stands for."""
-
-    def say(self, sign: str, text: str) -> None:
-        """Put a line on the message lines."""
-
-    def refuse(self, text: str, sign: str = "LOOK") -> None:
-        """Say why nothing happened, and ring twice."""
-
-
-class Desk:
-    """The bench's own memory. `own` are entries this session wrote; `seen_seq` the last one it looked at."""
-
-    def __init__(self, shop: Shop) -> None:
-        self.shop = shop
-        self.slip: Slip | None = None
-        self.drafts: dict[str, Slip] = {}
-        self.hand: FoundThing | None = None
-        self.reading: Reading | None = None
-        self.come_back_to: str | None = None
-        self._stamped_by_press = False
-        self._came_back = False
-        self.own: set[int] = set()
-        self.seen_seq: int | None = None
-
-    # -- drafts
-
-    def bring_back(self) -> None:
-        """Drafts from disk, the newest open again."""
-        kept = sorted(drafts_of(self.shop.book), key=lambda draft: draft.kept_at)
-        for draft in kept:
-            if draft.kind in KINDS:
-                self.drafts[draft.kind] = slip_of(draft, self.shop.units)
-        if kept and self.slip is None and kept[-1].kind in self.drafts:
-            self.slip = self.drafts.pop(kept[-1].kind)
-            self._came_back = True
-            self.shop.say("LOOK", f"{self.slip.kind}: {self.slip.kept} is open again")
-
-    def keep(self) -> None:
-        """The open slip onto the disk."""
-        if self.slip is None:
-            return
-        try:
-            keep_draft(self.shop.book, self.slip.draft(self.shop.now(), self.shop.crew.by))
-        except DraftNotKept as error:
-            self.shop.say("LOOK", str(error))
-
-    def put_away(self) -> None:
-        """Esc: the slip leaves the desk, its draft stays."""
-        if self.slip is not None:
-            self.keep()
-            self.drafts[self.slip.kind] = replace(self.slip, kept=self.slip.kept or "put away")
-            self.shop.say("", f"{self.slip.kind} put away, its draft kept: type {self.slip.kind} to go on")
-            self.slip = None
-        elif self.reading is not None:
-            self.reading = None
-        else:
-            self.hand = None
-
-    def throw_away(self) -> None:
-        """The open draft is wanted no more."""
-        if self.slip is None:
-            self.shop.refuse("no slip is open")
-            return
-        kind, self.slip = self.slip.kind, None
-        self._forget(kind)
-        self.shop.say("ok", f"draft of {kind} thrown away")
-
-    def logged(self, kind: str, seqs: tuple[int, ...]) -> None:
-        """The slip is in the book."""
-        self.own.update(seqs)
-        self.slip = None
-        self.reading = None
-        self._forget(kind)
-
-    def _forget(self, kind: str) -> None:
-        self.drafts.pop(kind, None)
-        try:
-            drop_draft(self.shop.book, kind)
-        except DraftNotKept as error:
-            self.shop.say("LOOK", str(error))
-
-    # -- opening
-
-    def open(self, kind: str, about: FoundThing | None) -> None:
-        """A slip of this kind: its draft if there is one, else a new one as proposed."""
-        stock = self.shop.stock
-        if stock is None:
-            self.shop.refuse("the book is still being read: type it again")
-            return
-        if self.slip is not None and self.slip.kind == kind:
-            self.shop.say("", f"{kind} is open already")
-            return
-        if self.slip is not None:
-            self.put_away()
-        self.reading = None
-        kept = self.drafts.pop(kind, None)
-        if kept is not None:
-            self.slip = kept.at_first_open()
-            self.shop.say("LOOK", f"the draft of {kind} is back; throw away begins anew")
-            return
-        proposal = propose_entry(stock, kind, about or self.hand, self.shop.now())
-        self.slip = new_slip(kind, self.shop.units, proposal)
-        for sign, words in proposal.says:
-            self.shop.say(sign, words)
-        self.keep()
-
-    def open_correction(self, seq: int | None = None) -> None:
-        """The last entry, or the one asked for, as a slip with its own texts."""
-        stock = self.shop.stock
-        found = None if stock is None else entry_to_correct(stock, seq)
-        if found is None:
-            self.shop.refuse("there is no entry to put right")
-            return
-        entry, texts = found
-        if self.slip is not None:
-            self.put_away()
-        slip = Slip(kind=entry.kind, display=self.shop.units)
-        known = {field.word for field in slip.fields}
-        kept = {word: text for word, text in texts.items() if word in known}
-        self.slip = replace(slip, values=kept, original=kept, corrects=entry.seq).at_first_open()
-        self.keep()
-        self.shop.say(
-            "LOOK",
-            f"No. {entry.seq} by {entry.by}: change what is wrong; its effect is shown before it is done",
-        )
-
-    def open_withdrawal(self) -> None:
-        """Undo with no slip open: the last entry, to be withdrawn."""
-        self.open("withdraw", None)
-        if self.slip is not None and not self.slip.value("why"):
-            self.slip = self.slip.put("why", "entered by mistake", proposed=True)
-            self.keep()
-
-    def next_ply(self) -> None:
-        """A lay slip for the next step of the piece in hand, or of the one laid last."""
-        if self.slip is not None and self.slip.kind == "lay":
-            self.shop.refuse("a ply is open: log it, or stop, then next ply")
-            return
-        self.drafts.pop("lay", None)
-        self.open("lay", None)
-
-    def new_cup(self) -> None:
-        """A mix slip; what wanted the cup comes back when it is logged."""
-        waiting = self.slip.kind if self.slip is not None and self.slip.kind != "mix" else None
-        self.open("mix", None)
-        self.come_back_to = waiting
-
-    def come_back(self, batch: str | None) -> None:
-        """After a mix that a slip waited for: that slip again, with the new cup in it."""
-        kind, self.come_back_to = self.come_back_to, None
-        if kind is None or kind not in self.drafts:
-            return
-        self.slip = self.drafts.pop(kind)
-        field = next((f for f in self.slip.fields if f.word in ("batches", "batch")), None)
-        if batch is not None and field is not None:
-            before = self.slip.value(field.word)
-            joined = f"{before}; {batch}" if before and field.many else batch
-            self.slip = self.slip.put(field.word, joined).moved_to(field.word)
-        self.keep()
+class Desk(SlipsOnDesk):
+    """The bench's own memory: fills the open slip, weighs without one, sees what others did."""
 
     # -- filling
 
@@ -247,6 +61,7 @@ class Desk:
         if self.slip is None:
             self.open_withdrawal()
             return
+        self.shop.settle_said()
         before = self.slip.undone()
         if before is None:
             self.shop.refuse("nothing was filled in here yet; stop puts the slip away")
@@ -303,6 +118,7 @@ class Desk:
     def _took(self, result: Slip | Refusal) -> bool:
         if isinstance(result, Refusal):
             return False
+        self.shop.settle_said()
         before, self.slip = self.slip, result
         if before is not None and result.kind == "mix" and result.stamped_at is None:
             both = all(result.value(word) for word in _SECOND_OF)
@@ -314,7 +130,7 @@ class Desk:
 
     def see_ply(self) -> None:
         """The ply that an open lay slip is about, by what stands in it and in the book now."""
-        slip, stock = self.slip, self.shop.stock
+        slip, stock = self.slip, self.stock_for_slip()
         if slip is None or stock is None or slip.kind != "lay":
             return
         piece, step = slip.value("piece"), slip.value("step")
@@ -336,6 +152,15 @@ class Desk:
             return False
         return any(takes_person(field) for field in self.slip.fields)
 
+    def stock_for_slip(self) -> Stock | None:
+        """What the open slip is held against: a correction, as if what it corrects had never been logged."""
+        stock, seq = self.shop.stock, None if self.slip is None else self.slip.corrects
+        if stock is None or seq is None:
+            return stock
+        if self._without is None or self._without[0] is not stock or self._without[1] != seq:
+            self._without = (stock, seq, without_entry(stock, seq))
+        return self._without[2]
+
     # -- weighing without a slip
 
     def weigh(self, text: str, *, scanned: bool) -> bool:
@@ -343,15 +168,18 @@ class Desk:
         stock, thing = self.shop.stock, self.hand
         if stock is None or thing is None:
             return False
-        scale = scale_in_use(stock, self.shop.now())
-        reading = read_scale(stock, thing, text, self.shop.units, scale, scanned=scanned)
+        reading = read_scale(stock, thing, text, self.shop.units, scanned=scanned)
         if reading is not None:
             self.reading = reading
         return reading is not None
 
+    def why_no_reading(self, text: str) -> str:
+        """What is wrong with a text that looks like a reading for the thing in hand; else nothing."""
+        return "" if self.hand is None else why_no_reading(self.hand, text, self.shop.units)
+
     def judge_slip(self) -> Judged | None:
         """The open weigh slip's mean reading held against what was expected."""
-        slip, stock = self.slip, self.shop.stock
+        slip, stock = self.slip, self.stock_for_slip()
         return None if slip is None or stock is None else judge_slip(slip, stock, self.shop.find)
 
     # -- what others did, and clocks
@@ -369,7 +197,7 @@ class Desk:
         self.seen_seq = max(self.seen_seq, last)
         if self.slip is not None:
             self.slip = self.slip.changed_under(changes)
-        self.drafts = {kind: slip.changed_under(changes) for kind, slip in self.drafts.items()}
+        self.box.slips = {name: slip.changed_under(changes) for name, slip in self.drafts.items()}
         return changes
 
     def looked(self) -> None:
@@ -382,7 +210,9 @@ class Desk:
 
     def cups(self, cups: tuple[Cup, ...]) -> tuple[Cup, ...]:
         """The cups of the book with those that are being mixed, by the clock of now."""
-        stock, now = self.shop.stock, self.shop.now()
+        stock, now = self.stock_for_slip(), self.shop.now()
+        if stock is not None and stock is not self.shop.stock:
+            cups = cups_on_bench(stock.build.snapshot, stock.weights, now)
         slips = [*self.drafts.values(), *((self.slip,) if self.slip is not None else ())]
         mixing = tuple(
             mixing_cup(stock.build.snapshot, slip.value("resin_lot"), slip.stamped_at, now)

@@ -141,7 +141,7 @@ def things_named(field: Field) -> str:
     """`a lot or a sheet`: what the field wants, in words."""
     words = {ThingKind.BATCH: "cup"}
     names = [words.get(kind, kind.value) for kind in field.things]
-    return " or ".join(names[:4]) if names else "words"
+    return " or ".join(names) if names else "words"
 
 
 def _free(field: Field, text: str, find: Find, *, scanned: bool) -> str | Misfit:

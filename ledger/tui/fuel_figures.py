@@ -171,7 +171,7 @@ def gains_text(gains: Sequence[Gain], display: Display, room: Room) -> Text:
     if not gains:
         rows.append(Text("no opening traps anything", style=room.signs.quiet))
     if any(gain.wider_10pc_m3 < 0.0 for gain in gains):
-        why = f"below 0: traps more; of an outlet, {_SOONER}"
+        why = "below 0: an outlet's top edge draws air sooner"
         rows = [*rows[: room.height - 1], Text(shortened(why, room.width), style=room.signs.quiet)]
     rows = rows[: room.height]
     return Text("\n").join([*rows, *[Text()] * (room.height - len(rows))])

@@ -42,7 +42,8 @@ def outline_text(
                 )
                 column = int((middle[0] - scale.left_m) / scale.column_m) - len(name) // 2
                 _put(canvas, column, int((scale.top_m + middle[1]) / scale.row_m), clean(name))
-        for mark in marks:
+        # The outlet last: a drain hole beside it must not take its place.
+        for mark in sorted(marks, key=lambda one: one.sign == "out"):
             column = int((mark.at_m[1] - scale.left_m) / scale.column_m)
             _put(
                 canvas,

@@ -57,14 +57,20 @@ _UNKNOWN = "####|####|####|####|####"
 
 
 def large_text(lines: tuple[str, ...], width: int, height: int) -> Text:
-    """The lines in large letters, as many as there is room for; what is too wide stays small."""
-    fitting = max(1, (height + 1) // (_ROWS + 1))
+    """The lines in large letters, as many as there is room for; too wide ones, and the rest, stay small."""
+    fitting = large_rows(height)
     rows: list[str] = []
     for line in lines[:fitting]:
         drawn = _drawn(line)
         rows += drawn if len(drawn[0]) <= width else [line.upper()]
         rows.append("")
-    return Text("\n".join(rows[:height]), style="bold")
+    small = "   ".join(lines[fitting:]).upper()
+    return Text("\n".join([*rows, small[:width]][:height]), style="bold")
+
+
+def large_rows(height: int) -> int:
+    """How many lines in large letters fit."""
+    return max(1, (height + 1) // (_ROWS + 1))
 
 
 def _drawn(line: str) -> list[str]:

@@ -18,12 +18,13 @@ _SIGN = {Severity.STOP: "STOP", Severity.LOOK: "LOOK"}
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Request:
-    """One entry to be written. `corrects` is the entry it takes the place of."""
+    """One entry to be written. `corrects` is the entry it takes the place of, `draft` its slip's name."""
 
     kind: str
     fields: Mapping[str, str]
     by: str
     corrects: int | None = None
+    draft: str | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -50,10 +51,12 @@ def request_of(slip: Slip, crew: Crew) -> Request:
             for word in words
             if fields.get(word, "") != slip.original.get(word, "")
         }
-        return Request(kind=slip.kind, fields=changed, by=crew.by or "", corrects=slip.corrects)
+        return Request(
+            kind=slip.kind, fields=changed, by=crew.by or "", corrects=slip.corrects, draft=slip.name
+        )
     if slip.stamped_at is not None:
         fields.setdefault("at", slip.stamped_at.isoformat())
-    return Request(kind=slip.kind, fields={**fields, **_others(crew)}, by=crew.by or "")
+    return Request(kind=slip.kind, fields={**fields, **_others(crew)}, by=crew.by or "", draft=slip.name)
 
 
 def request_of_reading(fields: Mapping[str, str], crew: Crew) -> Request:
@@ -94,18 +97,24 @@ def said_of(entry: LoggedEntry) -> tuple[tuple[str, str], ...]:
     if grave:
         first = grave[0]
         more = f" (and {len(grave) - 1} more: findings)" if len(grave) > 1 else ""
-        lines.append((_SIGN[first.severity], f"{first.what}; {first.do}{more}"))
+        lines.append((_SIGN[first.severity], f"{_of(first)}; {first.do}{more}"))
     return tuple(lines)
 
 
-def effect_of(outcome: Outcome) -> str:
-    """A preview in one line."""
+def _of(finding: Finding) -> str:
+    thing = finding.where.thing
+    return finding.what if not thing or thing in finding.what else f"{thing}  {finding.what}"
+
+
+def effect_of(outcome: Outcome, withdrawn: str = "") -> str:
+    """A preview in one line; of a withdrawal, what it takes back."""
     entry = outcome.entry
     if entry is None:
         return ""
     grave = [finding for finding in entry.findings if finding.severity in _SIGN]
-    arising = f"; then {_SIGN[grave[0].severity]}: {grave[0].what}" if grave else ""
-    return f"it would say: {entry.says}{arising}"
+    arising = f"; then {_SIGN[grave[0].severity]}: {_of(grave[0])}" if grave else ""
+    says = f"it would take back {withdrawn}" if withdrawn else f"it would say: {entry.says}"
+    return f"{says}{arising}"
 
 
 def refusal_of(outcome: Outcome) -> tuple[str, str | None]:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from rich.text import Text
 
@@ -14,10 +14,15 @@ _SHOWN = 2
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Message:
-    """One line said. `sign` is ok, LOOK, STOP or empty."""
+    """One line said. `sign` is ok, LOOK, STOP or empty.
+
+    A `passing` line holds only as long as a slip stands as it does; once it is `over` it is drawn no more.
+    """
 
     sign: str
     text: str
+    passing: bool = False
+    over: bool = False
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -30,6 +35,10 @@ class Messages:
         """One more at the end."""
         return Messages(said=(*self.said, message)[-_KEPT:])
 
+    def settled(self) -> Messages:
+        """With every passing line over."""
+        return Messages(said=tuple(replace(one, over=one.over or one.passing) for one in self.said))
+
     @property
     def last(self) -> Message | None:
         """The newest."""
@@ -37,11 +46,12 @@ class Messages:
 
     def drawn(self, width: int, signs: Signs) -> Text:
         """A long newest one takes both rows; above a short one the one before is cut to a row."""
-        if not self.said:
+        standing = [message for message in self.said if not message.over]
+        if not standing:
             return Text()
-        newest = _rows_of(self.said[-1], width, signs, _SHOWN)
-        if len(newest) == 1 and len(self.said) > 1:
-            newest = [*_rows_of(self.said[-2], width, signs, 1), *newest]
+        newest = _rows_of(standing[-1], width, signs, _SHOWN)
+        if len(newest) == 1 and len(standing) > 1:
+            newest = [*_rows_of(standing[-2], width, signs, 1), *newest]
         return Text("\n").join(newest)
 
 

@@ -9,7 +9,10 @@ from rich.text import Text
 from ledger.operations.take_stock import Plate
 from ledger.tui.crew import Crew
 from ledger.tui.themes import Signs
-from ledger.units import Dimension, Rounding, show, shown_number
+from ledger.units import Dimension, Display, Rounding, show, shown_number
+
+# In the shown unit: below these a figure with one place has one digit left.
+_LEAST_SPREAD, _LEAST_MASS = 0.095, 10.0
 
 
 def plate_rows(
@@ -44,8 +47,9 @@ def _second(plate: Plate | None, width: int, signs: Signs) -> Text:
     if plate is None:
         return Text("reading the book")
     display = plate.display
-    best = shown_number(plate.best_kg, Dimension.MASS, display, places=1)
-    spread = show(plate.best_u_kg, Dimension.MASS, display, places=1, rounding=Rounding.UP)
+    places = _mass_places(plate, display)
+    best = shown_number(plate.best_kg, Dimension.MASS, display, places=places)
+    spread = show(plate.best_u_kg, Dimension.MASS, display, places=places, rounding=Rounding.UP)
     usable = show(plate.usable_m3, Dimension.VOLUME, display, rounding=Rounding.DOWN)
     fs = show(plate.cg_fs_m, Dimension.LENGTH, display, places=0 if display.value == "metric" else 1)
     left = f"now {best} +-{spread}  CG FS {fs}  usable {usable}  weighed {100 * plate.share_actual:.0f} %"
@@ -61,6 +65,13 @@ def _second(plate: Plate | None, width: int, signs: Signs) -> Text:
     row.append_text(right)
     row.truncate(width)
     return row
+
+
+def _mass_places(plate: Plate, display: Display) -> int | None:
+    """One place, as a wing is spoken of; those of the weights screen where one would say too little."""
+    coarse = float(shown_number(plate.best_u_kg, Dimension.MASS, display)) < _LEAST_SPREAD
+    light = abs(float(shown_number(plate.best_kg, Dimension.MASS, display))) < _LEAST_MASS
+    return None if coarse or light else 1
 
 
 def _cut(text: str, room: int) -> str:

@@ -3,13 +3,12 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from datetime import datetime
 
 from ledger.errors import LedgerError
 from ledger.model.things import ThingKind
 from ledger.operations.find_thing import FoundThing
 from ledger.operations.judge_reading import Judged, judge_reading
-from ledger.operations.propose_entry import propose_entry
+from ledger.operations.propose_entry import scale_in_use
 from ledger.operations.take_stock import Stock
 from ledger.tui.field_text import Find, is_number, split_quantities, with_unit
 from ledger.tui.slip import Slip
@@ -40,13 +39,8 @@ def weigh_unit(units: Display) -> str:
     return "g" if units is Display.METRIC else "lb"
 
 
-def scale_in_use(stock: Stock, now: datetime) -> str | None:
-    """The scale of the last weighing."""
-    return propose_entry(stock, "weigh", None, now).values.get("scale")
-
-
 def read_scale(
-    stock: Stock, thing: FoundThing, text: str, units: Display, scale: str | None, *, scanned: bool
+    stock: Stock, thing: FoundThing, text: str, units: Display, *, scanned: bool
 ) -> Reading | None:
     """The text as a reading for this thing; None where it is none."""
     if thing.kind not in _WEIGHED:
@@ -57,8 +51,21 @@ def read_scale(
         readings = [read_quantity(part, Dimension.MASS) for part in written.split(";")]
     except LedgerError:
         return None
+    scale = scale_in_use(stock)
     judged = judge_reading(stock, thing.name, sum(readings) / len(readings), scale)
     return Reading(what=thing.number or thing.name, text=written, scale=scale, judged=judged)
+
+
+def why_no_reading(thing: FoundThing, text: str, units: Display) -> str:
+    """Why a text that begins like a number is no reading; nothing where it is none of a number at all."""
+    if thing.kind not in _WEIGHED or not text.strip() or text.strip()[0] not in "+-.,0123456789":
+        return ""
+    for part in split_quantities(text):
+        try:
+            read_quantity(with_unit(part, weigh_unit(units)), Dimension.MASS)
+        except LedgerError as error:
+            return f"{getattr(error, 'what', error)}; {getattr(error, 'do', 'write it anew')}"
+    return ""
 
 
 def judge_slip(slip: Slip, stock: Stock, find: Find) -> Judged | None:

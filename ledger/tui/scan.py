@@ -65,6 +65,7 @@ class ScanLine:
         self._last_at = 0.0
         self._deaf_until: float | None = None
         self._last_enter_at: float | None = None
+        self._refused = False
 
     @property
     def text(self) -> str:
@@ -75,9 +76,17 @@ class ScanLine:
         """Replace what stands in the line, as by completion."""
         self._settled = text[:LONGEST_LINE]
         self._run = ""
+        self._refused = False
+
+    def put_refused(self, text: str) -> None:
+        """Leave in sight what was refused: the next character begins anew, Backspace or Right mends it."""
+        self.put(text)
+        self._refused = True
 
     def paste(self, text: str) -> None:
         """Add pasted text: its first line, as typed, so that pasting never presses Enter."""
+        if self._refused:
+            self.put("")
         first = next(iter(text.splitlines()), "")
         self.put(self.text + "".join(char for char in first if char.isprintable()))
 
@@ -106,6 +115,8 @@ class ScanLine:
         if key in _ENTERS or key == "tab":
             return before + self._end(key, at)
         if character is not None and character.isprintable():
+            if self._refused:
+                self.put("")
             self._deaf_until = None
             self._add(character, at)
             return (*before, Typed())
@@ -113,6 +124,7 @@ class ScanLine:
             # A separator inside a code; no hand follows two characters with a key this fast.
             return before
         self._settle()
+        self._refused = False
         if key in ("backspace", "ctrl+h"):
             self._settled = self._settled[:-1]
             return (*before, Typed())
@@ -142,7 +154,7 @@ class ScanLine:
         last, self._last_enter_at = self._last_enter_at, at
         if last is not None and at - last <= ENTER_REPEAT_S:
             return ()
-        text, self._settled = self._settled, ""
+        text, self._settled, self._refused = self._settled, "", False
         return (Entered(text),)
 
     def _settle(self) -> None:

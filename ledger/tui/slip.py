@@ -10,7 +10,7 @@ from datetime import datetime
 from ledger.model import acts  # noqa: F401  the kinds are declared when this is imported
 from ledger.model.declare import KINDS, Field, Kind, Takes
 from ledger.operations.find_thing import FoundThing
-from ledger.operations.keep_draft import Draft
+from ledger.operations.keep_draft import Draft, draft_name
 from ledger.operations.look_at_ply import PlyInHand
 from ledger.operations.propose_entry import Proposal
 from ledger.operations.see_changes import Change
@@ -51,7 +51,8 @@ class Slip:
     """`at_field` is the place of the mark; one past the last field stands `log`.
 
     `strayed` is true once a person moved the mark: then a scan must fit the very field it stands on.
-    `filled` remembers the order of filling, so that undo empties the last.
+    `filled` remembers the order of filling, so that undo empties the last. `original` is what stood in it
+    when it was opened.
     """
 
     kind: str
@@ -68,6 +69,17 @@ class Slip:
     changes: tuple[Change, ...] = ()
     ply: PlyInHand | None = None
     kept: str = ""
+    apart: str = ""
+
+    @property
+    def name(self) -> str:
+        """What its draft is kept under."""
+        return draft_name(self.kind, self.corrects, self.apart)
+
+    @property
+    def untouched(self) -> bool:
+        """Whether nobody wrote anything: it stands as it was opened."""
+        return self.stamped_at is None and dict(self.values) == dict(self.original)
 
     @property
     def declared(self) -> Kind:
@@ -322,7 +334,7 @@ class Slip:
 
     # -- drafts and changes
 
-    def draft(self, now: datetime, by: str | None) -> Draft:
+    def draft(self, now: datetime, by: str | None, *, away: bool = False) -> Draft:
         """What is kept on disk."""
         return Draft(
             kind=self.kind,
@@ -332,6 +344,9 @@ class Slip:
             stamped_at=self.stamped_at,
             corrects=self.corrects,
             by=by,
+            original=tuple(self.original.items()),
+            apart=self.apart,
+            away=away,
         )
 
     def changed_under(self, changes: tuple[Change, ...]) -> Slip:
@@ -353,7 +368,7 @@ def new_slip(kind: str, display: Display, proposal: Proposal) -> Slip:
     slip = Slip(kind=kind, display=display, ply=proposal.ply)
     for word, text in proposal.values.items():
         slip = slip.put(word, text, proposed=True)
-    slip = replace(slip, notes=dict(proposal.notes))
+    slip = replace(slip, notes=dict(proposal.notes), original=dict(slip.values))
     return slip.at_first_open()
 
 
@@ -367,6 +382,8 @@ def slip_of(draft: Draft, display: Display) -> Slip:
         proposed=frozenset(draft.proposed),
         stamped_at=draft.stamped_at,
         corrects=draft.corrects,
+        original=dict(draft.original),
+        apart=draft.apart,
         kept=f"draft of {draft.kept_at:%d %b %H:%M}",
     )
     return slip.at_first_open()

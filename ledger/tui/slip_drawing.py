@@ -41,7 +41,7 @@ def slip_text(slip: Slip, typing: str, foot: Foot, now: datetime, room: Room) ->
     """Head, fields and foot; the fields scroll so that the marked one is in sight."""
     head = _head(slip, now, room)
     below = [row for sign, words in foot for row in _foot_rows(sign, words, room)]
-    rows = [_field_row(slip, place, typing, room) for place in range(len(slip.fields) + 1)]
+    rows = [_field_row(slip, place, typing, now, room) for place in range(len(slip.fields) + 1)]
     places = max(3, room.height - len(head) - len(below))
     top = max(0, min(slip.at_field - places + 2, len(rows) - places))
     shown = rows[top : top + places]
@@ -129,7 +129,7 @@ def _state_row(slip: Slip, now: datetime, room: Room) -> Text:
     return Text(cut(f"  {slip.kept}", room.width) if slip.kept else "", room.signs.quiet)
 
 
-def _field_row(slip: Slip, place: int, typing: str, room: Room) -> Text:
+def _field_row(slip: Slip, place: int, typing: str, now: datetime, room: Room) -> Text:
     here, signs = place == slip.at_field, room.signs
     if place == len(slip.fields):
         return _log_row(slip, here, room)
@@ -141,7 +141,7 @@ def _field_row(slip: Slip, place: int, typing: str, room: Room) -> Text:
     if here and typing:
         row.append(f"..{typing[-(space - 3) :]}_" if len(typing) >= space else f"{typing}_", style="")
         return row
-    value = slip.value(field.word)
+    value = _moment(slip.value("at"), now) if field.word == "at" else slip.value(field.word)
     standing = "now" if field.word == "at" and not value else ""
     note = slip.notes.get(field.word, "") or (field.tip if here and not value else standing)
     shown = cut(value or ("____" if here or field.required else ""), space)
@@ -150,6 +150,17 @@ def _field_row(slip: Slip, place: int, typing: str, room: Room) -> Text:
     if note and left >= 6:
         row.append("  " + cut(note, left), style=signs.quiet)
     return row
+
+
+def _moment(text: str, now: datetime) -> str:
+    try:
+        at = datetime.fromisoformat(text).astimezone(now.tzinfo)
+    except ValueError:
+        return text
+    # A bare date or a time without an offset stays as it was typed.
+    if "T" not in text:
+        return text
+    return f"{at:%H:%M}" if at.date() == now.date() else f"{at:%Y-%m-%d %H:%M}"
 
 
 def _log_row(slip: Slip, here: bool, room: Room) -> Text:

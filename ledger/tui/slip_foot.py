@@ -12,6 +12,9 @@ from ledger.tui.slip import Slip
 
 Foot = tuple[tuple[str, str], ...]
 
+# They are about the cup itself, and use nothing of it.
+_ABOUT_CUPS = frozenset({"mix", "hold", "release", "scrap", "note"})
+
 
 def foot_of(slip: Slip, stock: Stock | None, cups: tuple[Cup, ...], now: datetime) -> Foot:
     """Lines under the fields, each with its sign."""
@@ -25,7 +28,25 @@ def foot_of(slip: Slip, stock: Stock | None, cups: tuple[Cup, ...], now: datetim
         advice = plan_pour(stock, slip.values)
         if advice is not None:
             lines.append((advice.sign, advice.says))
-    return (*lines, *_ply_foot(slip, cups))
+    return (*lines, *_unfit_cups(slip, cups), *_ply_foot(slip, cups))
+
+
+def named_cups(slip: Slip) -> frozenset[str]:
+    """The numbers of the cups that stand in a slip."""
+    texts = (slip.value("batches"), slip.value("batch"))
+    return frozenset(part.split()[0].upper() for text in texts for part in text.split(";") if part.strip())
+
+
+def _unfit_cups(slip: Slip, cups: tuple[Cup, ...]) -> Foot:
+    if slip.kind in _ABOUT_CUPS:
+        return ()
+    lines = []
+    named = named_cups(slip)
+    for cup in cups:
+        if cup.unfit and cup.number.upper() in named:
+            why = "out of ratio" if cup.out else "on hold" if cup.held else "past its pot life"
+            lines.append(("STOP", f"{cup.number} is {why}: use another"))
+    return tuple(lines)
 
 
 def _ply_foot(slip: Slip, cups: tuple[Cup, ...]) -> Foot:
@@ -33,12 +54,12 @@ def _ply_foot(slip: Slip, cups: tuple[Cup, ...]) -> Foot:
     if ply is None or ply.step is None:
         return ()
     lines: list[tuple[str, str]] = []
-    named = {part.split()[0].upper() for part in slip.value("batches").split(";") if part.strip()}
+    named = named_cups(slip)
     chosen = tuple(cup for cup in cups if cup.number.upper() in named)
     if ply.needs_kg:
         short = sum(max(0.0, cup.left_kg or 0.0) for cup in chosen) < ply.needs_kg
-        past = any(cup.past for cup in chosen)
-        sign = "STOP" if past else "LOOK" if short else "ok"
+        unfit = any(cup.unfit for cup in chosen)
+        sign = "STOP" if unfit else "LOOK" if short else "ok"
         lines.append((sign, covering(ply.needs_kg, chosen)))
     laid = 1000 * ply.resin_laid_kg
     planned = "" if ply.resin_planned_kg is None else f"   {1000 * ply.resin_planned_kg:.0f} g in the plan"

@@ -79,7 +79,7 @@ ACTS: tuple[Act, ...] = (
         figure="L6 0.7 L",
         over=lambda _, seen: "fuel" in seen,
         screen="fuel",
-        there="left tank, End until best climb: 0.7 L stays in L6, behind drain L4-L6",
+        there="left tank, End until best climb: 0.7 L in L6, behind drain L4-L6",
     ),
     Act(
         number=6,

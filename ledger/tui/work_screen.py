@@ -146,7 +146,8 @@ class WorkScreen(ShellScreen[View], Generic[View]):
         thing = self.ledger_app.find(text)
         if thing is None:
             said = "scanned" if scanned else "typed"
-            self.refuse(f"{said} {text}: no word and no number known here; actions lists the words")
+            why = self.ledger_app.why_unknown(text)
+            self.refuse(why or f"{said} {text}: no word and no number known here; actions lists the words")
         elif not self.take_thing(thing):
             self.ledger_app.offer_thing(thing)
 

@@ -120,6 +120,17 @@ def test_warm_fuel_weighs_less(run: Any, book: Path) -> None:
     assert heaviest("--temperature", "40 C") < heaviest() < heaviest("--temperature", "-20 C")
 
 
+def test_the_density_a_temperature_gives_is_a_line_of_the_text(run: Any, book: Path) -> None:
+    def densities(*words: str) -> list[str]:
+        return [line for line in run("fuel", book, *words).out.splitlines() if line.startswith("density")]
+
+    (warm,), (cold,) = densities("--temperature", "28 C"), densities("--temperature", "-20 C")
+    assert warm.endswith(" kg/m3 at 28 C")
+    assert cold.endswith(" kg/m3 at -20 C")
+    assert float(warm.split()[1]) < float(cold.split()[1])
+    assert densities() == []
+
+
 def test_a_cup_is_traced_both_ways_and_adds_up(run: Any, book: Path) -> None:
     cloth, cup = wet_out(run, book)
     read = figures(run, "trace", book, cup.lower())

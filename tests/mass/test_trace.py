@@ -47,8 +47,9 @@ def test_a_cup_went_into_each_ply_and_the_rest_is_not_accounted_for(shop: Any) -
 
 def test_without_a_residue_what_was_not_used_is_in_the_cup_or_lost(shop: Any) -> None:
     shop.mix("B1", 0.2, 0.05)
-    fresh = trace(shop.snapshot(), "B1").went_into
-    assert [(link.what, link.mass_kg) for link in fresh] == [("in the cup or lost", pytest.approx(0.25))]
+    (fresh,) = trace(shop.snapshot(), "B1").went_into
+    assert fresh.what == "in the cup or lost"
+    assert fresh.mass_kg == pytest.approx(0.25)
     shop.log(lay(1, "B1", 0.09))
     went = trace(shop.snapshot(), "B1").went_into
     assert names(went) == ["SKIN/1", "in the cup or lost"]

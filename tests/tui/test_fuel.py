@@ -235,14 +235,14 @@ async def test_a_wider_outlet_that_costs_fuel_says_why(
         await bench.key("f4")
         figures = words(bench, "figures")
         place = next(at for at, row in enumerate(figures) if row.startswith("10 % wider costs"))
-        assert figures[place - 2] == "behind outlet left"
+        assert figures[place - 2] == "behind outlet"
         said = figures[place] if size == WIDE else figures[place + 1]
         assert "draws air sooner" in said
         assert figures[-1].startswith("worst at")
         await bench.type("best climb")
-        figures = "\n".join(words(bench, "figures"))
-        assert "behind drain L4-L6" in figures
-        assert "air sooner" not in figures
+        climb = "\n".join(words(bench, "figures"))
+        assert "behind drain L4-L6" in climb
+        assert "air sooner" not in climb
 
 
 # -- drawing

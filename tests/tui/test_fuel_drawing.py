@@ -193,6 +193,7 @@ def test_on_the_true_outline_an_outlet_has_not_the_sign_of_air() -> None:
     marks = (
         HoleMark(name="outlet", cells=("A",), at_m=(0.5, 0.5, 0.0), sign="out"),
         HoleMark(name="vent", cells=("A",), at_m=(0.2, 0.2, 0.2), sign="V"),
+        HoleMark(name="drain beside it", cells=("A",), at_m=(0.5, 0.5, 0.0), sign="d"),
     )
     outline = {"A": ((0.0, 0.0), (1.0, 0.0), (1.0, 1.0), (0.0, 1.0))}
     text, _ = outline_text(outline, marks, Room(width=40, height=9, signs=Signs()))

@@ -90,13 +90,19 @@ async def test_the_over_ratio_batch_is_a_stop_with_its_ratio_and_where_its_grams
         assert len(headline) == len(pieces) == 80
 
 
-async def test_what_was_made_with_a_stop_is_itself_a_stop(demo_book: Path, open_bench: OpenBench) -> None:
+async def test_what_was_made_with_a_cup_out_of_ratio_is_itself_a_stop(
+    demo_book: Path, open_bench: OpenBench
+) -> None:
     async with open_bench(demo_book, screen=TraceScreen) as bench:
         await bench.scan("SKIN.LWR-L/1")
         (headline,) = words(bench, "headline")
-        assert "made with B014Z STOP" in headline
+        assert "holds B014Z, mixed out of ratio" in headline
         assert headline.endswith("STOP")
         assert words(bench, "pieces")[0].startswith("FITTED into WING/LEFT")
+        await bench.scan("SKIN.LE-L/1")
+        (headline,) = words(bench, "headline")
+        assert "made with B009T LOOK" in headline
+        assert headline.endswith("LOOK")
 
 
 async def test_from_a_lot_down_to_a_piece_and_from_the_piece_up_to_the_lot(
@@ -126,9 +132,9 @@ async def test_with_nothing_asked_the_gravest_comes_first_and_enter_follows_it(
     demo_book: Path, open_bench: OpenBench
 ) -> None:
     async with open_bench(demo_book, screen=TraceScreen) as bench:
-        assert words(bench, "pieces")[0] == "4 things are on hold, or have STOP or LOOK"
-        rows = words(bench, "into")[1:5]
-        assert [row[1:5] for row in rows] == ["STOP", "LOOK", "LOOK", "LOOK"]
+        assert words(bench, "pieces")[0] == "5 things are on hold, or have STOP or LOOK"
+        rows = words(bench, "into")[1:6]
+        assert [row[1:5] for row in rows] == ["STOP", "STOP", "LOOK", "LOOK", "LOOK"]
         await bench.key("enter")
         assert words(bench, "headline")[0].startswith("B014Z")
 

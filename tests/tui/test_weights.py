@@ -151,8 +151,12 @@ async def test_space_goes_round_the_rows_that_are_flagged_and_says_what_to_do(
     async with open_bench(demo_book, screen=WeightsScreen) as bench:
         await bench.type("next look")
         assert "SKIN.LWR-L" in marked(bench)
-        assert "LOOK" in marked(bench)
+        # Closed, the row shows the graver word of the piece inside it; what is said is its own.
+        assert "STOP" in marked(bench)
         assert "accept it or mend it" in bench.said[-1]
+        await bench.type("next look")
+        assert "SKIN.LWR-L/1" in marked(bench)
+        assert "B014Z" in bench.said[-1]
         await bench.type("next look")
         assert "SKIN.LWR-R/1" in marked(bench)
 
@@ -264,9 +268,9 @@ async def test_tab_shows_the_causes_of_the_row_and_of_the_wing_again(
         assert words(bench, "weights-causes") == wing
         await bench.key("tab")
         row = words(bench, "weights-causes")
-        assert row[0].startswith("SKIN.LWR-L OFF PLAN BY CAUSE")
+        assert row[0].startswith("SKIN.LWR-L/1 OFF PLAN BY CAUSE")
         assert row[1:] != wing[1:]
         await bench.key("down")
-        assert not words(bench, "weights-causes")[0].startswith("SKIN.LWR-L OFF")
+        assert not words(bench, "weights-causes")[0].startswith("SKIN.LWR-L/1 OFF")
         await bench.key("tab")
         assert words(bench, "weights-causes") == wing
