@@ -99,5 +99,9 @@ class Unplaced(LedgerError):
         return Finding(code=self.code, severity=Severity.STOP, where=where, what=self.what, do=self.do)
 
 
+class Stopped(LedgerError):
+    """The person asked for long work to end before it was done; nothing was written."""
+
+
 class MeshRefused(Unplaced):
     """A mesh that cannot be integrated as a solid. The message says why and names places."""

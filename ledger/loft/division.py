@@ -1,0 +1,285 @@
+"""The void divided: caps under the skins, webs, ribs between them, and the bays that are left."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from itertools import pairwise
+
+import numpy as np
+
+from ledger.errors import Finding, Where
+from ledger.loft.bodies import Body, beyond_plane, body_of, prism, united
+from ledger.loft.faults import stop
+from ledger.loft.layout import Cap, Layout, Row, Surface
+from ledger.loft.lofted import Floats
+from ledger.loft.shell import Shell, layer, void
+from ledger.loft.walls import RibPlane, Slab, WebLength, WebLine, chord_point, reach_of, row_stations
+
+# What is left of a wall over less than this is a shaving, not a panel.
+_SHAVING_M3 = 1e-9
+
+
+@dataclass(frozen=True, kw_only=True, eq=False)
+class Wall:
+    """A wall as the void leaves room for it. `solid` includes what paste its panel's edges will need.
+
+    `room` is all that it may be cut from. `rows` are those a rib's panel runs through, and `ends` what
+    bounds them at the front and at the rear: webs, or the wing's own nose and tail.
+    """
+
+    part: str
+    title: str
+    place: Where
+    slab: Slab
+    solid: Body
+    room: Body
+    rib: RibPlane | None = None
+    web: WebLength | None = None
+    rows: tuple[str, ...] = ()
+    ends: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, kw_only=True, eq=False)
+class CapSolid:
+    """A cap and its body."""
+
+    cap: Cap
+    solid: Body
+
+
+@dataclass(frozen=True, kw_only=True, eq=False)
+class Bay:
+    """A bay of a row, named by the row and its inboard rib; without a rib it runs to the wing's end."""
+
+    name: str
+    row: Row
+    inboard: RibPlane | None
+    outboard: RibPlane | None
+
+
+@dataclass(frozen=True, kw_only=True, eq=False)
+class Division:
+    """Everything inside the skins, as bodies that share their faces."""
+
+    void: Body
+    caps: tuple[CapSolid, ...]
+    ribs: tuple[Wall, ...]
+    webs: tuple[Wall, ...]
+    bays: tuple[Bay, ...]
+    free: Body
+    rows: dict[str, Body]
+
+    def space(self, bay: Bay) -> Body:
+        """The space of a bay, bounded by the faces of its walls."""
+        found = self.rows[bay.row.name]
+        for plane, side in ((bay.inboard, -1.0), (bay.outboard, 1.0)):
+            if plane is not None:
+                normal = side * plane.slab.axes[2]
+                face = np.asarray(plane.slab.origin_m) + normal * 0.5 * plane.rib.thickness_m
+                found = beyond_plane(found, face, normal)
+        return found
+
+
+def divide(
+    layout: Layout, shell: Shell, lines: tuple[WebLine, ...], planes: tuple[RibPlane, ...]
+) -> tuple[Division | None, tuple[Finding, ...]]:
+    """Cut the void up. A rib is cut between webs but for those it runs through; webs are cut for those.
+
+    Everything is cut by whole slabs that reach beyond what they cut: two solids whose faces all but lie
+    in one another are what a solid library is least sure of.
+    """
+    by_name = {line.web.name: line for line in lines}
+    inside = united(body_of(mesh) for mesh in void(shell))
+    caps = tuple(_cap_solids(layout, shell, by_name))
+    open_space = inside - united(cap.solid for cap in caps) if caps else inside
+    cutters = tuple(_rib_cutters(layout, shell, planes, by_name))
+    ribs, faults = _rib_walls(cutters, by_name, open_space)
+    webs, more = _web_walls(lines, cutters, open_space)
+    if faults or more:
+        return None, (*faults, *more)
+    slabs = united(length.slab.body for line in lines for length in line.lengths)
+    between = {row.name: _row_prism(layout, shell, row, by_name) for row in layout.rows}
+    division = Division(
+        void=inside,
+        caps=caps,
+        ribs=ribs,
+        webs=webs,
+        bays=tuple(_bays(layout, planes)),
+        free=open_space - slabs - united(cutter.body for cutter in cutters),
+        rows={name: (open_space ^ body) - slabs for name, body in between.items()},
+    )
+    return division, ()
+
+
+def _cap_solids(layout: Layout, shell: Shell, lines: dict[str, WebLine]) -> Iterator[CapSolid]:
+    for cap in layout.caps:
+        line = lines[cap.web]
+        low, high = cap.between_m or (line.points[0][1], line.points[-1][1])
+        pieces = []
+        for block in shell.blocks:
+            run = _strips_over(shell, block, line, cap)
+            strip = prism(_strip_over_web(line, cap, low, high))
+            pieces.append(body_of(layer(shell, block, run, cap.thickness_m)) ^ strip)
+        yield CapSolid(cap=cap, solid=united(pieces))
+
+
+def _strip_over_web(line: WebLine, cap: Cap, low_m: float, high_m: float) -> Floats:
+    """A cap seen from above, anticlockwise: so wide along the chord that its own width is true."""
+    lines = sorted({low_m, high_m, *(y for _, y in line.points if low_m < y < high_m)})
+    slope = np.gradient([line.station(at) for at in lines], lines)
+    half = 0.5 * cap.width_m * np.sqrt(1.0 + slope**2)
+    middle = np.array([line.station(at) for at in lines])
+    aft = np.column_stack((middle + half, lines))
+    forward = np.column_stack((middle - half, lines))[::-1]
+    return np.concatenate((aft, forward))
+
+
+def _strips_over(shell: Shell, block: tuple[int, int], line: WebLine, cap: Cap) -> tuple[int, int]:
+    """Ring corners between which a surface lies over a cap all along a block."""
+    ring = shell.outer_m[block[0] : block[1] + 1]
+    nose = len(shell.shares) - 1
+    corners = np.arange(nose + 1) if cap.surface is Surface.UPPER else np.arange(nose, ring.shape[1])
+    reach = cap.width_m + 2.0 * cap.thickness_m
+    hit: list[int] = []
+    for station, at in zip(ring, shell.butt_lines_m[block[0] : block[1] + 1], strict=True):
+        off = np.abs(station[corners, 0] - line.station(at))
+        hit.extend(int(place) for place in np.flatnonzero(off <= max(reach, float(off.min()))))
+    first, last = max(0, min(hit) - 1), min(len(corners) - 1, max(hit) + 1)
+    return int(corners[first]), int(corners[last])
+
+
+@dataclass(frozen=True, kw_only=True, eq=False)
+class _Cutter:
+    """A rib's slab in the rows it runs through together, from the middle of one web to that of another."""
+
+    plane: RibPlane
+    group: tuple[Row, ...]
+    body: Body
+
+
+def _rib_cutters(
+    layout: Layout, shell: Shell, planes: tuple[RibPlane, ...], lines: dict[str, WebLine]
+) -> Iterator[_Cutter]:
+    for plane in planes:
+        for group in _joined_rows(layout, plane, lines):
+            rows = united(_row_prism(layout, shell, row, lines) for row in group)
+            yield _Cutter(plane=plane, group=group, body=plane.slab.body ^ rows)
+
+
+def _rib_walls(
+    cutters: tuple[_Cutter, ...], lines: dict[str, WebLine], open_space: Body
+) -> tuple[tuple[Wall, ...], tuple[Finding, ...]]:
+    walls, faults = [], []
+    for cutter in cutters:
+        plane, group = cutter.plane, cutter.group
+        cutting = [line for name, line in lines.items() if name not in plane.rib.through]
+        room = open_space - united(length.slab.body for line in cutting for length in line.lengths)
+        solid = room ^ cutter.body
+        if solid.volume() < _SHAVING_M3:
+            faults.append(_no_room(plane.rib.place, f"rib {plane.rib.name} in row {group[0].name}"))
+            continue
+        names = tuple(row.name for row in group)
+        walls.append(
+            Wall(
+                part=f"RIB.{''.join(names)}{plane.rib.name}",
+                title=f"{group[0].title} rib at BL {plane.butt_line(_middle(group, lines, plane)):.2f}",
+                place=plane.rib.place,
+                slab=plane.slab,
+                solid=solid,
+                room=room,
+                rib=plane,
+                rows=names,
+                ends=(group[0].front, group[-1].rear),
+            )
+        )
+    return tuple(walls), tuple(faults)
+
+
+def _joined_rows(layout: Layout, plane: RibPlane, lines: dict[str, WebLine]) -> list[tuple[Row, ...]]:
+    """The rows of a rib front to rear, those together that it runs through from one to the next."""
+    rows = [row for row in layout.rows if row.name in plane.rib.rows]
+    rows.sort(key=lambda row: row_stations(row, lines, plane)[0])
+    groups: list[list[Row]] = []
+    for row in rows:
+        if groups and groups[-1][-1].rear == row.front and row.front in plane.rib.through:
+            groups[-1].append(row)
+        else:
+            groups.append([row])
+    return [tuple(group) for group in groups]
+
+
+def _extent(group: tuple[Row, ...], lines: dict[str, WebLine], plane: RibPlane) -> tuple[float, float]:
+    return row_stations(group[0], lines, plane)[0], row_stations(group[-1], lines, plane)[1]
+
+
+def _middle(group: tuple[Row, ...], lines: dict[str, WebLine], plane: RibPlane) -> float:
+    front, rear = _extent(group, lines, plane)
+    known = [station for station in (front, rear) if np.isfinite(station)]
+    return float(np.mean(known)) if known else plane.slab.origin_m[0]
+
+
+def _web_walls(
+    lines: tuple[WebLine, ...], cutters: tuple[_Cutter, ...], open_space: Body
+) -> tuple[tuple[Wall, ...], tuple[Finding, ...]]:
+    walls, faults = [], []
+    for line in lines:
+        running = [cutter.body for cutter in cutters if _runs_through(cutter, line)]
+        room = open_space - united(running) if running else open_space
+        for length in line.lengths:
+            solid = room ^ length.slab.body
+            if solid.volume() < _SHAVING_M3:
+                faults.append(_no_room(line.web.place, f"web {line.web.name}"))
+                continue
+            walls.append(
+                Wall(
+                    part=length.part,
+                    title=length.title,
+                    place=line.web.place,
+                    slab=length.slab,
+                    solid=solid,
+                    room=room,
+                    web=length,
+                )
+            )
+    return tuple(walls), tuple(faults)
+
+
+def _runs_through(cutter: _Cutter, line: WebLine) -> bool:
+    name = line.web.name
+    return name in cutter.plane.rib.through and any(name == row.front for row in cutter.group[1:])
+
+
+def _no_room(place: Where, name: str) -> Finding:
+    return stop(
+        place,
+        "web-outside-section" if name.startswith("web") else "rib-outside-wing",
+        f"{name} finds no room between the skins",
+        "move it to where the section is deep enough",
+    )
+
+
+def _row_prism(layout: Layout, shell: Shell, row: Row, lines: dict[str, WebLine]) -> Body:
+    """Everything above and below a row, between the mid-planes of the webs that bound it."""
+    reach = reach_of(shell)
+    low, high = shell.butt_lines_m[0], shell.butt_lines_m[-1]
+    nose, _, level = chord_point(layout, low, 0.0)
+    front = _side_of_row(lines.get(row.front), nose - reach, low, high, reach)
+    rear = _side_of_row(lines.get(row.rear), nose + reach, low, high, reach)
+    return prism(np.concatenate((rear, front[::-1])), level - reach, level + reach)
+
+
+def _side_of_row(line: WebLine | None, beyond: float, low: float, high: float, reach: float) -> Floats:
+    if line is None:
+        return np.array([(beyond, low - reach), (beyond, high + reach)])
+    points = [point for point in line.points if low <= point[1] <= high]
+    first, last = (line.station(low - reach), low - reach), (line.station(high + reach), high + reach)
+    return np.array([first, *points, last])
+
+
+def _bays(layout: Layout, planes: tuple[RibPlane, ...]) -> Iterator[Bay]:
+    for row in layout.rows:
+        standing = [plane for plane in planes if row.name in plane.rib.rows]
+        for inboard, outboard in pairwise((None, *standing, None)):
+            name = f"{row.name}{inboard.rib.name if inboard is not None else '0'}"
+            yield Bay(name=name, row=row, inboard=inboard, outboard=outboard)
