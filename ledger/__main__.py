@@ -11,6 +11,10 @@ if TYPE_CHECKING:
     from pathlib import Path
 
 
+# As `ledger.cli.app` has it, which may be what was interrupted while it was loaded.
+_EXIT_INTERRUPTED = 130
+
+
 def open_screens(book: Path) -> None:
     """Open the screens on a book and come back when they are left."""
     from ledger.tui.app import run
@@ -24,9 +28,14 @@ def main() -> None:
     if sys.argv[1:] == ["--version"]:
         print(f"wingledger, version {__version__}")
         return
-    from ledger.cli.app import run_command
+    try:
+        from ledger.cli.app import run_command
 
-    sys.exit(run_command(sys.argv[1:], open_screens))
+        sys.exit(run_command(sys.argv[1:], open_screens))
+    except KeyboardInterrupt:
+        # Pressed while the program was still being loaded, or already ending.
+        print("stopped before the end", file=sys.stderr)
+        sys.exit(_EXIT_INTERRUPTED)
 
 
 if __name__ == "__main__":

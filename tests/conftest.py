@@ -10,6 +10,8 @@ skipped, and say so.
 from __future__ import annotations
 
 import csv
+import shutil
+from collections.abc import Callable
 from pathlib import Path
 
 import pytest
@@ -48,3 +50,20 @@ def pytest_collection_modifyitems(config: pytest.Config, items: list[pytest.Item
         for item in items:
             if is_hypothesis_test(getattr(item, "obj", None)):
                 item.add_marker("long")
+
+
+@pytest.fixture
+def box_plan(tmp_path: Path) -> Callable[..., Path]:
+    """Makes plan folders of the one-cell box: `box_plan("r2", {"laminates.csv": ("5600", "5000")})`."""
+    sample = Path(__file__).resolve().parents[1] / "sample_builds" / "one_cell_box" / "plan"
+
+    def make(name: str, changes: dict[str, tuple[str, str]] | None = None) -> Path:
+        folder = tmp_path / f"plan {name}"
+        shutil.copytree(sample, folder)
+        for file, (old, new) in {"plan.toml": ('"box"', f'"{name}"'), **(changes or {})}.items():
+            text = (folder / file).read_text(encoding="utf-8")
+            assert old in text, (file, old)
+            (folder / file).write_text(text.replace(old, new), encoding="utf-8")
+        return folder
+
+    return make

@@ -16,6 +16,7 @@ from ledger.book.schema import GUARDS, SchemaObject, expected_objects, objects_o
 from ledger.errors import Finding, Severity, Where
 from ledger.model.acts import Adopt
 from ledger.model.entry import FIRST_PREVIOUS, Entry, Logged
+from ledger.model.progress import Progress, unwatched
 
 _RESTORE = "compare with a backup, and restore it if the backup is whole"
 
@@ -32,7 +33,7 @@ class BookState:
     findings: tuple[Finding, ...]
 
 
-def look_through(connection: sqlite3.Connection) -> BookState:
+def look_through(connection: sqlite3.Connection, progress: Progress = unwatched) -> BookState:
     """Recompute every digest, replay every entry, and let SQLite check its file."""
     schema = tuple(_schema_findings(connection))
     missing = {finding.where.thing for finding in schema if finding.code == "table-missing"}
@@ -46,7 +47,9 @@ def look_through(connection: sqlite3.Connection) -> BookState:
             findings=schema,
         )
     walk = _Walk()
+    many, _ = last_of(connection)
     for entry in read_entries(connection):
+        progress("entries", min(walk.count, many), many)
         walk.take(entry)
     replayed = tuple(_replay_findings(connection, walk, missing))
     contents = () if "content" in missing else tuple(plan_files_lost(connection, walk.logged))

@@ -11,13 +11,19 @@ from ledger.book.chain import digest_of_entry
 from ledger.book.reading import last_of, read_entries
 from ledger.errors import LedgerError
 from ledger.model.entry import FIRST_PREVIOUS
+from ledger.model.progress import Progress, unwatched
+
+# Enough at a time that a copy of an ordinary book is made in a few steps.
+_PAGES = 1024
 
 
 class CopyDiffers(LedgerError):
     """A copy that does not read back as what was copied; it has been taken away again."""
 
 
-def copy_book(connection: sqlite3.Connection, target: Path) -> tuple[int, str]:
+def copy_book(
+    connection: sqlite3.Connection, target: Path, *, progress: Progress = unwatched
+) -> tuple[int, str]:
     """Copy an open book to a new file and verify it; seq and digest of its last entry.
 
     The copy is made beside the target and given its name only when it has been read back, so no
@@ -26,14 +32,19 @@ def copy_book(connection: sqlite3.Connection, target: Path) -> tuple[int, str]:
     Raises
         FileExistsError: the target exists.
         CopyDiffers: the copy does not read back.
+        Stopped: `progress` was told to end the work; nothing is left of the copy.
     """
     making = target.with_name(f".{target.name}.making-{os.getpid()}")
     try:
         with contextlib.closing(sqlite3.connect(making, isolation_level=None)) as copy:
-            connection.backup(copy)
+            connection.backup(
+                copy,
+                pages=_PAGES,
+                progress=lambda _, left, of: progress("pages copied", of - left, of),
+            )
             # A copy is one file: a side file left on the way would be lost with the next folder it moves to.
             copy.execute("PRAGMA journal_mode = DELETE")
-            last = _read_back(copy)
+            last = _read_back(copy, progress)
             _compare(connection, last)
             copy.execute("PRAGMA journal_mode = WAL")
         settle(making)
@@ -86,12 +97,14 @@ def _compare(connection: sqlite3.Connection, last: tuple[int, str]) -> None:
         raise CopyDiffers("the copy does not end with an entry of the book")
 
 
-def _read_back(copy: sqlite3.Connection) -> tuple[int, str]:
+def _read_back(copy: sqlite3.Connection, progress: Progress) -> tuple[int, str]:
     (verdict,) = copy.execute("PRAGMA integrity_check").fetchone()
     if verdict != "ok":
         raise CopyDiffers(f"SQLite finds the copy damaged: {verdict}")
     previous = FIRST_PREVIOUS
-    for entry in read_entries(copy):
+    many, _ = last_of(copy)
+    for done, entry in enumerate(read_entries(copy)):
+        progress("entries read back", min(done, many), many)
         if digest_of_entry(entry, previous) != entry.digest:
             # A book whose own digests no longer fit is copied as it is: the copy must not hide that.
             break

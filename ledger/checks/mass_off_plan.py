@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from ledger.checks.facts import Facts
 from ledger.errors import Finding, Severity, Where
+from ledger.model.fitting import pieces_that_no_longer_fit
 from ledger.units import show_small_mass
 
 CODE = "mass-off-plan"
@@ -13,7 +14,11 @@ _CHANCE = 2.0
 
 
 def mass_off_plan(facts: Facts) -> tuple[Finding, ...]:
-    """Each part begun that is beyond the tolerance of its class, where the plan declares one."""
+    """Each part begun that is beyond the tolerance of its class, where the plan declares one.
+
+    Where that is because the geometry has changed since a piece was begun, the piece is told of already.
+    """
+    told = {piece.part for piece, _ in pieces_that_no_longer_fit(facts.snapshot)}
     tolerances = dict(facts.snapshot.plan.tolerances)
     display = facts.snapshot.plan.display
     found = []
@@ -25,6 +30,8 @@ def mass_off_plan(facts: Facts) -> tuple[Finding, ...]:
         if abs(off) <= tolerance * part.estimated_kg or abs(off) <= _CHANCE * part.best_u_kg:
             continue
         cause = max(part.off_plan, key=lambda one: one.mass_kg if off > 0 else -one.mass_kg)
+        if part.part in told and cause.cause == "geometry":
+            continue
         found.append(
             Finding(
                 code=CODE,

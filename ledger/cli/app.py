@@ -25,6 +25,7 @@ EXIT_INTERRUPTED = 130
 COMMANDS: dict[str, str] = {
     "open": "ledger.cli.screens",
     "demo": "ledger.cli.demo",
+    "loft": "ledger.cli.loft",
     "start": "ledger.cli.plans",
     "adopt": "ledger.cli.plans",
     "enter": "ledger.cli.enter",
@@ -33,6 +34,7 @@ COMMANDS: dict[str, str] = {
     "weights": "ledger.cli.weights",
     "fuel": "ledger.cli.fuel",
     "trace": "ledger.cli.trace",
+    "compare": "ledger.cli.compare",
     "check": "ledger.cli.check",
     "backup": "ledger.cli.backup",
     "restore": "ledger.cli.backup",

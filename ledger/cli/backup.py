@@ -7,6 +7,7 @@ from pathlib import Path
 import click
 
 from ledger.cli.options import book_argument
+from ledger.cli.progress import watched
 from ledger.cli.say import print_findings, print_lines
 
 
@@ -17,7 +18,8 @@ def backup_command(book: Path, file: Path) -> None:
     """Copy BOOK to FILE, which must not exist yet, and check the copy."""
     from ledger.operations.back_up import back_up
 
-    made = back_up(book, file)
+    with watched() as progress:
+        made = back_up(book, file, progress=progress)
     _print_copy("copied", file, made.entries, made.last_digest, made.short_code)
     print_findings(made.findings)
 
@@ -32,7 +34,8 @@ def restore_command(file: Path, book: Path) -> None:
     """
     from ledger.operations.restore_book import restore_book
 
-    made = restore_book(file, book)
+    with watched() as progress:
+        made = restore_book(file, book, progress=progress)
     _print_copy("restored", book, made.entries, made.last_digest, made.short_code)
     print_findings(made.findings)
 
@@ -48,7 +51,8 @@ def rescue_command(damaged: Path, new: Path) -> None:
     """
     from ledger.operations.rescue_book import rescue_book
 
-    saved = rescue_book(damaged, new)
+    with watched() as progress:
+        saved = rescue_book(damaged, new, progress=progress)
     _print_copy("rescued", new, saved.entries, saved.last_digest, saved.short_code)
     print_lines((f"left out     {len(saved.left_out)}",))
     print_findings(saved.findings)

@@ -7,6 +7,7 @@ from pathlib import Path
 import click
 
 from ledger.cli.options import book_argument, json_option
+from ledger.cli.progress import watched
 from ledger.cli.say import print_findings, print_json, print_lines
 from ledger.errors import Severity
 
@@ -25,7 +26,8 @@ def check_command(ctx: click.Context, book: Path, last: str | None, as_json: boo
     """
     from ledger.operations.check_book import check_book
 
-    checked = check_book(book, last)
+    with watched() as progress:
+        checked = check_book(book, last, progress=progress)
     if as_json:
         from ledger.reports.figures import check_figures
 

@@ -35,10 +35,14 @@ def demo_command(open_screens: OpenScreens, folder: Path | None, report: bool) -
 
 
 def _print_report(book: Path) -> None:
+    from ledger.operations.compare_iterations import compare_iterations
+    from ledger.operations.open_build import open_build
     from ledger.operations.reckon_fuel import reckon_fuel
     from ledger.operations.weigh_up_build import weigh_up_build
     from ledger.reports.demo_lines import demo_lines
 
     weights = weigh_up_build(book)
     fuel = reckon_fuel(book)
-    print_lines(demo_lines(weights.report, fuel.report, fuel.findings, weights.display))
+    last = [iteration.name for iteration in open_build(book).snapshot.iterations[-2:]]
+    change = compare_iterations(book, *last) if len(last) == 2 else None
+    print_lines(demo_lines(weights.report, fuel.report, fuel.findings, weights.display, change=change))

@@ -2,14 +2,13 @@
 
 from __future__ import annotations
 
-import sys
-from collections.abc import Callable
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 import click
 
 from ledger.cli.options import book_argument, by_option, json_option, read_fields
+from ledger.cli.progress import watched
 from ledger.cli.say import print_findings, print_json, print_lines
 
 if TYPE_CHECKING:
@@ -71,7 +70,9 @@ def _enter_one(book: Path, kind: str, fields: dict[str, str], by: str | None, as
 def _enter_file(book: Path, file: Path, by: str | None, as_json: bool) -> None:
     from ledger.operations.log_file import log_file
 
-    print_entered(log_file(book, file, by=by, progress=_progress()), as_json, many=True)
+    with watched() as progress:
+        entered = log_file(book, file, by=by, progress=progress)
+    print_entered(entered, as_json, many=True)
 
 
 def print_entered(entered: tuple[LoggedEntry, ...], as_json: bool, *, many: bool = False) -> None:
@@ -127,14 +128,3 @@ def _kinds_with_fields() -> list[tuple[str, str]]:
         free = [field.word for field in kind.fields if not field.required and field.word not in grouped]
         rows.append((kind.word, " ".join([*needed, *([f"[{' '.join(free)}]"] if free else [])])))
     return rows
-
-
-def _progress() -> Callable[[int, int], None] | None:
-    """Rows done, on one line that is written over; only where a person is watching."""
-    if not sys.stderr.isatty():
-        return None
-
-    def tell(done: int, of: int) -> None:
-        click.echo(f"\r{done} of {of} rows", nl=done == of, err=True)
-
-    return tell

@@ -8,6 +8,7 @@ from pathlib import Path
 import click
 
 from ledger.cli.options import book_argument, json_option
+from ledger.cli.progress import watched
 from ledger.cli.say import print_findings, print_json, print_lines
 from ledger.errors import Finding, Refused, Severity, Where
 from ledger.model.attitude import Attitude, NotUpward
@@ -49,13 +50,16 @@ def fuel_command(
     from ledger.operations.reckon_fuel import reckon_fuel
 
     temperature_k = _temperature(temperature)
-    fuel = reckon_fuel(
-        book,
-        attitudes=attitudes,
-        asked=_asked(pitch, roll),
-        levels=levels,
-        temperature_k=temperature_k,
-    )
+    asked = _asked(pitch, roll)
+    with watched() as progress:
+        fuel = reckon_fuel(
+            book,
+            attitudes=attitudes,
+            asked=asked,
+            levels=levels,
+            temperature_k=temperature_k,
+            progress=progress,
+        )
     if as_json:
         from ledger.reports.figures import fuel_figures
 

@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 import click
 
 from ledger.cli.options import book_argument, by_option, json_option
+from ledger.cli.progress import watched
 from ledger.cli.say import print_findings, print_json, print_lines
 
 if TYPE_CHECKING:
@@ -23,7 +24,15 @@ def start_command(book: Path, plan: Path, by: str | None, as_json: bool) -> None
     """Make a new BOOK from the plan folder PLAN."""
     from ledger.operations.start_book import start_book
 
-    _print_adopted(start_book(book, plan, by=by), as_json, began=True)
+    with watched() as progress:
+        adopted = start_book(book, plan, by=by, progress=progress)
+    if as_json:
+        _print_figures(adopted)
+    else:
+        from ledger.reports.entry_lines import started_lines
+
+        print_lines(started_lines(adopted.iteration, adopted.seq, adopted.digest))
+    print_findings(adopted.findings)
 
 
 @click.command("adopt")
@@ -36,20 +45,40 @@ def adopt_command(book: Path, plan: Path, by: str | None, preview: bool, as_json
     """Take the plan folder PLAN into BOOK as its next iteration."""
     from ledger.operations.adopt_plan import adopt_plan
 
-    _print_adopted(adopt_plan(book, plan, by=by, preview=preview), as_json, preview=preview)
+    with watched() as progress:
+        adopted = adopt_plan(book, plan, by=by, preview=preview, progress=progress)
+    if as_json:
+        _print_figures(adopted, preview=preview)
+    elif adopted.comparison is not None:
+        from ledger.reports.compare_lines import compare_lines
+
+        print_lines(compare_lines(adopted.comparison, str(book)))
+    else:
+        from ledger.reports.entry_lines import look_closer_lines, started_lines, unfit_lines
+
+        unfit = tuple((one.piece, one.state, one.why) for one in adopted.no_longer_fits)
+        print_lines(
+            (
+                *started_lines(adopted.iteration, adopted.seq, adopted.digest),
+                *unfit_lines(unfit),
+                *look_closer_lines(str(book), adopted.before, adopted.iteration, len(unfit)),
+            )
+        )
+    print_findings(adopted.findings)
 
 
-def _print_adopted(adopted: Adopted, as_json: bool, *, preview: bool = False, began: bool = False) -> None:
-    from ledger.reports.entry_lines import adopted_figures, started_lines, unfit_lines
+def _print_figures(adopted: Adopted, *, preview: bool = False) -> None:
+    from ledger.reports.compare_figures import adopted_figures
 
     # A preview wrote no entry, so it has no number and no digest to keep.
     seq, digest = (None, None) if preview else (adopted.seq, adopted.digest)
-    unfit = tuple((one.piece, one.state, one.why) for one in adopted.no_longer_fits)
-    if as_json:
-        print_json(adopted_figures(adopted.iteration, seq, digest, unfit, adopted.findings))
-    else:
-        if preview:
-            print_lines(("PREVIEW: nothing was written",))
-        # Of a new book nothing is built yet.
-        print_lines((*started_lines(adopted.iteration, seq, digest), *(() if began else unfit_lines(unfit))))
-    print_findings(adopted.findings)
+    print_json(
+        adopted_figures(
+            iteration=adopted.iteration,
+            seq=seq,
+            digest=digest,
+            no_longer_fits=adopted.no_longer_fits,
+            comparison=adopted.comparison,
+            findings=adopted.findings,
+        )
+    )

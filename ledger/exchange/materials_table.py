@@ -55,9 +55,9 @@ class Named(Generic[_R]):
         return self.names is None or name in self.names
 
 
-def read_materials(content: bytes, problems: Problems) -> Named[Material]:
+def read_materials(content: bytes, problems: Problems, file: str = MATERIALS) -> Named[Material]:
     """The materials of a plan; each problem at its cell."""
-    rows = read_table(MATERIALS, content, _MATERIAL_COLUMNS, ("material", "kind"), problems)
+    rows = read_table(file, content, _MATERIAL_COLUMNS, ("material", "kind"), problems)
     if rows is None:
         return Named(records={}, names=None)
     found: dict[str, TableRow] = {}
@@ -105,9 +105,11 @@ def _ratio(row: TableRow) -> float | None:
         return None
 
 
-def read_laminates(content: bytes, materials: Named[Material], problems: Problems) -> Named[Laminate]:
+def read_laminates(
+    content: bytes, materials: Named[Material], problems: Problems, file: str = LAMINATES
+) -> Named[Laminate]:
     """The laminates of a plan, their steps in order; each problem at its cell."""
-    rows = read_table(LAMINATES, content, _LAMINATE_COLUMNS, ("laminate",), problems)
+    rows = read_table(file, content, _LAMINATE_COLUMNS, ("laminate",), problems)
     if rows is None:
         return Named(records={}, names=None)
     named = [(name, row) for row in rows if (name := row.wanted("laminate", "the name of the laminate"))]

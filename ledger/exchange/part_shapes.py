@@ -14,6 +14,7 @@ from ledger.exchange.part_row import PartRow, made_of_part, origin_m
 from ledger.exchange.plan_files import FileRefused
 from ledger.mass.laminate import laminate_thickness
 from ledger.model.plan import Face, Form, Laminate, Material, MaterialKind, Part, Placement, Shape
+from ledger.model.progress import Progress, unwatched
 from ledger.model.vectors import NO_SPREAD, Matrix, Vector
 
 if TYPE_CHECKING:
@@ -27,10 +28,15 @@ def read_shapes(
     geometry: GeometryFiles,
     materials: Mapping[str, Material],
     laminates: Mapping[str, Laminate],
+    progress: Progress = unwatched,
 ) -> tuple[tuple[Part, ...], tuple[Shape, ...]]:
     """Parts and their shapes, in the order of the rows; what cannot be shaped is noted at its row."""
     shaping = _Shaping(rows, geometry, materials, laminates)
-    shaped = [(row, shaping.shaped(row)) for row in rows if not row.takes_mirrored_geometry]
+    shaped = []
+    for done, row in enumerate(rows):
+        if not row.takes_mirrored_geometry:
+            progress(f"plan, part {row.name}", done, len(rows))
+            shaped.append((row, shaping.shaped(row)))
     own = {row.name.casefold(): one for row, one in shaped if one is not None}
     found = []
     for row in rows:

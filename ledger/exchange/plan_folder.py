@@ -18,6 +18,7 @@ from ledger.exchange.problems import Problems
 from ledger.exchange.tanks_toml import TANKS, ReadTanks, read_tanks
 from ledger.exchange.toml_text import TomlTable, read_toml
 from ledger.model.plan import Laminate, Material, Part, Plan, Shape
+from ledger.model.progress import Progress, unwatched
 from ledger.model.tanks import Cell, Tanks
 
 LOADING = "loading.toml"
@@ -32,11 +33,14 @@ class ReadPlan:
     findings: tuple[Finding, ...]
 
 
-def read_plan(folder: Path, cache: GeometryCache | None = None) -> ReadPlan:
-    """Read a plan folder.
+def read_plan(
+    folder: Path, cache: GeometryCache | None = None, *, progress: Progress = unwatched
+) -> ReadPlan:
+    """Read a plan folder; `progress` is told each part and each cell whose geometry comes next.
 
     Raises
         WrongUse: there is no such folder.
+        Stopped: `progress` was told to end the work.
     """
     if not folder.is_dir():
         what = "is not a folder" if folder.exists() else "does not exist"
@@ -49,21 +53,23 @@ def read_plan(folder: Path, cache: GeometryCache | None = None) -> ReadPlan:
                 do="give the path of a folder with plan.toml in it",
             )
         )
-    return _read(FolderFiles(folder), cache)
+    return _read(FolderFiles(folder), cache, progress)
 
 
-def read_plan_files(files: Mapping[str, bytes], cache: GeometryCache | None = None) -> ReadPlan:
-    """Read a plan from the content of its files, by path."""
-    return _read(StoredFiles(files), cache)
+def read_plan_files(
+    files: Mapping[str, bytes], cache: GeometryCache | None = None, *, progress: Progress = unwatched
+) -> ReadPlan:
+    """Read a plan from the content of its files, by path; `progress` as in `read_plan`."""
+    return _read(StoredFiles(files), cache, progress)
 
 
-def _read(files: PlanFiles, cache: GeometryCache | None) -> ReadPlan:
+def _read(files: PlanFiles, cache: GeometryCache | None, progress: Progress) -> ReadPlan:
     problems = Problems()
     head = _head(files, problems)
     materials, laminates = _tables(files, problems)
     geometry = GeometryFiles(files, cache if cache is not None else MemoryCache())
-    parts, shapes = _parts(files, geometry, materials, laminates, problems)
-    tanks, digests = _tanks(files, geometry, materials, problems)
+    parts, shapes = _parts(files, geometry, materials, laminates, problems, progress=progress)
+    tanks, digests = _tanks(files, geometry, materials, problems, progress=progress)
     _keep_loading(files, problems)
     if head is not None:
         check_filling(head, bool(tanks.tanks), problems)
@@ -129,6 +135,8 @@ def _parts(
     materials: Named[Material],
     laminates: Named[Laminate],
     problems: Problems,
+    *,
+    progress: Progress,
 ) -> tuple[tuple[Part, ...], tuple[Shape, ...]]:
     content = _fetched(files, PARTS, problems)
     if content is None:
@@ -137,22 +145,29 @@ def _parts(
         )
         return (), ()
     rows = read_parts(content, materials, laminates, problems)
-    return read_shapes(rows, geometry, materials.records, laminates.records)
+    return read_shapes(rows, geometry, materials.records, laminates.records, progress)
 
 
 def _tanks(
-    files: PlanFiles, geometry: GeometryFiles, materials: Named[Material], problems: Problems
+    files: PlanFiles,
+    geometry: GeometryFiles,
+    materials: Named[Material],
+    problems: Problems,
+    *,
+    progress: Progress,
 ) -> tuple[Tanks, tuple[str, ...]]:
     content = _fetched(files, TANKS, problems)
     read = None if content is None else read_tanks(content, materials, problems)
     if read is None:
         return Tanks(), ()
-    return read.tanks, _cell_digests(read, geometry)
+    return read.tanks, _cell_digests(read, geometry, progress)
 
 
-def _cell_digests(read: ReadTanks, geometry: GeometryFiles) -> tuple[str, ...]:
+def _cell_digests(read: ReadTanks, geometry: GeometryFiles, progress: Progress) -> tuple[str, ...]:
     digests = []
-    for table, cell in zip(read.cell_tables, read.tanks.cells, strict=True):
+    cells = read.tanks.cells
+    for done, (table, cell) in enumerate(zip(read.cell_tables, cells, strict=True)):
+        progress(f"plan, cell {cell.name}", done, len(cells))
         try:
             digests.append(geometry.cell_digest(cell.mesh, cell.mesh_unit))
         except (GeometryRefused, FileRefused) as refused:

@@ -12,12 +12,14 @@ from ledger.model.plan import FuelGrade, PartClass
 from ledger.units import Dimension, Display
 
 PLAN = "plan.toml"
+FORMAT = "plan-1"
 GRADES = ("avgas", "jet", "mogas", "diesel")
 # The name that a command gives to an attitude asked for by its angles.
 RESERVED_ATTITUDE = "asked"
 
 _KEYS = ("format", "name", "title", "display", "fuel", "attitude", "tolerance", "growth")
-_ATTITUDE_KEYS = ("name", "pitch_deg", "roll_deg", "ax_g", "ay_g", "az_g", "seen", "fill", "flight")
+FUEL_KEYS = ("grade", "density_15C", "feed_flow")
+ATTITUDE_KEYS = ("name", "pitch_deg", "roll_deg", "ax_g", "ay_g", "az_g", "seen", "fill", "flight")
 _PLAIN_WORD = re.compile(r"[A-Za-z0-9][A-Za-z0-9._-]{0,63}")
 
 
@@ -41,7 +43,12 @@ def read_plan_head(content: bytes, problems: Problems) -> PlanHead | None:
     if whole is None:
         return None
     whole.refuse_others(_KEYS)
-    _check_format(whole)
+    check_format(whole, FORMAT)
+    return read_head(whole)
+
+
+def read_head(whole: TomlTable) -> PlanHead:
+    """Name, title, display, fuel, attitudes, tolerances and growths, in a plan or in a layout."""
     name = whole.text("name", wanted='"r1", the name of this iteration')
     if name is not None and _PLAIN_WORD.fullmatch(name) is None:
         whole.stop(
@@ -63,27 +70,28 @@ def read_plan_head(content: bytes, problems: Problems) -> PlanHead | None:
     )
 
 
-def check_filling(head: PlanHead, has_tanks: bool, problems: Problems) -> None:
+def check_filling(head: PlanHead, has_tanks: bool, problems: Problems, file: str = PLAN) -> None:
     """Note a plan with tanks that says no attitude to fill them in."""
     if has_tanks and not head.says_where_filled:
         from ledger.errors import Where
 
         problems.stop(
             "fill-attitude-missing",
-            Where(file=PLAN, column="attitude"),
+            Where(file=file, column="attitude"),
             "there are tanks and no attitude in which they are filled",
             "write fill = true at the attitude on the ground",
         )
 
 
-def _check_format(whole: TomlTable) -> None:
-    said = whole.text("format", wanted='"plan-1"')
-    if said is not None and said != "plan-1":
+def check_format(whole: TomlTable, wanted: str) -> None:
+    """Note a file that is not of the one format that is read here."""
+    said = whole.text("format", wanted=f'"{wanted}"')
+    if said is not None and said != wanted:
         whole.stop(
             "format-unknown",
             "format",
             f"{said!r} is not a format this program reads",
-            'write format = "plan-1"',
+            f'write format = "{wanted}"',
         )
 
 
@@ -91,7 +99,7 @@ def _fuel(whole: TomlTable) -> FuelGrade | None:
     table = whole.table("fuel")
     if table is None:
         return None
-    table.refuse_others(("grade", "density_15C", "feed_flow"))
+    table.refuse_others(FUEL_KEYS)
     grade = table.choice("grade", GRADES, required=True)
     density = table.quantity("density_15C", Dimension.DENSITY)
     flow = table.quantity("feed_flow", Dimension.FLOW)
@@ -125,7 +133,7 @@ def _attitudes(whole: TomlTable) -> tuple[Attitude, ...]:
 
 def _attitude(table: TomlTable) -> Attitude | None:
     before = table.problems.count
-    table.refuse_others(_ATTITUDE_KEYS)
+    table.refuse_others(ATTITUDE_KEYS)
     name = table.text("name", wanted='"ground"')
     if name is not None and name.casefold() == RESERVED_ATTITUDE:
         table.stop(

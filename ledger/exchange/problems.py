@@ -39,6 +39,11 @@ class Problems:
         """How many there are, to tell whether a step added any."""
         return len(self._findings)
 
+    @property
+    def stops(self) -> int:
+        """How many of them forbid to go on, to tell whether a step added any."""
+        return sum(finding.severity is Severity.STOP for finding in self._findings)
+
     def findings(self) -> tuple[Finding, ...]:
         """Everything found, each once."""
         return tuple(dict.fromkeys(self._findings))

@@ -40,7 +40,7 @@ def read_tanks(content: bytes, materials: Named[Material], problems: Problems) -
     if whole is None:
         return None
     whole.refuse_others(("length_unit", "tank", "cell", "opening", "feed"))
-    unit = _length_unit(whole)
+    unit = length_unit(whole)
     cells = _cells(whole, unit, materials)
     names = [table.values.get("name") for table in whole.tables("cell")]
     known = {name for name in names if isinstance(name, str)}
@@ -60,7 +60,8 @@ def read_tanks(content: bytes, materials: Named[Material], problems: Problems) -
     return ReadTanks(tanks=found, cell_tables=tuple(table for table, _ in cells))
 
 
-def _length_unit(whole: TomlTable) -> str | None:
+def length_unit(whole: TomlTable) -> str | None:
+    """The unit of bare lengths, None where the file says none."""
     text = whole.text("length_unit")
     # After one wrong unit at the top, every length below would be told to have none.
     return None if text is None else _unit(whole, "length_unit", text) or "m"

@@ -40,8 +40,13 @@ class TomlTable:
 
     def where(self, key: str | None = None) -> Where:
         """The line of a key, or of the table itself."""
-        row = self.lines.get((*self.path, key)) if key is not None else None
-        return Where(file=self.file, row=row or self.lines.get(self.path), column=key)
+        path = self.path if key is None else (*self.path, key)
+        if (*path, 0) in self.lines:
+            path = (*path, 0)
+        # A table written inside another value has no line of its own.
+        while path and path not in self.lines:
+            path = path[:-1]
+        return Where(file=self.file, row=self.lines.get(path), column=key)
 
     def stop(self, code: str, key: str | None, what: str, do: str) -> None:
         """A problem at a key of this table."""
@@ -73,7 +78,7 @@ class TomlTable:
                 self.stop("key-missing", key, f"{key} is missing", f"write {key} = {wanted}")
             return None
         if not isinstance(value, str):
-            self.stop("value-wrong", key, f"{_shown(value)} is not text", f'write {key} = "{_shown(value)}"')
+            self.stop("value-wrong", key, f"{shown(value)} is not text", f'write {key} = "{shown(value)}"')
             return None
         return value.strip()
 
@@ -91,7 +96,7 @@ class TomlTable:
         """true or false."""
         value = self.values.get(key, default)
         if not isinstance(value, bool):
-            self.stop("value-wrong", key, f"{_shown(value)} is neither true nor false", f"write {key} = true")
+            self.stop("value-wrong", key, f"{shown(value)} is neither true nor false", f"write {key} = true")
             return default
         return value
 
@@ -100,7 +105,7 @@ class TomlTable:
         value = self.values.get(key)
         if value is None:
             return default
-        return self._finite(key, value)
+        return self.finite(key, value)
 
     def quantity(
         self, key: str, dimension: Dimension, *, bare_unit: str | None = None, zero: bool = False
@@ -109,23 +114,23 @@ class TomlTable:
         value = self.values.get(key)
         if value is None:
             return None
-        found = self._measured(key, value, dimension, bare_unit)
+        found = self.measured(key, value, dimension, bare_unit)
         if found is None:
             return None
         if found < 0 or (found == 0 and not zero):
             size = "zero" if found == 0 else "below zero"
-            self.stop("value-out-of-range", key, f"{_shown(value)} is {size}", "write a number above zero")
+            self.stop("value-out-of-range", key, f"{shown(value)} is {size}", "write a number above zero")
             return None
         return found
 
     def point(self, key: str, value: object, bare_unit: str | None) -> tuple[float, float, float] | None:
         """Three lengths in metres."""
         if not isinstance(value, list) or len(value) != 3:
-            self.stop("value-wrong", key, f"{_shown(value)} is not a point", "write three numbers, [x, y, z]")
+            self.stop("value-wrong", key, f"{shown(value)} is not a point", "write three numbers, [x, y, z]")
             return None
         found = []
         for one in value:
-            metres = self._measured(key, one, Dimension.LENGTH, bare_unit)
+            metres = self.measured(key, one, Dimension.LENGTH, bare_unit)
             if metres is None:
                 return None
             found.append(metres)
@@ -152,11 +157,12 @@ class TomlTable:
     def _inner(self, values: Mapping[str, Any], path: Path) -> TomlTable:
         return TomlTable(file=self.file, values=values, path=path, lines=self.lines, problems=self.problems)
 
-    def _measured(self, key: str, value: object, dimension: Dimension, bare_unit: str | None) -> float | None:
+    def measured(self, key: str, value: object, dimension: Dimension, bare_unit: str | None) -> float | None:
+        """A value of a key, or one of its list, in SI and of either sign; None with a finding."""
         if isinstance(value, str):
             text, unit = value, None
         else:
-            number = self._finite(key, value)
+            number = self.finite(key, value)
             if number is None:
                 return None
             if bare_unit is None and dimension is Dimension.LENGTH:
@@ -169,11 +175,10 @@ class TomlTable:
             self.stop("value-unreadable", key, error.what, _quoted(error.do, key, text))
             return None
 
-    def _finite(self, key: str, value: object) -> float | None:
+    def finite(self, key: str, value: object) -> float | None:
+        """A value of a key, or one of its list, as a bare number; None with a finding."""
         if isinstance(value, bool) or not isinstance(value, (int, float)):
-            self.stop(
-                "value-wrong", key, f"{_shown(value)} is not a number", f"write for example {key} = 2.5"
-            )
+            self.stop("value-wrong", key, f"{shown(value)} is not a number", f"write for example {key} = 2.5")
             return None
         try:
             number = float(value)
@@ -275,10 +280,16 @@ def _open_after(line: str, depth: int, quote: str | None) -> tuple[int, str | No
 def _quoted(do: str, key: str, text: str) -> str:
     """`write 715 kg/m3 or …` as it stands in this file: `write density_15C = "715 kg/m3"`."""
     wanted = do.removeprefix("write ").split(" or ")[0]
-    return f'write {key} = "{wanted}"' if wanted.startswith(text) else do
+    return f'write {as_key(key)} = "{wanted}"' if wanted.startswith(text) else do
 
 
-def _shown(value: object) -> str:
+def as_key(key: str) -> str:
+    """A key as a file has to write it: quoted, where it is not of plain letters."""
+    return key if re.fullmatch(r"[A-Za-z0-9_-]+", key) else f'"{key}"'
+
+
+def shown(value: object) -> str:
+    """A value as it is quoted in a message."""
     if isinstance(value, bool):
         return str(value).lower()
     return str(value) if not isinstance(value, str) else repr(value)

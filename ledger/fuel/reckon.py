@@ -16,6 +16,8 @@ from ledger.fuel.walls import far_openings, overlaps
 from ledger.geometry.closed_cell import ClosedCell
 from ledger.model.attitude import Attitude
 from ledger.model.plan import FuelGrade
+from ledger.model.progress import Progress, unwatched
+from ledger.model.steps import Steps
 from ledger.model.tanks import Tanks
 
 
@@ -30,6 +32,7 @@ def reckon(
     listed: tuple[str, ...] | None = None,
     asked: Attitude | None = None,
     temperature_k: float | None = None,
+    progress: Progress = unwatched,
 ) -> FuelReport:
     """Reckon all tanks of a plan.
 
@@ -39,6 +42,7 @@ def reckon(
         whatever is listed.
     asked : one more attitude to show; it never counts as flight.
     temperature_k : of the fuel, for masses; 15 C where None.
+    progress : told every attitude the plan is stood at, then every tank at each attitude shown.
     Raises
         ValueError: levels below 1, or a listed name that is no attitude of the plan.
     """
@@ -46,11 +50,15 @@ def reckon(
     if not tanks.tanks:
         return FuelReport(tanks=(), feeds=())
     system = System.of(tanks, cells, displaced)
-    stoods = _stand_all(system, attitudes, listed)
+    chosen = _that_count(attitudes, listed)
+    showing = sum(listed is None or one.name in listed for one in chosen) + (asked is not None)
+    steps = Steps(len(chosen) + len(tanks.tanks) * showing, progress)
+    stoods = _stand_all(system, chosen, steps)
     shown = [stood for stood in stoods if listed is None or stood.attitude.name in listed]
     if asked is not None:
         shown.append(Stood(system, replace(asked, flight=False, fill=False)))
     wanted = Wanted(
+        told=steps,
         steps=levels,
         density_kg_m3=density_at(fuel, temperature_k),
         ground=next((stood for stood in stoods if stood.attitude.fill), None),
@@ -58,7 +66,9 @@ def reckon(
         listed=tuple(shown),
         any_stood=next(iter((*stoods, *shown)), None) or Stood(system, Attitude(name="level")),
     )
-    return _report(system, wanted)
+    report = _report(system, wanted)
+    steps.end("fuel")
+    return report
 
 
 def _refuse_wrong_use(attitudes: Sequence[Attitude], levels: int, listed: tuple[str, ...] | None) -> None:
@@ -87,15 +97,21 @@ def _report(system: System, wanted: Wanted) -> FuelReport:
     )
 
 
-def _stand_all(
-    system: System, attitudes: Sequence[Attitude], listed: tuple[str, ...] | None
-) -> tuple[Stood, ...]:
-    """Every attitude that counts: flown, filled in, or shown."""
+def _that_count(attitudes: Sequence[Attitude], listed: tuple[str, ...] | None) -> tuple[Attitude, ...]:
+    """Every attitude that is flown, filled in, or shown."""
     return tuple(
-        Stood(system, attitude)
+        attitude
         for attitude in attitudes
         if attitude.flight or attitude.fill or listed is None or attitude.name in listed
     )
+
+
+def _stand_all(system: System, attitudes: Sequence[Attitude], steps: Steps) -> tuple[Stood, ...]:
+    stoods = []
+    for attitude in attitudes:
+        steps.take(f"fuel, {attitude.name}")
+        stoods.append(Stood(system, attitude))
+    return tuple(stoods)
 
 
 def _airless(flights: Sequence[Stood], tanks: Tanks) -> tuple[Airless, ...]:

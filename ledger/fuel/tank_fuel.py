@@ -15,6 +15,7 @@ from ledger.fuel.report import AttitudeFuel, DrainedCell, DrainedRow, FilledCell
 from ledger.fuel.stood import Stood
 from ledger.fuel.tank_tables import Draining, table_rows
 from ledger.fuel.worst import UNKNOWN, Worst, usable_uncertainty, worst_of
+from ledger.model.steps import Steps
 from ledger.model.tanks import Outside, Tank
 
 
@@ -24,6 +25,7 @@ class Wanted:
 
     ground : where the tanks are filled. flights : all flight attitudes. listed : those to show.
     any_stood : one of them, or a level one where the plan has none, for what no attitude changes.
+    told : who is told each attitude of a tank before it is reckoned.
     """
 
     steps: int
@@ -32,6 +34,7 @@ class Wanted:
     flights: tuple[Stood, ...]
     listed: tuple[Stood, ...]
     any_stood: Stood
+    told: Steps
 
 
 def tank_fuel(tank: Tank, group: Group, filled: Filled | None, wanted: Wanted) -> TankFuel:
@@ -89,6 +92,7 @@ def _unfilled(tank: Tank, stood: Stood) -> tuple[FilledCell, ...]:
 def _attitude(
     tank: Tank, group: Group, stood: Stood, filled: Filled | None, *, worst_m3: float | None, wanted: Wanted
 ) -> AttitudeFuel:
+    wanted.told.take(f"fuel, {tank.name} at {stood.attitude.name}")
     bays = [stood.bays[cell] for cell in tank.cells]
     pool = Pool(bays)
     levels = np.linspace(pool.lowest_m, pool.highest_m, wanted.steps + 1)

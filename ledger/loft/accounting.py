@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable, Sequence
+
 from ledger.loft.bays import TankBay
 from ledger.loft.bodies import Body, body_of, united
 from ledger.loft.division import Division
@@ -12,7 +14,8 @@ from ledger.loft.shell import Shell, skin_solids, tail_solids
 
 # Faces that lie in one another to the last bits are what a solid library is least sure of, so the union
 # is taken in several attitudes: what truly overlaps does so in all of them.
-_ATTITUDES_DEG = ((0.0, 0.0, 0.0), (17.0, 31.0, 43.0), (71.0, -29.0, 13.0))
+Attitude = tuple[float, float, float]
+_ATTITUDES_DEG: tuple[Attitude, ...] = ((0.0, 0.0, 0.0), (17.0, 31.0, 43.0), (71.0, -29.0, 13.0))
 NEXT_TO_NOTHING = 1e-6
 
 
@@ -45,36 +48,57 @@ def account(
         "cells_m3": _volume(spaces),
         "dry_m3": dry.volume(),
     }
-    pastes = [wall.solid - united(_plates_of(wall.part, panels)) for wall in (*division.ribs, *division.webs)]
-    everything = [*skins, *tails, *plates, *pastes, *solids, *spaces, dry]
+    everything = [*skins, *tails, *walls, *solids, *spaces, dry]
     total = sum(figures.values())
+    enough = NEXT_TO_NOTHING * box.volume()
     return Account(
         box_m3=box.volume(),
         apart_m3=box.volume() - total,
-        shared_m3=_least_shared(everything, NEXT_TO_NOTHING * box.volume()),
+        shared_m3=_least(lambda turn: _shared(everything, turn), enough)
+        + _beyond_walls(division, panels, enough),
         **figures,
     )
 
 
-def _plates_of(part: str, panels: tuple[FlatPanel, ...]) -> list[Body]:
-    return [panel.solid for panel in panels if panel.wall.part == part]
+def _beyond_walls(division: Division, panels: tuple[FlatPanel, ...], enough_m3: float) -> float:
+    """What panels claim outside the room of their own wall, or twice within it.
+
+    A wall less its panels is no part of the union: a plate whose faces lie in those of the wall to all
+    but the last bits is what a difference is least sure of.
+    """
+    walls = (*division.ribs, *division.webs)
+    beyond = 0.0
+    for wall in walls:
+        plates = [panel.solid for panel in panels if panel.wall is wall]
+        inside = wall.solid.volume()
+        beyond += _least(
+            lambda turn, bodies=(wall.solid, *plates), inside=inside: _together(bodies, turn) - inside,
+            enough_m3 / len(walls),
+        )
+        if len(plates) > 1:
+            beyond += _least(lambda turn, plates=plates: _shared(plates, turn), enough_m3 / len(walls))
+    return beyond
 
 
-def _least_shared(bodies: list[Body], enough_m3: float) -> float:
+def _least(measured: Callable[[Attitude], float], enough_m3: float) -> float:
+    """The least of what is measured in several attitudes, as soon as it is little enough."""
     least = float("inf")
     for turn in _ATTITUDES_DEG:
-        least = min(least, _shared(bodies, turn), key=abs)
+        least = min(least, measured(turn), key=abs)
         if abs(least) <= enough_m3:
             break
     return least
 
 
-def _shared(bodies: list[Body], turn_deg: tuple[float, float, float]) -> float:
-    turned = [body.rotate(turn_deg) for body in bodies]
-    return _volume(turned) - float(united(turned).volume())
+def _shared(bodies: Sequence[Body], turn_deg: Attitude) -> float:
+    return _volume(bodies) - _together(bodies, turn_deg)
 
 
-def _volume(bodies: list[Body]) -> float:
+def _together(bodies: Sequence[Body], turn_deg: Attitude) -> float:
+    return float(united(body.rotate(turn_deg) for body in bodies).volume())
+
+
+def _volume(bodies: Sequence[Body]) -> float:
     return float(sum(body.volume() for body in bodies))
 
 

@@ -31,8 +31,8 @@ class TankBay:
 class Spot:
     """A stretch of one panel between its neighbours, and the two bays it parts, front or inboard one first.
 
-    `label` is how a layout names it: `A3` is rib 3 in row A, `web M3` is web M outboard
-    of rib 3. The stretch runs from `start_m` to `end_m` in the panel's own X.
+    `label` is how a layout names it: `A3` is rib 3 in row A, `M3` is web M outboard of rib 3; where both
+    could be meant, the rib is. The stretch runs from `start_m` to `end_m` in the panel's own X.
     """
 
     label: str
@@ -180,9 +180,7 @@ def _web_spots(layout: Layout, division: Division, panel: FlatPanel) -> Iterator
         start, end = max(low, at + half), min(high, after - next_half)
         if start < end:
             bays = tuple(_bay_at(division, row, panel, 0.5 * (start + end)) for row in sides)
-            yield Spot(
-                label=f"web {name}{rib}", panel=panel, start_m=start, end_m=end, bays=(bays[0], bays[1])
-            )
+            yield Spot(label=f"{name}{rib}", panel=panel, start_m=start, end_m=end, bays=(bays[0], bays[1]))
 
 
 def _row_beside(layout: Layout, web: str, *, front: bool) -> Row | None:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
+from itertools import pairwise
 from typing import Any
 
 import numpy as np
@@ -19,6 +20,7 @@ Booleans = NDArray[np.bool_]
 # Far enough beyond any wing that a prism of this height is as good as endless.
 BEYOND_M = 1e3
 _TOLERANCE_M = 1e-12
+_NO_AREA_M2 = 1e-13
 
 
 def body_of(mesh: Mesh) -> Body:
@@ -88,9 +90,16 @@ def tube(rings: Floats) -> Mesh:
     """
     around = rings.shape[1]
     label = np.concatenate([number * around + _first_equal(ring) for number, ring in enumerate(rings)])
-    faces = strips(rings).reshape(-1, 3)
-    ends = (_filled(rings[0], label[:around]), _filled(rings[-1], label[-around:])[:, ::-1])
-    return tidied(rings.reshape(-1, 3), label[np.concatenate((faces, *ends))])
+    corners = rings.reshape(-1, 3)
+    faces = _with_three_corners(label[strips(rings).reshape(-1, 3)])
+    for names, turn in ((label[:around], 1), (label[-around:], -1)):
+        chain = names[names != np.roll(names, 1)]
+        flat = _flattened(corners[chain])
+        if flat is None:
+            faces = _cut_at(faces, chain[::turn])
+        else:
+            faces = np.concatenate((faces, chain[_filled(flat)][:, ::turn]))
+    return tidied(corners, faces)
 
 
 def strips(rings: Floats) -> Indices:
@@ -121,22 +130,36 @@ def _first_equal(ring: Floats) -> Indices:
     return np.asarray(first[inverse.ravel()], dtype=np.intp)
 
 
-def _filled(ring: Floats, label: Indices) -> Indices:
-    """Triangles over the end of a tube, by the labels of its corners, anticlockwise as the ring runs."""
+def _filled(flat: Floats) -> Indices:
+    """Triangles over a polygon (n, 2), anticlockwise as it runs."""
     from manifold3d import triangulate
 
-    offset = int(label.min()) - int(label.min()) % len(ring)
-    local = label - offset
-    kept = [int(one) for place, one in enumerate(local) if one != local[place - 1]]
-    triangles = np.asarray(triangulate([_flattened(ring[kept])]), dtype=np.intp)
-    return np.asarray(np.array(kept, dtype=np.intp)[triangles] + offset)
+    return np.asarray(triangulate([flat]), dtype=np.intp)
 
 
-def _flattened(ring: Floats) -> Floats:
-    """A ring in its own plane, (n, 2), anticlockwise."""
+def _cut_at(faces: Indices, chain: Indices) -> Indices:
+    """For an end drawn out to a line: the face on its whole length cut at each corner of the chain on it.
+
+    Filled with triangles of no area the mesh would be closed too, but the solid library gets rid of
+    those by turning their neighbours' edges, which moves faces that are shared with other solids.
+    """
+    for turn in range(3):
+        a, b, apex = (faces[:, (turn + one) % 3] for one in range(3))
+        hit = np.flatnonzero((a == chain[0]) & (b == chain[-1]))
+        if len(chain) > 2 and len(hit):
+            fan = np.array([(one, other, apex[hit[0]]) for one, other in pairwise(chain)], dtype=np.intp)
+            return np.concatenate((np.delete(faces, hit[0], axis=0), fan))
+    return faces
+
+
+def _flattened(ring: Floats) -> Floats | None:
+    """A ring in its own plane, (n, 2), anticlockwise; None where it encloses nothing."""
     following = np.roll(ring, -1, axis=0)
     normal = np.cross(ring - ring[0], following - ring[0]).sum(axis=0)
-    normal = normal / np.linalg.norm(normal)
+    twice = float(np.linalg.norm(normal))
+    if twice < _NO_AREA_M2:
+        return None
+    normal = normal / twice
     across = np.eye(3)[int(np.argmin(np.abs(normal)))]
     x = np.cross(across, normal)
     x = x / np.linalg.norm(x)
@@ -145,7 +168,11 @@ def _flattened(ring: Floats) -> Floats:
 
 def tidied(vertices: Floats, faces: Indices) -> Mesh:
     """A mesh without triangles that name a corner twice, and without corners that nothing names."""
-    a, b, c = faces.T
-    kept = faces[(a != b) & (b != c) & (c != a)]
+    kept = _with_three_corners(faces)
     used, number = np.unique(kept, return_inverse=True)
     return Mesh(vertices_m=vertices[used], faces=number.reshape(-1, 3).astype(np.intp))
+
+
+def _with_three_corners(faces: Indices) -> Indices:
+    a, b, c = faces.T
+    return faces[(a != b) & (b != c) & (c != a)]

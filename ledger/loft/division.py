@@ -78,7 +78,7 @@ class Division:
                 normal = side * plane.slab.axes[2]
                 face = np.asarray(plane.slab.origin_m) + normal * 0.5 * plane.rib.thickness_m
                 found = beyond_plane(found, face, normal)
-        return found
+        return united(piece for piece in found.decompose() if piece.volume() > _SHAVING_M3)
 
 
 def divide(
@@ -96,8 +96,9 @@ def divide(
     cutters = tuple(_rib_cutters(layout, shell, planes, by_name))
     ribs, faults = _rib_walls(cutters, by_name, open_space)
     webs, more = _web_walls(lines, cutters, open_space)
-    if faults or more:
-        return None, (*faults, *more)
+    crossing = (*_overlapping(caps), *_crossing(ribs), *_crossing(webs))
+    if faults or more or crossing:
+        return None, (*faults, *more, *crossing)
     slabs = united(length.slab.body for line in lines for length in line.lengths)
     between = {row.name: _row_prism(layout, shell, row, by_name) for row in layout.rows}
     division = Division(
@@ -105,7 +106,7 @@ def divide(
         caps=caps,
         ribs=ribs,
         webs=webs,
-        bays=tuple(_bays(layout, planes)),
+        bays=tuple(_bays(layout, planes, by_name)),
         free=open_space - slabs - united(cutter.body for cutter in cutters),
         rows={name: (open_space ^ body) - slabs for name, body in between.items()},
     )
@@ -114,6 +115,8 @@ def divide(
 
 def _cap_solids(layout: Layout, shell: Shell, lines: dict[str, WebLine]) -> Iterator[CapSolid]:
     for cap in layout.caps:
+        if cap.let_in:
+            continue
         line = lines[cap.web]
         low, high = cap.between_m or (line.points[0][1], line.points[-1][1])
         pieces = []
@@ -173,7 +176,7 @@ def _rib_walls(
     walls, faults = [], []
     for cutter in cutters:
         plane, group = cutter.plane, cutter.group
-        cutting = [line for name, line in lines.items() if name not in plane.rib.through]
+        cutting = [line for line in lines.values() if not _runs_through(cutter, line)]
         room = open_space - united(length.slab.body for line in cutting for length in line.lengths)
         solid = room ^ cutter.body
         if solid.volume() < _SHAVING_M3:
@@ -246,8 +249,32 @@ def _web_walls(
 
 
 def _runs_through(cutter: _Cutter, line: WebLine) -> bool:
-    name = line.web.name
-    return name in cutter.plane.rib.through and any(name == row.front for row in cutter.group[1:])
+    return any(line.web.name == row.front for row in cutter.group[1:])
+
+
+def _crossing(walls: tuple[Wall, ...]) -> Iterator[Finding]:
+    """Walls of one kind that meet; ribs and webs are cut for one another."""
+    for one, other in _meeting([wall.solid for wall in walls]):
+        what = f"{walls[other].part} crosses {walls[one].part}"
+        yield stop(walls[other].place, "walls-cross", what, "move one of them")
+
+
+def _overlapping(caps: tuple[CapSolid, ...]) -> Iterator[Finding]:
+    for one, other in _meeting([cap.solid for cap in caps]):
+        cap = caps[other].cap
+        what = f"{cap.part} takes up the place of {caps[one].cap.part}"
+        yield stop(cap.place, "caps-overlap", what, "make one of them narrower or thinner")
+
+
+def _meeting(bodies: list[Body]) -> Iterator[tuple[int, int]]:
+    """Numbers of each two bodies that share more than a shaving."""
+    boxes = np.array([body.bounding_box() for body in bodies]).reshape(-1, 6)
+    low, high = boxes[:, :3], boxes[:, 3:]
+    for one, body in enumerate(bodies):
+        near = (np.maximum(low, low[one]) < np.minimum(high, high[one])).all(axis=1)
+        for other in np.flatnonzero(near):
+            if other > one and (body ^ bodies[other]).volume() > _SHAVING_M3:
+                yield one, int(other)
 
 
 def _no_room(place: Where, name: str) -> Finding:
@@ -277,9 +304,10 @@ def _side_of_row(line: WebLine | None, beyond: float, low: float, high: float, r
     return np.array([first, *points, last])
 
 
-def _bays(layout: Layout, planes: tuple[RibPlane, ...]) -> Iterator[Bay]:
+def _bays(layout: Layout, planes: tuple[RibPlane, ...], lines: dict[str, WebLine]) -> Iterator[Bay]:
     for row in layout.rows:
         standing = [plane for plane in planes if row.name in plane.rib.rows]
+        standing.sort(key=lambda plane, row=row: plane.butt_line(_middle((row,), lines, plane)))
         for inboard, outboard in pairwise((None, *standing, None)):
             name = f"{row.name}{inboard.rib.name if inboard is not None else '0'}"
             yield Bay(name=name, row=row, inboard=inboard, outboard=outboard)

@@ -37,10 +37,11 @@ def lay_holes(
 ) -> tuple[tuple[LaidHole, ...], tuple[Finding, ...]]:
     """Every hole of every rule, or why a wall has no room for it."""
     number = {cell.bay.name: cell for cell in cells}
+    ribs = frozenset(spot.label for spot in spots if spot.panel.wall.rib is not None)
     laid: list[LaidHole] = []
     faults: list[Finding] = []
     for rule in layout.holes:
-        chosen = [spot for spot in spots if _is_meant(rule, spot, number)]
+        chosen = [spot for spot in spots if _is_meant(rule, spot, number, ribs)]
         faults.extend(_unknown_walls(rule, spots))
         for spot in chosen:
             hole = _lay(rule, spot)
@@ -53,12 +54,12 @@ def lay_holes(
     return tuple(laid), tuple(faults)
 
 
-def _is_meant(rule: Hole, spot: Spot, cells: dict[str, TankBay]) -> bool:
-    if spot.label in rule.leaving_out:
-        return False
+def _is_meant(rule: Hole, spot: Spot, cells: dict[str, TankBay], ribs: frozenset[str]) -> bool:
+    of_web = spot.panel.wall.rib is None
     if not isinstance(rule.walls, Walls):
-        return spot.label in rule.walls
-    if (spot.panel.wall.rib is None) != (rule.walls is Walls.WEBS):
+        named = spot.label in rule.walls and spot.label not in rule.leaving_out
+        return named and not (of_web and spot.label in ribs)
+    if of_web != (rule.walls is Walls.WEBS) or spot.label in rule.leaving_out:
         return False
     tanks = [cells[bay.name].tank if bay is not None and bay.name in cells else None for bay in spot.bays]
     return tanks[0] is not None and tanks[0] is tanks[1]

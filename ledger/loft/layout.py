@@ -119,7 +119,9 @@ class Rib:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Cap:
-    """A strip under a skin along a web, centred on it; the web is cut shorter by its thickness."""
+    """A strip along a web, centred on it: under the skin, where the web is cut shorter by its thickness,
+    or let into the skin in place of its core, where it takes nothing from the bays.
+    """
 
     place: Where
     part: str
@@ -130,6 +132,7 @@ class Cap:
     thickness_m: float
     material: str
     between_m: tuple[float, float] | None = None
+    let_in: bool = False
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

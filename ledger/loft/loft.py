@@ -11,11 +11,13 @@ from ledger.loft.division import Division, divide
 from ledger.loft.faults import stop
 from ledger.loft.holes import LaidHole, lay_holes, openings_of
 from ledger.loft.layout import Layout
+from ledger.loft.ledges import caps_in_tanks
 from ledger.loft.lofted import Lofted, LoftedCell, LoftedSkin, Panel
 from ledger.loft.panels import FlatPanel, flat_panels, panel_edges
 from ledger.loft.ports import place_ports
 from ledger.loft.shell import Shell, build_shell, skin_surface
 from ledger.loft.solids import lofted_solids
+from ledger.loft.strips import let_in_strips
 from ledger.loft.walls import WebLine, rib_planes, web_lines
 from ledger.model.plan import PartClass
 from ledger.model.progress import Progress, unwatched
@@ -27,7 +29,8 @@ def loft(layout: Layout, progress: Progress = unwatched) -> tuple[Lofted | None,
     """The right wing of a layout.
 
     Returns None and what is wrong where anything holds the wing back; each finding stands at the line
-    of the layout that says it. What `progress` raises goes through.
+    of the layout that says it. A wing that lofts may still carry findings to look at. What `progress`
+    raises goes through.
     """
     _tell(progress, 0)
     shell, faults = build_shell(layout)
@@ -62,7 +65,8 @@ def _fitted_out(
     laid, no_hole = lay_holes(layout, parted, cells)
     ports, no_port = place_ports(layout, cells, lines)
     bonds, no_bond = bond_runs(layout, panels)
-    faults = (*no_tank, *no_fill, *no_hole, *no_port, *no_bond)
+    strips, no_strip = let_in_strips(layout, shell, lines)
+    faults = (*no_tank, *no_fill, *no_hole, *no_port, *no_bond, *no_strip)
     if faults:
         return None, faults
     _tell(progress, 5)
@@ -74,6 +78,7 @@ def _fitted_out(
         skins=_skins(layout, shell),
         solids=tuple(lofted_solids(layout, shell, division, fills)),
         bonds=bonds,
+        strips=strips,
         cells=tuple(_cell(layout, cell, parted) for cell in cells),
         openings=(*openings_of(laid, cells), *ports),
         items=layout.items,
@@ -81,7 +86,7 @@ def _fitted_out(
         account=found,
     )
     _tell(progress, len(_STEPS))
-    return lofted, ()
+    return lofted, caps_in_tanks(layout, cells)
 
 
 def _tell(progress: Progress, done: int) -> None:

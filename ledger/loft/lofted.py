@@ -94,6 +94,16 @@ class BondRun:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Strip:
+    """A cap let into a skin: one line, (k, 3), in the middle of the skin's thickness."""
+
+    part: str
+    title: str
+    material: str
+    line_m: Floats
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class LoftedCell:
     """A cell net of structure. `number` counts from the root; `displaced_m3` is what its fillets take up."""
 
@@ -139,6 +149,7 @@ class Lofted:
     skins: tuple[LoftedSkin, ...]
     solids: tuple[Solid, ...]
     bonds: tuple[BondRun, ...]
+    strips: tuple[Strip, ...]
     cells: tuple[LoftedCell, ...]
     openings: tuple[LoftedOpening, ...]
     items: tuple[Item, ...]

@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from ledger.errors import Finding
-from ledger.loft.bodies import Body, plate
+from ledger.loft.bodies import Body, beyond_plane, mesh_of, plate
 from ledger.loft.division import Wall
 from ledger.loft.faults import stop
 from ledger.loft.layout import NOSE, TAIL, Edge
@@ -26,6 +26,9 @@ if TYPE_CHECKING:
 
 # What a slice leaves over of less than this is a shaving beside the panel.
 _SHAVING_M2 = 1e-5
+_SHAVING_M3 = 1e-12
+_CLEAR_M = 1e-7
+_IN_FACE_M = 1e-10
 
 
 @dataclass(frozen=True, kw_only=True, eq=False)
@@ -66,6 +69,8 @@ def flat_panels(
         if wall.rib is not None and len(pieces) > 1:
             faults.append(_in_pieces(wall, len(pieces)))
             continue
+        if not pieces:
+            faults.append(_all_gap(wall))
         for number, space in enumerate(pieces, start=1):
             outline = _less_gap(space, layout.gap_m)
             if outline is None:
@@ -110,23 +115,41 @@ def _spaces(wall: Wall, limits: tuple[float, float]) -> list[Polygon]:
     if wall.web is not None:
         # A web ends where it is told to; a rib's own outline says where its webs stand.
         faces = [face.intersection(box(low, -1e3, high, 1e3)) for face in faces]
-    pieces = [piece for piece in _polygons(faces[0].intersection(faces[1])) if piece.area > _SHAVING_M2]
-    pieces = [piece for piece in pieces if low < piece.centroid.x < high]
+    between = [piece for piece in _polygons(faces[0].intersection(faces[1])) if piece.area > _SHAVING_M2]
+    fitted = [_inside(wall, piece) for piece in between if low < piece.centroid.x < high]
+    pieces = [piece for piece in fitted if piece.area > _SHAVING_M2]
     return sorted(pieces, key=lambda piece: float(piece.centroid.x))
 
 
-def _slice(wall: Wall, side: float) -> BaseGeometry:
-    """The room for a wall cut by one of its faces, in the wall's own X and Y."""
-    from shapely import MultiPolygon, Polygon, make_valid
+def _inside(wall: Wall, piece: Polygon) -> Polygon:
+    """A piece that lies in both faces' rooms, less what stands into it between them, such as a bent skin."""
+    from shapely import Polygon, union_all
 
     slab = wall.slab
-    turned = np.column_stack((slab.axes, -slab.axes @ np.asarray(slab.origin_m)))
-    rings = wall.room.transform(turned).slice(side * slab.thickness_m).to_polygons()
-    # Rings that lie in one another are holes, then what stands in the holes again.
-    whole: BaseGeometry = MultiPolygon()
-    for ring in sorted((Polygon(ring) for ring in rings), key=lambda one: -one.area):
-        whole = whole.symmetric_difference(make_valid(ring))
-    return whole
+    beyond = plate(_corners(piece), slab.thickness_m, slab.origin_m, slab.axes) - wall.room
+    if beyond.volume() <= _SHAVING_M3:
+        return piece
+    mesh = mesh_of(beyond)
+    corners = slab.local(mesh.vertices_m)[:, :2][mesh.faces]
+    shadow = union_all([Polygon(triangle).buffer(2.0 * _CLEAR_M, quad_segs=1) for triangle in corners])
+    left = piece.difference(shadow).simplify(_CLEAR_M)
+    return max(_polygons(left), key=lambda one: float(one.area), default=Polygon())
+
+
+def _slice(wall: Wall, side: float) -> Polygon:
+    """The room for a wall cut by one of its faces, in the wall's own X and Y.
+
+    From the triangles of the cut itself: the library's own outlines of a slice are rounded to 0.2 um.
+    """
+    from shapely import polygons, union_all
+
+    slab = wall.slab
+    face = side * slab.thickness_m
+    point = np.asarray(slab.origin_m) + face * slab.axes[2]
+    mesh = mesh_of(beyond_plane(wall.room, point, -np.sign(side) * slab.axes[2]))
+    local = slab.local(mesh.vertices_m)
+    in_face = (np.abs(local[:, 2] - face) < _IN_FACE_M)[mesh.faces].all(axis=1)
+    return union_all(polygons(local[:, :2][mesh.faces[in_face]]))
 
 
 def _polygons(shape: object) -> Iterator[Polygon]:
@@ -160,7 +183,7 @@ def _in_pieces(wall: Wall, count: int) -> Finding:
         wall.place,
         "wall-in-pieces",
         f"{wall.part} falls into {count} pieces",
-        "move the rib, or make the cap that cuts through it thinner",
+        "give it a row on each side of a web that stands in it, or make a cap that cuts through it thinner",
     )
 
 
@@ -168,7 +191,7 @@ def _all_gap(wall: Wall) -> Finding:
     return stop(
         wall.place,
         "rib-outside-wing" if wall.rib is not None else "web-outside-section",
-        f"{wall.part} has nothing left between its gaps",
+        f"{wall.part} finds no room for a flat panel between what it meets",
         "move it to where the section is deeper",
     )
 

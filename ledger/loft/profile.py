@@ -90,19 +90,18 @@ def _standing_off(points: Floats, bulge: Floats) -> Floats:
     # Both ends of the ring stay on the trailing edge, so their neighbours make up for them.
     share[1] += share[0]
     share[-2] += share[-1]
-    moved = points.copy()
-    wanted = _area_over_chord(points) + float(bulge.sum())
     along = points[2:] - points[:-2]
     normal = np.stack((along[:, 1], -along[:, 0]), axis=1)
-    step = 2.0 * share[1:-1] / np.einsum("ij,ij->i", along, along)
-    moved[1:-1] += normal * step[:, None]
-    # Neighbours that both move add a little more than each alone: one factor takes that back.
-    gained = _area_over_chord(moved) - _area_over_chord(points)
-    if gained != 0.0:
-        moved[1:-1] = points[1:-1] + normal * (step * float(bulge.sum()) / gained)[:, None]
-    if abs(_area_over_chord(moved) - wanted) > 1e-6 * abs(wanted):
-        raise ValueError("the section turns too sharply for so few corners")
-    return moved
+    way = np.zeros_like(points)
+    way[1:-1] = normal * (2.0 * share[1:-1] / np.einsum("ij,ij->i", along, along))[:, None]
+    # Neighbours that both move add a little more than each alone, so how far is a root of two terms.
+    lacking = float(bulge.sum())
+    together = 0.5 * float(np.sum(way[:-1, 0] * way[1:, 1] - way[1:, 0] * way[:-1, 1]))
+    alone = _area_over_chord(points + way) - _area_over_chord(points) - together
+    under = alone**2 + 4.0 * together * lacking
+    if alone == 0.0 or under <= 0.0:
+        return points
+    return np.asarray(points + way * (2.0 * lacking / (alone + np.copysign(np.sqrt(under), alone))))
 
 
 @lru_cache(maxsize=32)

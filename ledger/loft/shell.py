@@ -6,6 +6,7 @@ square to it, so the void, the skins and what the void is divided into all share
 
 from __future__ import annotations
 
+from collections.abc import Iterator
 from dataclasses import dataclass
 from functools import cached_property
 from itertools import pairwise
@@ -13,7 +14,7 @@ from itertools import pairwise
 import numpy as np
 
 from ledger.errors import Finding
-from ledger.loft.bodies import strips, tidied, tube
+from ledger.loft.bodies import Booleans, strips, tidied, tube
 from ledger.loft.faults import stop
 from ledger.loft.layout import Layout, Section, SkinZone, Surface
 from ledger.loft.lofted import Floats, Indices, Mesh
@@ -252,7 +253,8 @@ def _thickest_near(
     shell: Shell, block: tuple[int, int], owner: Indices, ring: Floats, explained: str
 ) -> SkinZone:
     """The thickest skin about the place where a ring crosses itself."""
-    numbers = explained.rpartition("[")[2].rstrip("]").split()
+    _, told, place = explained.rpartition("[")
+    numbers = place.rstrip("]").split() if told else []
     near = set(shell.zone[block[0]])
     if len(numbers) >= 2:
         at = np.array([float(numbers[0]), float(numbers[1])])
@@ -283,9 +285,17 @@ def tail_solids(shell: Shell) -> tuple[Mesh, ...]:
         outer = shell.outer_m[block[0] : block[1] + 1]
         corners = np.stack((outer[:, 0], rings[:, 0], rings[:, -1], outer[:, -1]), axis=1)
         # Seen from inboard the closing line runs down, so this ring turns the way all do.
-        if _area(corners[0]) > 1e-12 and _area(corners[-1]) > 1e-12:
-            found.append(tube(corners))
+        thick = np.array([_area(corner) > 1e-12 for corner in corners])
+        for first, last in _stretches(thick[:-1] | thick[1:]):
+            found.append(tube(corners[first : last + 1]))
     return tuple(found)
+
+
+def _stretches(there: Booleans) -> Iterator[tuple[int, int]]:
+    """First and last station of each run of pieces of span that are there."""
+    edges = np.flatnonzero(np.diff(np.concatenate(([False], there, [False]))))
+    for first, last in edges.reshape(-1, 2):
+        yield int(first), int(last)
 
 
 def void(shell: Shell) -> tuple[Mesh, ...]:

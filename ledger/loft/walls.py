@@ -87,11 +87,15 @@ class RibPlane:
         return float(y + (station_m - x) * along[1] / along[0])
 
     def crossing(self, line: WebLine) -> PlanPoint:
-        """Where its mid-line meets that of a web in plan."""
-        butt_line = self.butt_line(line.station(self.slab.origin_m[1]))
-        for _ in range(50):
-            butt_line = self.butt_line(line.station(butt_line))
-        return line.station(butt_line), butt_line
+        """Where its mid-line meets that of a web in plan, both carried on straight."""
+        (x, y, _), (along_x, along_y, _) = self.slab.origin_m, self.slab.axes[0].tolist()
+        beyond = [along_x * (at - y) - along_y * (station - x) for station, at in line.points]
+        last = len(beyond) - 1
+        end = next((place for place in range(1, last) if beyond[place] >= 0.0), last)
+        before, after = beyond[end - 1], beyond[end]
+        share = 0.0 if after == before else before / (before - after)
+        (x0, y0), (x1, y1) = line.points[end - 1], line.points[end]
+        return x0 + share * (x1 - x0), y0 + share * (y1 - y0)
 
 
 def reach_of(shell: Shell) -> float:
@@ -230,7 +234,7 @@ def rib_planes(
     planes.sort(key=lambda plane: plane.slab.origin_m[1])
     faults: list[Finding] = []
     for plane in planes:
-        missing = tuple(_without_web(layout, plane, lines))
+        missing = (*_without_web(layout, plane, lines), *_through_end(layout, plane))
         faults.extend(missing or _beyond_ends(layout, shell, plane, lines))
     if not faults:
         faults.extend(_crossing_ribs(layout, planes, lines))
@@ -275,6 +279,20 @@ def _without_web(layout: Layout, plane: RibPlane, lines: dict[str, WebLine]) -> 
                     f"rib {plane.rib.name} stands in row {row.name} where web {name} is not",
                     f"carry web {name} on, or leave row {row.name} out of the rib",
                 )
+
+
+def _through_end(layout: Layout, plane: RibPlane) -> Iterator[Finding]:
+    """A rib runs through webs from one of its rows to the next, not into one where it ends."""
+    rows = [row for row in layout.rows if row.name in plane.rib.rows]
+    between = {row.front for row in rows} & {row.rear for row in rows}
+    for name in plane.rib.through:
+        if name not in between:
+            yield stop(
+                plane.rib.place,
+                "rib-ends-at-web",
+                f"rib {plane.rib.name} is to run through web {name}, but has no row on both sides of it",
+                f"leave {name} out of through, or add the row beyond it",
+            )
 
 
 def _beyond_ends(

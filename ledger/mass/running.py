@@ -40,6 +40,7 @@ from ledger.model.acts import (
     Weigh,
 )
 from ledger.model.entry import Logged
+from ledger.model.fitting import BUILT_TO_EARLIER, Fitting, pieces_meant
 from ledger.model.plan import Part, Shape
 from ledger.model.snapshot import Piece, PieceState, Snapshot
 from ledger.model.vectors import NO_SPREAD, Vector
@@ -87,6 +88,7 @@ class RunningWeights:
 
     def _start(self, snapshot: Snapshot) -> None:
         self._indexes = Indexes(snapshot)
+        self._fitting = Fitting(snapshot.iterations)
         self._reading = start_reading(snapshot, self._indexes)
         self._deposits = self._reading.deposits
         share_out_cups(snapshot, self._deposits)
@@ -173,6 +175,11 @@ class RunningWeights:
             touched.update(dict.fromkeys(act.pieces))
         elif isinstance(act, Lay | Trim | BuildUp | Coat) and act.piece is not None:
             touched[act.piece] = None
+        elif isinstance(act, Accept) and act.finding == BUILT_TO_EARLIER:
+            # Which pieces of a part are spare hangs on which of them fit.
+            touched.update(dict.fromkeys(pieces_meant(act.what, self._indexes.snapshot.pieces)))
+        elif isinstance(act, Hold | Release) and act.what in self._indexes.snapshot.pieces:
+            touched[act.what] = None
         return True
 
     def _settle_again(self, snapshot: Snapshot, touched: dict[str, None]) -> bool:
@@ -222,9 +229,8 @@ class RunningWeights:
         pieces = [self._indexes.snapshot.pieces[name] for name in self._pieces_of.get(part.name, ())]
         wanted = part.quantity
         figures = []
-        # A spare is the one that sits nowhere, not the one made last.
-        for piece in sorted(pieces, key=lambda one: (one.fitted_into is None, one.running)):
-            counts = wanted > 0 and piece.state is not PieceState.SCRAPPED
+        for piece in self._fitting.first_to_count(pieces):
+            counts = wanted > 0 and self._fitting.may_count(piece)
             wanted -= counts
             held = self._weighings.sitting.inside(piece.name)
             figures.append(settled_piece(piece, self._settlement, held, counts=counts))

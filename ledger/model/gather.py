@@ -8,6 +8,7 @@ from dataclasses import dataclass, field, replace
 from datetime import datetime
 
 from ledger.model.acts import (
+    Accept,
     Act,
     Adopt,
     Cut,
@@ -23,6 +24,7 @@ from ledger.model.acts import (
     Withdraw,
 )
 from ledger.model.entry import FIRST_PREVIOUS, Logged
+from ledger.model.fitting import BUILT_TO_EARLIER, pieces_meant
 from ledger.model.plan import Plan
 from ledger.model.snapshot import (
     Batch,
@@ -89,12 +91,22 @@ def _place(seq: int, corrected: Mapping[int, int]) -> int:
     return seq
 
 
+@dataclass(frozen=True, slots=True, kw_only=True)
+class WithdrawnPlan:
+    """An iteration that was in force from one entry to another, and no longer counts."""
+
+    name: str
+    adopted_seq: int
+    withdrawn_seq: int
+
+
 @dataclass(slots=True)
 class Gathering:
     """The build as it grows entry by entry. Not frozen: `snapshot` is what leaves this module."""
 
     tags: dict[str, str]
     plan_of: Callable[[Logged], Plan]
+    withdrawn: tuple[WithdrawnPlan, ...] = ()
     logged: list[Logged] = field(default_factory=list)
     iterations: list[Iteration] = field(default_factory=list)
     pieces: dict[str, Piece] = field(default_factory=dict)
@@ -145,10 +157,18 @@ class Gathering:
             part=part,
             running=running,
             begun_seq=entry.seq,
-            iteration=self.iterations[-1].name if self.iterations else "",
+            iteration=self._begun_under(entry),
             state=PieceState.OPEN,
             fitted_into=None,
         )
+
+    def _begun_under(self, entry: Logged) -> str:
+        """The iteration in force then; one withdrawn since is told apart from a later one of its name."""
+        now = self.iterations[-1].seq if self.iterations else 0
+        for plan in reversed(self.withdrawn):
+            if now < plan.adopted_seq < entry.seq < plan.withdrawn_seq:
+                return f"{plan.name} (withdrawn)"
+        return self._iteration
 
     def _take(self, entry: Logged) -> None:
         act = entry.act
@@ -173,8 +193,12 @@ class Gathering:
                 self._set_state(act.what, PieceState.SCRAPPED)
             case Hold():
                 self.held[act.what] = entry.seq
+                self._hold(act.what, self._iteration)
             case Release():
                 self.held.pop(act.what, None)
+                self._hold(act.what, None)
+            case Accept() if act.finding == BUILT_TO_EARLIER and act.facts is not None:
+                self._accept(act)
             case Adopt():
                 plan = self.plan_of(entry)
                 self.iterations.append(Iteration(name=act.plan, seq=entry.seq, at=entry.at, plan=plan))
@@ -195,6 +219,20 @@ class Gathering:
                     length_m=act.offcut.length_m,
                     width_m=act.offcut.width_m,
                 )
+
+    def _accept(self, act: Accept) -> None:
+        for name in pieces_meant(act.what, self.pieces):
+            piece = self.pieces[name]
+            self.pieces[name] = replace(piece, accepted_under=(*piece.accepted_under, self._iteration))
+
+    def _hold(self, name: str, under: str | None) -> None:
+        piece = self.pieces.get(name)
+        if piece is not None:
+            self.pieces[name] = replace(piece, held_under=under)
+
+    @property
+    def _iteration(self) -> str:
+        return self.iterations[-1].name if self.iterations else ""
 
     def _set_state(self, name: str, state: PieceState) -> None:
         piece = self.pieces.get(name)
@@ -222,6 +260,27 @@ def tags_of(logged: Iterable[Logged]) -> dict[str, str]:
     }
 
 
+def withdrawn_plans(logged: Iterable[Logged]) -> tuple[WithdrawnPlan, ...]:
+    """The iterations withdrawn since, in the order they were adopted."""
+    names: dict[int, str] = {}
+    found = []
+    for entry in logged:
+        if isinstance(entry.act, Adopt):
+            names[entry.seq] = entry.act.plan
+        elif isinstance(entry.act, Withdraw) and entry.act.seq in names:
+            seq = entry.act.seq
+            found.append(WithdrawnPlan(name=names[seq], adopted_seq=seq, withdrawn_seq=entry.seq))
+    return tuple(sorted(found, key=lambda plan: plan.adopted_seq))
+
+
+def gathering_of(everything: tuple[Logged, ...], plan_of: Callable[[Logged], Plan]) -> Gathering:
+    """All these entries gathered, withdrawn ones among them; more can be added."""
+    gathering = Gathering(tags=tags_of(everything), plan_of=plan_of, withdrawn=withdrawn_plans(everything))
+    for entry in what_counts(everything):
+        gathering.add(entry)
+    return gathering
+
+
 def gather(
     logged: Iterable[Logged],
     plan_of: Callable[[Logged], Plan],
@@ -234,9 +293,6 @@ def gather(
     `plan_of` gives the plan that an `adopt` entry took in; it is asked only for those that count.
     """
     everything = tuple(logged)
-    gathering = Gathering(tags=tags_of(everything), plan_of=plan_of)
-    for entry in what_counts(everything):
-        gathering.add(entry)
-    return gathering.snapshot(
+    return gathering_of(everything, plan_of).snapshot(
         last_seq=everything[-1].seq if everything else 0, last_digest=last_digest, now=now
     )

@@ -9,5 +9,5 @@ from collections.abc import Callable
 Progress = Callable[[str, int, int], None]
 
 
-def unwatched(what: str, done: int, of: int) -> None:  # noqa: ARG001
+def unwatched(what: str, done: int, of: int) -> None:
     """The progress that nobody looks at."""

@@ -22,7 +22,11 @@ class PieceState(StrEnum):
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Piece:
-    """One physical example of a part. `name` is `PART/running`; `number` is on its tag."""
+    """One physical example of a part. `name` is `PART/running`; `number` is on its tag.
+
+    `accepted_under` names the iterations it was accepted under although they had changed its part,
+    `held_under` the one in which it was put on hold, None once it is released.
+    """
 
     number: str
     name: str
@@ -32,6 +36,8 @@ class Piece:
     iteration: str
     state: PieceState
     fitted_into: str | None
+    accepted_under: tuple[str, ...] = ()
+    held_under: str | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -3,64 +3,55 @@
 from __future__ import annotations
 
 import getpass
-import hashlib
 import os
 import sqlite3
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator
 from dataclasses import dataclass
 from datetime import datetime
 from pathlib import Path
 
 from ledger.book.appending import append_entry
 from ledger.book.names import with_article
-from ledger.book.opening import open_for_writing
+from ledger.book.opening import open_for_reading, open_for_writing
 from ledger.book.project import key_of
 from ledger.book.reading import StoredGeometry, store_files
-from ledger.checks.built_to_earlier_iteration import pieces_that_no_longer_fit
 from ledger.errors import Finding, Refused, Severity, Where
-from ledger.model.acts import Adopt, PlanFile
-from ledger.model.entry import Entry, Logged
-from ledger.model.gather import gather
+from ledger.mass.weigh_up import weigh_up
+from ledger.model.comparison import Comparison, UnfitPiece
+from ledger.model.entry import Entry
 from ledger.model.plan import Plan
-from ledger.model.snapshot import Snapshot
+from ledger.model.progress import Progress, unwatched
 from ledger.model.things import ThingKind
-from ledger.operations.open_build import open_build
-from ledger.operations.stored_plan import keep_plan
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class UnfitPiece:
-    """A piece that was built and is not what the new plan wants."""
-
-    piece: str
-    number: str
-    state: str
-    why: str
+from ledger.operations.compare_iterations import Side, compare_sides, side_of_folder, unfit_pieces
+from ledger.operations.open_build import Build, open_build
+from ledger.operations.plan_to_adopt import PlanToAdopt, read_plan_to_adopt
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Adopted:
-    """The iteration, its entry (as it would be, in a preview), and what no longer fits."""
+    """The iteration, its entry (as it would be, in a preview), and what no longer fits.
+
+    `before` is the iteration it follows, None in a new book. `comparison` with that one is made for a
+    preview only.
+    """
 
     iteration: str
     seq: int
     digest: str
     findings: tuple[Finding, ...]
     no_longer_fits: tuple[UnfitPiece, ...]
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class PlanToAdopt:
-    """A plan that was read without a STOP, with all its files."""
-
-    plan: Plan
-    files: Mapping[str, bytes]
-    act: Adopt
-    findings: tuple[Finding, ...]
+    before: str | None = None
+    comparison: Comparison | None = None
 
 
 def adopt_plan(
-    book: Path, plan: Path, *, by: str | None = None, preview: bool = False, now: datetime | None = None
+    book: Path,
+    plan: Path,
+    *,
+    by: str | None = None,
+    preview: bool = False,
+    now: datetime | None = None,
+    progress: Progress = unwatched,
 ) -> Adopted:
     """Read the plan folder and adopt it; with `preview`, say what that would do and write nothing.
 
@@ -68,16 +59,19 @@ def adopt_plan(
         Refused: the plan has errors, or an iteration of its name is in the book.
         WrongUse: there is no such folder.
         BookUnusable: the book cannot be opened.
+        Stopped: `progress` was told to end the work; nothing was written.
     """
     moment = now if now is not None else right_now()
     build = open_build(book, now=moment)
-    geometry = build.cache
-    wanted = read_plan_to_adopt(plan, geometry)
-    unfit = _unfit(_with_iteration(build.logged, build.snapshot, wanted, moment))
+    wanted = read_plan_to_adopt(plan, build.cache, progress=progress)
+    # Looked at before the long work, and once more inside the transaction that writes.
+    with open_for_reading(book) as connection:
+        _refuse_taken_names(connection, wanted.plan)
+    comparison, unfit = _what_it_does(build, wanted, preview=preview, progress=progress)
     try:
         with open_for_writing(book) as connection:
             _refuse_taken_names(connection, wanted.plan)
-            entry = write_adoption(connection, wanted, geometry, by=who(by), now=moment)
+            entry = write_adoption(connection, wanted, build.cache, by=who(by), now=moment)
             if preview:
                 raise _OnlyLooked
     except _OnlyLooked:
@@ -88,7 +82,24 @@ def adopt_plan(
         digest=entry.digest,
         findings=(*build.warnings, *wanted.findings),
         no_longer_fits=unfit,
+        before=build.snapshot.plan.name,
+        comparison=comparison,
     )
+
+
+def _what_it_does(
+    build: Build, wanted: PlanToAdopt, *, preview: bool, progress: Progress
+) -> tuple[Comparison | None, tuple[UnfitPiece, ...]]:
+    """What the plan does to the record; all its figures only for a preview, which reckons fuel."""
+    new = side_of_folder(build, wanted, wanted.plan.name)
+    if preview:
+        current = Side(build=build, name=build.snapshot.plan.name, adopted=True)
+        comparison = compare_sides(current, new, progress=progress)
+        return comparison, comparison.no_longer_fits
+    snapshot = new.build.snapshot
+    progress(f"weighing, {new.name}", 0, 1)
+    weights = weigh_up(snapshot, new.build.cell_places())
+    return None, unfit_pieces(snapshot, weights, fitting_before=build.snapshot)
 
 
 class _OnlyLooked(Exception):
@@ -116,27 +127,6 @@ def who(by: str | None) -> str:
 def right_now() -> datetime:
     """This moment to the second, with the offset of this computer."""
     return datetime.now().astimezone().replace(microsecond=0)
-
-
-def read_plan_to_adopt(folder: Path, geometry: StoredGeometry) -> PlanToAdopt:
-    """Read a plan folder.
-
-    Raises
-        Refused: the plan has errors; all of them are in it.
-        WrongUse: there is no such folder.
-    """
-    from ledger.exchange.plan_folder import read_plan
-
-    read = read_plan(folder, geometry)
-    if read.plan is None:
-        raise Refused(*read.findings)
-    files = tuple(
-        PlanFile(path=path, sha256=hashlib.sha256(content).hexdigest())
-        for path, content in sorted(read.files.items())
-    )
-    act = Adopt(plan=read.plan.name, title=read.plan.title, files=files)
-    keep_plan(act, read.plan, geometry)
-    return PlanToAdopt(plan=read.plan, files=read.files, act=act, findings=read.findings)
 
 
 def write_adoption(
@@ -178,20 +168,3 @@ def _numbers_taken(connection: sqlite3.Connection, plan: Plan) -> Iterator[Findi
                 what=f"{part.name!r} already stands for {with_article(ThingKind(row[0]))} in the book",
                 do="give the part another number",
             )
-
-
-def _with_iteration(
-    logged: tuple[Logged, ...], snapshot: Snapshot, wanted: PlanToAdopt, now: datetime
-) -> Snapshot:
-    plans = {entry.seq: entry.plan for entry in snapshot.iterations}
-    seq = snapshot.last_seq + 1
-    plans[seq] = wanted.plan
-    entry = Logged(seq=seq, at=now, logged_at=now, by="", kind="adopt", act=wanted.act)
-    return gather((*logged, entry), lambda adopted: plans[adopted.seq], now=now)
-
-
-def _unfit(snapshot: Snapshot) -> tuple[UnfitPiece, ...]:
-    return tuple(
-        UnfitPiece(piece=piece.name, number=piece.number, state=piece.state.value, why=why)
-        for piece, why in pieces_that_no_longer_fit(snapshot)
-    )

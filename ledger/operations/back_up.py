@@ -11,6 +11,7 @@ from ledger.book.opening import open_for_reading
 from ledger.book.reading import read_on
 from ledger.errors import Finding, Refused, Severity, Where, WrongUse
 from ledger.model.entry import FIRST_PREVIOUS
+from ledger.model.progress import Progress, unwatched
 from ledger.operations.open_build import guards_missing
 
 
@@ -25,13 +26,14 @@ class BackedUp:
     findings: tuple[Finding, ...]
 
 
-def back_up(book: Path, file: Path) -> BackedUp:
+def back_up(book: Path, file: Path, *, progress: Progress = unwatched) -> BackedUp:
     """Copy the book to a file that must not exist yet.
 
     Raises
         Refused: the file exists, or the copy does not read back.
         WrongUse: there is no folder to put it in.
         BookUnusable: the book cannot be opened.
+        Stopped: `progress` was told to end the work; no copy is left.
     """
     there = in_the_way(file)
     if there is not None:
@@ -42,7 +44,7 @@ def back_up(book: Path, file: Path) -> BackedUp:
         raise WrongUse(_stop("folder-absent", file.parent, "there is no such folder", "make it first"))
     try:
         with open_for_reading(book) as connection:
-            entries, digest = copy_book(connection, file)
+            entries, digest = copy_book(connection, file, progress=progress)
             _, trouble = read_on(connection, after=0, digest=FIRST_PREVIOUS)
             findings = (*(() if trouble is None else (trouble,)), *guards_missing(connection))
     except FileExistsError:

@@ -13,6 +13,7 @@ from ledger.book.opening import open_for_reading
 from ledger.errors import BookUnusable, Finding, FindingsError, Refused, Severity, Where
 from ledger.model.acts import Adopt
 from ledger.model.gather import what_counts
+from ledger.model.progress import Progress, unwatched
 from ledger.operations.list_findings import list_findings
 from ledger.operations.open_build import forget, open_build
 from ledger.operations.recompute_geometry import recompute_geometry
@@ -30,7 +31,9 @@ class Checked:
     findings: tuple[Finding, ...]
 
 
-def check_book(book: Path, last: str | None = None, *, now: datetime | None = None) -> Checked:
+def check_book(
+    book: Path, last: str | None = None, *, now: datetime | None = None, progress: Progress = unwatched
+) -> Checked:
     """Check guards, chain, look-up tables, stored plans, the file itself and every rule.
 
     `last` is a last digest or its short code, kept elsewhere: the only way to see that a whole book was
@@ -39,14 +42,15 @@ def check_book(book: Path, last: str | None = None, *, now: datetime | None = No
     Raises
         Refused: `last` is mistyped.
         BookUnusable: the book cannot be opened.
+        Stopped: `progress` was told to end the work.
     """
     code = None if last is None else _code(last)
     with open_for_reading(book) as connection:
         connection.text_factory = _any_text
-        state = look_through(connection)
+        state = look_through(connection, progress)
         compared = () if code is None or state.entries == 0 else _compare(connection, code, state)
-        geometry = _recompute(connection, state)
-    rules = _rules(book, state, now)
+        geometry = _recompute(connection, state, progress)
+    rules = _rules(book, state, now, progress)
     return Checked(
         entries=state.entries,
         last_digest=state.last_digest,
@@ -57,10 +61,10 @@ def check_book(book: Path, last: str | None = None, *, now: datetime | None = No
     )
 
 
-def _recompute(connection: sqlite3.Connection, state: BookState) -> tuple[Finding, ...]:
+def _recompute(connection: sqlite3.Connection, state: BookState, progress: Progress) -> tuple[Finding, ...]:
     current = next((e.act for e in reversed(what_counts(state.logged)) if isinstance(e.act, Adopt)), None)
     lost = {finding.code for finding in state.findings} & {"plan-file-lost", "table-missing"}
-    return () if current is None or lost else recompute_geometry(connection, current)
+    return () if current is None or lost else recompute_geometry(connection, current, progress)
 
 
 def _any_text(stored: bytes) -> str:
@@ -109,12 +113,12 @@ def _compare(connection: sqlite3.Connection, code: str, state: BookState) -> tup
     )
 
 
-def _rules(book: Path, state: BookState, now: datetime | None) -> tuple[Finding, ...]:
+def _rules(book: Path, state: BookState, now: datetime | None, progress: Progress) -> tuple[Finding, ...]:
     if not state.logged:
         return ()
     try:
         forget(book)
-        return list_findings(open_build(book, now=now))
+        return list_findings(open_build(book, now=now), progress=progress)
     except BookUnusable as error:
         return error.findings
     except FindingsError as error:

@@ -64,7 +64,7 @@ def _jobs_of(
         piece = snapshot.pieces.get(mass.piece)
         if piece is None:
             jobs.append(_begin(mass.piece, planned, index))
-        elif piece.state is PieceState.OPEN and piece.fitted_into is None:
+        elif piece.state is PieceState.OPEN and piece.fitted_into is None and mass.state != "spare":
             jobs.append(_go_on(mass, planned, index, laid))
     return [(_LAY_ORDER[rank], job) for rank, job in (found for found in jobs if found is not None)]
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import dataclasses
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
 from datetime import datetime
 from pathlib import Path
 
@@ -11,14 +11,11 @@ from ledger.book.opening import open_for_writing
 from ledger.book.project import key_of
 from ledger.errors import Finding, Refused, Where, WrongUse
 from ledger.model.declare import KINDS
+from ledger.model.progress import Progress, unwatched
 from ledger.operations.adopt_plan import right_now
 from ledger.operations.arising import arisen_since, notice
 from ledger.operations.log_entry import LoggedEntry, Writing, Written
 from ledger.operations.open_build import open_build
-
-Progress = Callable[[int, int], None]
-
-_TELL_EVERY = 50
 
 
 def log_file(
@@ -27,7 +24,7 @@ def log_file(
     *,
     by: str | None = None,
     now: datetime | None = None,
-    progress: Progress | None = None,
+    progress: Progress = unwatched,
 ) -> tuple[LoggedEntry, ...]:
     """Log every row of a CSV or JSON Lines file in order; later rows may use the numbers of earlier ones.
 
@@ -37,6 +34,7 @@ def log_file(
         Refused: every problem of every row, by row and column; nothing was written.
         WrongUse: there is no such file.
         BookUnusable: the book cannot be opened.
+        Stopped: `progress` was told to end the work, between two rows; nothing was written.
     """
     from ledger.exchange.rows import read_rows
 
@@ -62,19 +60,19 @@ def log_file(
 def _log_rows(
     writing: Writing,
     rows: tuple[tuple[Where, str, Mapping[str, object]], ...],
-    progress: Progress | None,
+    progress: Progress,
 ) -> tuple[list[Written], list[Finding]]:
     written: list[Written] = []
     refused: list[Finding] = []
     lost: set[str] = set()
-    for done, (where, kind, fields) in enumerate(rows, start=1):
+    for done, (where, kind, fields) in enumerate(rows):
+        progress("rows", done, len(rows))
         try:
             written.append(writing.enter(kind, fields, where=where))
         except (Refused, WrongUse) as trouble:
             refused.extend(finding for finding in trouble.findings if not _follows_from(finding, lost))
             lost.update(_numbers_lost(kind, fields))
-        if progress is not None and (done % _TELL_EVERY == 0 or done == len(rows)):
-            progress(done, len(rows))
+    progress("rows", len(rows), len(rows))
     return written, refused
 
 

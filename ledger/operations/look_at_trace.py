@@ -9,6 +9,7 @@ from datetime import datetime
 from ledger.errors import Finding, Severity
 from ledger.mass.report import WeightReport
 from ledger.mass.trace import Trace, TraceLink, trace
+from ledger.model.fitting import Fitting
 from ledger.model.snapshot import Snapshot
 from ledger.operations.saying import say
 from ledger.operations.take_stock import Stock
@@ -182,10 +183,17 @@ def pieces_with(snapshot: Snapshot, traced: Trace) -> tuple[InPiece, ...]:
 
 
 def suspects_of(snapshot: Snapshot, findings: Sequence[Finding]) -> tuple[Suspect, ...]:
-    """Things of the book on hold or with a STOP or LOOK, the gravest first."""
+    """Things of the book on hold or with a STOP or LOOK, the gravest first; none that is kept for stock."""
+    fitting = Fitting(snapshot.iterations)
+    kept = {
+        name
+        for name, piece in snapshot.pieces.items()
+        if name in snapshot.held and name not in snapshot.gone and not fitting.may_count(piece)
+    }
     found: dict[str, Suspect] = {
         name: Suspect(what=name, verdict=_STOP, why=f"on hold since entry {seq}")
         for name, seq in snapshot.held.items()
+        if name not in kept
     }
     known: tuple[Mapping[str, object], ...] = (
         snapshot.pieces,

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 import sqlite3
 import threading
-from collections.abc import Callable, Iterable, Mapping
-from dataclasses import dataclass
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass, replace
 from datetime import datetime
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -17,7 +17,7 @@ from ledger.book.schema import GUARDS, objects_of
 from ledger.errors import BookUnusable, Finding, Severity, Where
 from ledger.model.acts import Adopt, Coat
 from ledger.model.entry import FIRST_PREVIOUS, Logged
-from ledger.model.gather import Gathering, tags_of, what_counts
+from ledger.model.gather import Gathering, gathering_of
 from ledger.model.plan import Plan
 from ledger.model.snapshot import Snapshot
 from ledger.model.vectors import Vector
@@ -61,6 +61,14 @@ class Build:
 
         return read_cell_places(self.snapshot.plan, self.files, self.cache, frozenset(map(str, coated)))
 
+    def under(self, snapshot: Snapshot, files: Mapping[str, bytes] | None = None) -> Build:
+        """The same book under another current plan: the last one of `snapshot`.
+
+        Its files are those its entry stored, unless `files` gives those of a plan not in the book.
+        """
+        stored = StoredFiles(self.book, _adoption(snapshot)) if files is None else files
+        return replace(self, snapshot=snapshot, files=stored)
+
 
 @dataclass(slots=True)
 class _Kept:
@@ -100,13 +108,12 @@ def open_build(book: Path, *, now: datetime | None = None) -> Build:
         )
         missing = guards_missing(connection)
         everything = tuple(state.everything)
-    adopted = next(entry for entry in reversed(snapshot.logged) if isinstance(entry.act, Adopt))
     trouble = () if state.trouble is None else (state.trouble,)
     return Build(
         book=book,
         snapshot=snapshot,
         logged=everything,
-        files=StoredFiles(book, _adopt(adopted)),
+        files=StoredFiles(book, _adoption(snapshot)),
         cache=geometry,
         warnings=(*trouble, *missing),
     )
@@ -155,21 +162,13 @@ def _bring_up(book: Path, connection: sqlite3.Connection, plan_of: Callable[[Log
     kept.gathering.plan_of = plan_of
     kept.everything.extend(new)
     if any(needs_rebuild(entry) for entry in new):
-        kept.gathering = _gathered(kept.everything, plan_of)
+        kept.gathering = gathering_of(tuple(kept.everything), plan_of)
     else:
         for entry in new:
             kept.gathering.add(entry)
     kept.last_seq, kept.last_digest, kept.trouble = seq, digest, kept.trouble or trouble
     _remember(book.absolute(), kept)
     return kept
-
-
-def _gathered(everything: Iterable[Logged], plan_of: Callable[[Logged], Plan]) -> Gathering:
-    listed = tuple(everything)
-    gathering = Gathering(tags=tags_of(listed), plan_of=plan_of)
-    for entry in what_counts(listed):
-        gathering.add(entry)
-    return gathering
 
 
 def _is_still_there(connection: sqlite3.Connection, kept: _Kept) -> bool:
@@ -186,8 +185,7 @@ def _remember(path: Path, kept: _Kept) -> None:
 def _once(
     build: Build, what: str, read: Callable[[StoredGeometry | None], Mapping[str, ClosedCell]]
 ) -> Mapping[str, ClosedCell]:
-    adopted = next(entry for entry in reversed(build.snapshot.logged) if isinstance(entry.act, Adopt))
-    key = (build.book.absolute(), what, plan_key(_adopt(adopted)))
+    key = (build.book.absolute(), what, plan_key(_adoption(build.snapshot)))
     with _cells_lock:
         if key not in _cells:
             if len(_cells) >= 2 * _MOST_KEPT:
@@ -197,6 +195,12 @@ def _once(
             except UNREADABLE:
                 _cells[key] = read(None)
         return _cells[key]
+
+
+def _adoption(snapshot: Snapshot) -> Adopt:
+    """The entry's act that took in the current plan, which need not be the last one adopted."""
+    seq = snapshot.iterations[-1].seq
+    return _adopt(next(entry for entry in reversed(snapshot.logged) if entry.seq == seq))
 
 
 def _adopt(entry: Logged) -> Adopt:

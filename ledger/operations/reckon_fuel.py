@@ -14,6 +14,7 @@ from ledger.fuel.density import density_at
 from ledger.fuel.report import FuelReport
 from ledger.mass.weigh_up import weigh_up
 from ledger.model.attitude import Attitude
+from ledger.model.progress import Progress, unwatched
 from ledger.operations.open_build import Build, open_build
 from ledger.units import Display
 
@@ -40,15 +41,17 @@ def reckon_fuel(
     asked: Attitude | None = None,
     levels: int = _LEVELS,
     temperature_k: float | None = None,
+    progress: Progress = unwatched,
 ) -> Fuel:
     """Reckon every tank at every attitude of the plan; `attitudes` only chooses what is listed.
 
     Raises
         Refused: an attitude the plan does not have.
+        Stopped: `progress` was told to end the work.
     """
     build = open_build(book)
     _refuse_unknown(build, attitudes)
-    report = reckon_build(build, asked=asked, levels=levels, temperature_k=temperature_k)
+    report = reckon_build(build, asked=asked, levels=levels, temperature_k=temperature_k, progress=progress)
     snapshot = build.snapshot
     planned = _listed(report, [attitude.name for attitude in snapshot.plan.attitudes])
     facts = Facts(snapshot=snapshot, weights=weigh_up(snapshot), fuel=planned)
@@ -67,6 +70,7 @@ def reckon_build(
     asked: Attitude | None = None,
     levels: int = _LEVELS,
     temperature_k: float | None = None,
+    progress: Progress = unwatched,
 ) -> FuelReport:
     """The complete fuel report of an open build. A plan without tanks gives an empty one."""
     plan = build.snapshot.plan
@@ -83,6 +87,7 @@ def reckon_build(
         levels=levels,
         asked=asked,
         temperature_k=temperature_k,
+        progress=progress,
     )
 
 

@@ -12,6 +12,7 @@ from ledger.book.reading import files_of
 from ledger.errors import Finding, Severity, Where
 from ledger.model.acts import Adopt
 from ledger.model.body import plain_of
+from ledger.model.progress import Progress, unwatched
 from ledger.operations.stored_plan import plan_key
 
 _RELATIVE = 1e-9
@@ -31,7 +32,9 @@ class _Recording:
         self.computed[key] = content
 
 
-def recompute_geometry(connection: sqlite3.Connection, adopt: Adopt) -> tuple[Finding, ...]:
+def recompute_geometry(
+    connection: sqlite3.Connection, adopt: Adopt, progress: Progress = unwatched
+) -> tuple[Finding, ...]:
     """Read the plan that an entry adopted from its stored files and compare all that is kept of it.
 
     Records and arrays must be the same; figures may differ by the last places that another machine
@@ -40,7 +43,7 @@ def recompute_geometry(connection: sqlite3.Connection, adopt: Adopt) -> tuple[Fi
     from ledger.exchange.plan_folder import read_plan_files
 
     computed = _Recording()
-    read = read_plan_files(files_of(connection, adopt), computed)
+    read = read_plan_files(files_of(connection, adopt), computed, progress=progress)
     if read.plan is None:
         return read.findings
     computed.put(plan_key(adopt), json.dumps(plain_of(read.plan)).encode())

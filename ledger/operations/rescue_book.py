@@ -21,6 +21,7 @@ from ledger.book.project import rebuild
 from ledger.book.reading import NOT_READABLE, logged_of, read_logged
 from ledger.errors import BookUnusable, Finding, Refused, Severity, Where, WrongUse
 from ledger.model.entry import FIRST_PREVIOUS, Entry
+from ledger.model.progress import Progress, unwatched
 
 _COLUMNS = "seq, id, at, logged_at, by, kind, body, previous, digest"
 
@@ -37,7 +38,7 @@ class Rescued:
     findings: tuple[Finding, ...]
 
 
-def rescue_book(damaged: Path, new: Path) -> Rescued:
+def rescue_book(damaged: Path, new: Path, *, progress: Progress = unwatched) -> Rescued:
     """Save the entries from the first on, as far as each follows from the one before, with all plan files.
 
     An entry past a break cannot be proved to be what was written, so it is named and left out. The
@@ -47,6 +48,7 @@ def rescue_book(damaged: Path, new: Path) -> Rescued:
         Refused: something is at the new path.
         WrongUse: there is no folder for the new one.
         BookUnusable: there is no damaged file, or not one entry of it can be read.
+        Stopped: `progress` was told to end the work; nothing is left of the new one.
     """
     there = in_the_way(new)
     if there is not None:
@@ -59,7 +61,7 @@ def rescue_book(damaged: Path, new: Path) -> Rescued:
         raise WrongUse(_stop("folder-absent", new.parent, "there is no such folder", "make it first"))
     making = new.with_name(f".{new.name}.making-{os.getpid()}")
     try:
-        rescued = _rescue(damaged, making, new)
+        rescued = _rescue(damaged, making, new, progress)
         settle(making)
         give_name(making, new)
     except FileExistsError:
@@ -72,11 +74,11 @@ def rescue_book(damaged: Path, new: Path) -> Rescued:
     return rescued
 
 
-def _rescue(damaged: Path, making: Path, new: Path) -> Rescued:
+def _rescue(damaged: Path, making: Path, new: Path, progress: Progress) -> Rescued:
     from ledger.book.migrations import MIGRATIONS, run_steps
 
     with _open_copy(damaged) as source, contextlib.closing(connect_new(making)) as target:
-        whole, left_out = _those_that_follow(_readable_entries(source))
+        whole, left_out = _those_that_follow(tuple(_readable_entries(source)), progress)
         if not whole:
             raise BookUnusable(
                 _stop("nothing-readable", damaged, "no entry can be read", "restore your last backup")
@@ -184,11 +186,12 @@ def _readable_rows(
     yield from reversed(back)
 
 
-def _those_that_follow(entries: Iterator[Entry]) -> tuple[list[Entry], tuple[int, ...]]:
+def _those_that_follow(entries: tuple[Entry, ...], progress: Progress) -> tuple[list[Entry], tuple[int, ...]]:
     whole: list[Entry] = []
     left_out: list[int] = []
     previous = FIRST_PREVIOUS
-    for entry in entries:
+    for done, entry in enumerate(entries):
+        progress("entries", done, len(entries))
         if not left_out and entry.seq == len(whole) + 1 and _fits(entry, previous):
             whole.append(entry)
             previous = entry.digest

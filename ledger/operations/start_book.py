@@ -12,22 +12,25 @@ from ledger.book.copies import give_name, in_the_way, settle
 from ledger.book.opening import connect_new
 from ledger.book.reading import StoredGeometry
 from ledger.errors import Finding, Refused, Severity, Where, WrongUse
-from ledger.operations.adopt_plan import (
-    Adopted,
-    PlanToAdopt,
-    read_plan_to_adopt,
-    right_now,
-    who,
-    write_adoption,
-)
+from ledger.model.progress import Progress, unwatched
+from ledger.operations.adopt_plan import Adopted, right_now, who, write_adoption
+from ledger.operations.plan_to_adopt import PlanToAdopt, read_plan_to_adopt
 
 
-def start_book(book: Path, plan: Path, *, by: str | None = None, now: datetime | None = None) -> Adopted:
+def start_book(
+    book: Path,
+    plan: Path,
+    *,
+    by: str | None = None,
+    now: datetime | None = None,
+    progress: Progress = unwatched,
+) -> Adopted:
     """Make a book at a path where nothing is, and adopt the plan into it.
 
     Raises
         Refused: something is at the path, or the plan has errors.
         WrongUse: there is no such plan folder, or no folder to make the book in.
+        Stopped: `progress` was told to end the work; nothing was written.
     """
     moment = now if now is not None else right_now()
     there = in_the_way(book)
@@ -36,7 +39,7 @@ def start_book(book: Path, plan: Path, *, by: str | None = None, now: datetime |
     if not book.parent.is_dir():
         raise WrongUse(_no_folder(book))
     geometry = StoredGeometry(None)
-    wanted = read_plan_to_adopt(plan, geometry)
+    wanted = read_plan_to_adopt(plan, geometry, progress=progress)
     # Made beside its place and named when whole, so that a kill half way leaves no half a book.
     making = book.with_name(f".{book.name}.making-{os.getpid()}")
     try:

@@ -12,6 +12,7 @@ from ledger.errors import Finding, Severity
 from ledger.fuel.report import FuelReport
 from ledger.mass.report import WeightReport
 from ledger.mass.weigh_up import weigh_up
+from ledger.model.progress import Progress, unwatched
 from ledger.operations.open_build import Build, open_build
 from ledger.operations.reckon_fuel import reckon_build
 from ledger.units import Display
@@ -46,14 +47,25 @@ class Stock:
     plate: Plate
 
 
-def take_stock(book: Path, before: Stock | None = None, *, with_fuel: bool = True) -> Stock:
-    """Read the book and reckon. Fuel comes from `before` where the plan is still the same adoption."""
+def take_stock(
+    book: Path,
+    before: Stock | None = None,
+    *,
+    with_fuel: bool = True,
+    progress: Progress = unwatched,
+) -> Stock:
+    """Read the book and reckon. Fuel comes from `before` where the plan is still the same adoption.
+
+    Raises
+        BookUnusable: the book cannot be opened.
+        Stopped: `progress` was told to end the work.
+    """
     build = open_build(book)
     snapshot = build.snapshot
     weights = weigh_up(snapshot, build.cell_places())
     fuel = _same_plans_fuel(build, before)
     if fuel is None and with_fuel:
-        fuel = reckon_build(build)
+        fuel = reckon_build(build, progress=progress)
     findings = run_rules(Facts(snapshot=snapshot, weights=weights, fuel=fuel))
     return Stock(
         build=build,

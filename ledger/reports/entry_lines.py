@@ -2,12 +2,10 @@
 
 from __future__ import annotations
 
+import shlex
 from collections.abc import Iterable, Sequence
-from typing import Any
 
-from ledger.errors import Finding
 from ledger.model.things import Minted
-from ledger.reports.figures import finding_figures
 from ledger.reports.plain import clean, how_many
 
 
@@ -43,20 +41,9 @@ def unfit_lines(no_longer_fits: Sequence[tuple[str, str, str]]) -> tuple[str, ..
     )
 
 
-def adopted_figures(
-    iteration: str,
-    seq: int | None,
-    digest: str | None,
-    no_longer_fits: Sequence[tuple[str, str, str]],
-    findings: Sequence[Finding],
-) -> dict[str, Any]:
-    """What `start --json` and `adopt --json` print."""
-    return {
-        "iteration": iteration,
-        "seq": seq,
-        "digest": digest,
-        "no_longer_fits": [
-            {"piece": piece, "state": state, "why": why} for piece, state, why in no_longer_fits
-        ],
-        "findings": finding_figures(findings),
-    }
+def look_closer_lines(book: str, before: str | None, iteration: str, unfit: int) -> tuple[str, ...]:
+    """Where the choices for pieces that no longer fit are told."""
+    if not unfit or before is None:
+        return ()
+    words = " ".join(shlex.quote(word) for word in (book, before, iteration))
+    return (clean(f"what can be done about each: wingledger compare {words}"),)

@@ -1,4 +1,4 @@
-"""The published JSON Schemas: one for each output with `--json`, one for each kind of entry.
+"""The published JSON Schemas: each output with `--json`, each kind of entry, and the layout file.
 
 `python -m ledger.reports.schemas` writes them to the folder `schemas`; a test says they are current.
 """
@@ -8,54 +8,35 @@ from __future__ import annotations
 import json
 import sys
 from pathlib import Path
-from typing import Any
 
 from ledger.mass.report import CAUSES
 from ledger.model import acts  # noqa: F401  the kinds are declared when this is imported
 from ledger.model.declare import KINDS, Field, Kind, Takes
 from ledger.model.plan import PartClass
+from ledger.reports.compare_schema import compared, unfit_piece
+from ledger.reports.layout_schema import layout_schema
+from ledger.reports.loft_schema import lofted
+from ledger.reports.schema_shapes import (
+    COUNT,
+    FINDING,
+    MATRIX_OR_NULL,
+    MINTED,
+    NUMBER,
+    NUMBER_OR_NULL,
+    SHA256,
+    TEXT,
+    TEXT_OR_NULL,
+    VECTOR,
+    VECTOR_OR_NULL,
+    YES_NO,
+    Schema,
+    each,
+    one_of,
+    record,
+)
 from ledger.units import SI_UNIT
 
-Schema = dict[str, Any]
-
 _DIALECT = "https://json-schema.org/draft/2020-12/schema"
-
-NUMBER: Schema = {"type": "number"}
-NUMBER_OR_NULL: Schema = {"type": ["number", "null"]}
-TEXT: Schema = {"type": "string"}
-TEXT_OR_NULL: Schema = {"type": ["string", "null"]}
-YES_NO: Schema = {"type": "boolean"}
-COUNT: Schema = {"type": "integer", "minimum": 0}
-VECTOR: Schema = {"type": "array", "items": NUMBER, "minItems": 3, "maxItems": 3}
-VECTOR_OR_NULL: Schema = {"anyOf": [VECTOR, {"type": "null"}]}
-MATRIX_OR_NULL: Schema = {
-    "anyOf": [{"type": "array", "items": VECTOR, "minItems": 3, "maxItems": 3}, {"type": "null"}]
-}
-SHA256: Schema = {"type": "string", "pattern": "^[0-9a-f]{64}$"}
-
-
-def record(**keys: Schema) -> Schema:
-    """An object with exactly these keys."""
-    return {
-        "type": "object",
-        "properties": keys,
-        "required": list(keys),
-        "additionalProperties": False,
-    }
-
-
-def each(item: Schema) -> Schema:
-    """A list of one thing."""
-    return {"type": "array", "items": item}
-
-
-def one_of(*words: str, or_null: bool = False) -> Schema:
-    """One of a few words."""
-    return {"enum": [*words, None] if or_null else list(words)}
-
-
-FINDING = record(code=TEXT, severity=one_of("stop", "look", "note"), where=TEXT, what=TEXT, do=TEXT)
-MINTED: Schema = {"type": "object", "additionalProperties": TEXT}
 
 
 def _weights() -> Schema:
@@ -168,7 +149,8 @@ def _adopted() -> Schema:
         iteration=TEXT,
         seq={"type": ["integer", "null"]},
         digest={"anyOf": [SHA256, {"type": "null"}]},
-        no_longer_fits=each(record(piece=TEXT, state=TEXT, why=TEXT)),
+        no_longer_fits=each(unfit_piece()),
+        comparison={"anyOf": [compared(), {"type": "null"}]},
         findings=each(FINDING),
     )
 
@@ -247,6 +229,8 @@ _OUTPUTS = {
     "enter": _entered,
     "adopt": _adopted,
     "check": _checked,
+    "compare": compared,
+    "loft": lofted,
 }
 
 
@@ -255,6 +239,7 @@ def all_schemas() -> dict[str, Schema]:
     schemas = {
         f"output/{name}.json": _titled(f"wingledger {name} --json", make()) for name, make in _OUTPUTS.items()
     }
+    schemas["layout.json"] = _titled("a layout file of wingledger loft", layout_schema())
     for kind in KINDS.values():
         # A plan is adopted by the command of that name, never by a row.
         if kind.word != "adopt":

@@ -17,6 +17,7 @@ FLOOR_M2, GROSS_M3 = 0.5, 0.1
 COMMANDS = (
     "open",
     "demo",
+    "loft",
     "start",
     "adopt",
     "enter",
@@ -25,6 +26,7 @@ COMMANDS = (
     "weights",
     "fuel",
     "trace",
+    "compare",
     "check",
     "backup",
     "restore",

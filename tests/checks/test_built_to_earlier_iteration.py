@@ -116,7 +116,7 @@ def test_a_geometry_changed_and_changed_back_is_in_order() -> None:
 
 
 def test_a_piece_of_a_withdrawn_iteration_is_noticed() -> None:
-    assert noticed(SECOND) == ["begun under r1; that iteration was withdrawn"]
+    assert noticed(SECOND) == ["begun under r1; that iteration was withdrawn, r2 is in force"]
 
 
 def test_a_piece_of_the_current_iteration_is_in_order() -> None:

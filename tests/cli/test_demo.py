@@ -51,13 +51,23 @@ ROWS = [
     },
 ]
 
+ADOPTED = {"kind": "adopt", "at": "2026-10-01T07:50:00+00:00", "by": "JK", "plan": "plans/r1"}
+LATER = {"kind": "adopt", "at": "2026-10-02T09:00:00+00:00", "by": "MT", "plan": "plans/r2"}
+LOG = [ADOPTED, *ROWS[:2], LATER, *ROWS[2:]]
+
 
 @pytest.fixture
 def sample(plan: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Path:
-    """A sample build of four entries in place of the one that comes with the program."""
+    """A sample build of two plans and four entries in place of the one that comes with the program."""
     folder = tmp_path / "sample"
-    shutil.copytree(plan, folder / "plan")
-    (folder / "log.jsonl").write_text("".join(json.dumps(row) + "\n" for row in ROWS), encoding="utf-8")
+    for name in ("r1", "r2"):
+        shutil.copytree(plan, folder / "plans" / name)
+        head = folder / "plans" / name / "plan.toml"
+        text = head.read_text(encoding="utf-8")
+        head.write_text(text.replace('name = "r1"', f'name = "{name}"'), encoding="utf-8")
+    (folder / "layouts").mkdir()
+    (folder / "layouts" / "wing.toml").write_text('format = "layout-1"\n', encoding="utf-8")
+    (folder / "log.jsonl").write_text("".join(json.dumps(row) + "\n" for row in LOG), encoding="utf-8")
     monkeypatch.setattr("ledger.operations.lay_out_demo.sample_folder", lambda: folder)
     return folder
 
@@ -90,35 +100,53 @@ def test_all_else_stays_as_it_was() -> None:
 @pytest.mark.usefixtures("sample")
 def test_each_entry_was_logged_when_it_was_done(tmp_path: Path) -> None:
     logged = entries(lay_out_demo(tmp_path / "try", NOW))
-    assert [entry["kind"] for entry in logged] == ["adopt", *(row["kind"] for row in ROWS)]
+    assert [entry["kind"] for entry in logged] == [row["kind"] for row in LOG]
     assert all(entry["at"] == entry["logged_at"] for entry in logged)
     assert datetime.fromisoformat(logged[-1]["at"]) == NOW - timedelta(minutes=2)
-    assert [entry["by"] for entry in logged] == ["JK", "JK", "JK", "AB", "AB"]
+    assert [entry["by"] for entry in logged] == ["JK", "JK", "JK", "MT", "AB", "AB"]
+    assert [json.loads(entry["body"]).get("plan") for entry in logged if entry["kind"] == "adopt"] == [
+        "r1",
+        "r2",
+    ]
 
 
-def test_the_plan_lies_beside_the_book_to_try_changes_on(sample: Path, tmp_path: Path) -> None:
+@pytest.mark.usefixtures("sample")
+def test_an_adoption_in_a_file_of_entries_is_refused_all_the_same(run: Any, tmp_path: Path) -> None:
     book = lay_out_demo(tmp_path / "try", NOW)
-    copied = {
-        path.relative_to(book.parent / "plan"): path.read_bytes()
-        for path in (book.parent / "plan").rglob("*")
-        if path.is_file()
-    }
-    kept = {
-        path.relative_to(sample / "plan"): path.read_bytes()
-        for path in (sample / "plan").rglob("*")
-        if path.is_file()
-    }
-    assert copied == kept
+    rows = tmp_path / "rows.jsonl"
+    rows.write_text(json.dumps({"kind": "adopt", "plan": "plans/r2"}), encoding="utf-8")
+    before = book.read_bytes()
+    ran = run("enter", book, "--from", rows)
+    assert (ran.code, ran.out) == (1, "")
+    assert "use the command: adopt BOOK PLAN" in ran.err
+    assert book.read_bytes() == before
+
+
+def contents(folder: Path) -> dict[Path, bytes]:
+    """Every file below a folder."""
+    return {path.relative_to(folder): path.read_bytes() for path in folder.rglob("*") if path.is_file()}
+
+
+@pytest.mark.parametrize("name", ["layouts", "plans"])
+def test_layouts_and_plans_lie_beside_the_book_to_try_changes_on(
+    sample: Path, tmp_path: Path, name: str
+) -> None:
+    book = lay_out_demo(tmp_path / "try", NOW)
+    assert contents(book.parent / name) == contents(sample / name) != {}
 
 
 @pytest.mark.usefixtures("sample")
 def test_nothing_is_left_beside_them(tmp_path: Path) -> None:
     lay_out_demo(tmp_path / "try", NOW)
-    assert {path.name for path in (tmp_path / "try").iterdir()} == {"two_seater.wingledger", "plan"}
+    assert {path.name for path in (tmp_path / "try").iterdir()} == {
+        "two_seater.wingledger",
+        "layouts",
+        "plans",
+    }
 
 
 @pytest.mark.usefixtures("sample")
-@pytest.mark.parametrize("name", ["two_seater.wingledger", "plan"])
+@pytest.mark.parametrize("name", ["two_seater.wingledger", "layouts", "plans"])
 def test_nothing_is_ever_written_over(run: Any, tmp_path: Path, name: str) -> None:
     folder = tmp_path / "try"
     folder.mkdir()
@@ -159,6 +187,7 @@ def test_the_report_fits_one_small_screen(run: Any, tmp_path: Path) -> None:
     assert max(width_of(line) for line in lines) <= 80
     assert lines[0].startswith("STOP ")
     assert any("usable" in line and "COMPUTED" in line for line in lines)
+    assert [line for line in lines if line.startswith("r2 for r1:  ")]
     assert "nothing here flies" in ran.err
 
 
@@ -182,6 +211,6 @@ def test_the_sample_that_comes_with_the_program_is_found_and_whole(run: Any, tmp
     rows = (sample_folder() / "log.jsonl").read_text(encoding="utf-8").splitlines()
     book = lay_out_demo(tmp_path / "try", datetime.now(UTC))
     read = json.loads(run("check", book, "--json").out)
-    assert (read["entries"], read["chain_ok"], read["replay_ok"]) == (len(rows) + 1, True, True)
+    assert (read["entries"], read["chain_ok"], read["replay_ok"]) == (len(rows), True, True)
     # The planted faults are what the demo is there to show.
     assert any(finding["severity"] == "stop" for finding in read["findings"])

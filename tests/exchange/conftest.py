@@ -1,15 +1,18 @@
-"""A small plan that is written to a folder with any of its files changed, and drawings and meshes."""
+"""A small plan, and a small layout, each with any of its files changed; drawings and meshes."""
 
 from __future__ import annotations
 
+import shutil
 from collections.abc import Callable, Iterable, Mapping
 from pathlib import Path
 from typing import Any
 
 import pytest
 
+from ledger.exchange.layout_toml import ReadLayout, read_layout
 from ledger.exchange.plan_folder import ReadPlan, read_plan
 
+SMALL_WING = Path(__file__).resolve().parents[2] / "sample_builds" / "small_wing"
 PLAN = """format = "plan-1"
 name = "r1"
 title = "First"
@@ -149,3 +152,25 @@ def box() -> Callable[..., str]:
 def told() -> Callable[[ReadPlan], list[str]]:
     """Findings as a person reads them."""
     return lambda read: [str(finding) for finding in read.findings]
+
+
+@pytest.fixture
+def read(tmp_path: Path) -> Callable[..., ReadLayout]:
+    """Reads a layout, by default the small wing, with texts in it replaced and files beside it added.
+
+    Files are named as `root__dat`.
+    """
+
+    def read_with(*changes: tuple[str, str], text: str | None = None, **files: str) -> ReadLayout:
+        content = (SMALL_WING / "layout.toml").read_text(encoding="utf-8") if text is None else text
+        for was, becomes in changes:
+            assert was in content, was
+            content = content.replace(was, becomes, 1)
+        for name in ("materials.csv", "laminates.csv"):
+            shutil.copy(SMALL_WING / name, tmp_path)
+        for name, other in files.items():
+            (tmp_path / name.replace("__", ".")).write_text(other, encoding="utf-8")
+        (tmp_path / "layout.toml").write_text(content, encoding="utf-8")
+        return read_layout(tmp_path / "layout.toml")
+
+    return read_with

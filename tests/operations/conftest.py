@@ -108,3 +108,75 @@ def shop(tmp_path: Path, stocked: Shop) -> Any:
     made = Shop(tmp_path / "wing.book")
     made.now = stocked.now
     return made
+
+
+class Drawing:
+    """Small plans written row by row: ribs of 0.1 m2, a skin of two plies on 1 m2, items, a box of a tank."""
+
+    HEADS = (
+        "part,title,class,side,assembly,form,made_of,geometry,geometry_unit,origin,across,up_axis,quantity,"
+        "planned_mass"
+    )
+    PLIES = "PLIES,plies,skin,L,WING,skin,SKIN,geometry/skin.obj,m,,,,,"
+
+    @staticmethod
+    def rib(
+        name: str = "RIB", *, file: str = "rib", x: float = 0.0, quantity: int = 1, made_of: str = "SHEET"
+    ) -> str:
+        """A rib's row; `long` is a file of one a tenth longer."""
+        return f"{name},a rib,rib,L,WING,skin,{made_of},geometry/{file}.obj,m,{x} 0 0,1 0 0,0 0 1,{quantity},"
+
+    @staticmethod
+    def item(name: str, mass: str, x: float = 0.0, y: float = 0.0) -> str:
+        """An item's row."""
+        return f"{name},a thing,fitting,L,WING,item,,,m,{x} {y} 0,,,,{mass}"
+
+    @staticmethod
+    def box(length: float, width: float) -> str:
+        """A closed box 0.2 m high, as OBJ in metres."""
+        corners = "".join(
+            f"v {x} {y} {z}\n"
+            for z in (0, 0.2)
+            for x, y in ((0, 0), (length, 0), (length, width), (0, width))
+        )
+        return corners + "f 1 4 3 2\nf 5 6 7 8\nf 1 2 6 5\nf 2 3 7 6\nf 3 4 8 7\nf 4 1 5 8\n"
+
+    @staticmethod
+    def write(
+        folder: Path,
+        name: str,
+        rows: list[str],
+        *,
+        files: dict[str, str] | None = None,
+        tank: str | None = None,
+        head: str = "",
+        steps: tuple[int, ...] = (0, 45),
+    ) -> Path:
+        """A plan folder of these rows of parts."""
+        (folder / "geometry").mkdir(parents=True, exist_ok=True)
+        title = f'format = "plan-1"\nname = "{name}"\ntitle = "T {name}"\n'
+        (folder / "plan.toml").write_text(title + head)
+        materials = "material,kind,areal_mass [g/m2]\ncloth,fabric,200\nepoxy,resin,\n"
+        (folder / "materials.csv").write_text(materials)
+        plies = "".join(f"SKIN,,{number},cloth,{turn},50\n" for number, turn in enumerate(steps, start=1))
+        (folder / "laminates.csv").write_text(
+            "laminate,areal_mass [g/m2],step,material,orientation [deg],resin_fraction [%]\n"
+            f"SHEET,1500,,,,\nTHICK,3000,,,,\n{plies}"
+        )
+        (folder / "parts.csv").write_text("\n".join([Drawing.HEADS, *rows]) + "\n")
+        shapes = {"rib": _sheet(0.5, 0.2), "long": _sheet(0.55, 0.2), "skin": _sheet(1.0, 1.0)}
+        for file, text in (shapes | (files or {})).items():
+            (folder / "geometry" / f"{file}.obj").write_text(text)
+        if tank is not None:
+            (folder / "tanks.toml").write_text(tank)
+        return folder
+
+
+def _sheet(length: float, height: float) -> str:
+    return f"v 0 0 0\nv {length} 0 0\nv {length} {height} 0\nv 0 {height} 0\nf 1 2 3 4\n"
+
+
+@pytest.fixture(scope="session")
+def drawing() -> type[Drawing]:
+    """The writer of small plans."""
+    return Drawing

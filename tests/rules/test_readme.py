@@ -20,6 +20,8 @@ import trimesh
 
 from ledger.cli.app import run_command, wingledger
 from ledger.exchange import materials_table, openings_toml, parts_table, plan_toml, tanks_toml
+from ledger.loft import layout_keys
+from ledger.loft.keys import TableKeys
 from ledger.model.acts import Adopt
 from ledger.model.declare import KINDS
 from ledger.tui.tour import ACTS, Act
@@ -152,7 +154,7 @@ def _known_words() -> list[str]:
     shapes = [key for keys in openings_toml._SHAPES.values() for key in keys]
     keys = (
         *plan_toml._KEYS,
-        *plan_toml._ATTITUDE_KEYS,
+        *plan_toml.ATTITUDE_KEYS,
         *openings_toml._KEYS,
         *shapes,
         *tanks_toml._CELL_KEYS,
@@ -162,5 +164,23 @@ def _known_words() -> list[str]:
 
 @pytest.mark.parametrize("word", _known_words())
 def test_every_column_and_key_of_a_plan_is_explained(word: str) -> None:
-    chapter = README[README.index("## The plan, file by file") : README.index("## Methods")]
+    chapter = README[README.index("## The plan, file by file") : README.index("## The layout, table")]
     assert re.search(rf"[`\[ ]{word}[`\]]|`{word} =", chapter)
+
+
+# Tables of which a plan's own chapter tells the keys; classes of part stand in the list of parts.
+OWN_TABLES = [
+    table for table in layout_keys.TABLES if table.keys and table.word not in ("tolerance", "growth")
+]
+
+
+@pytest.mark.parametrize("table", OWN_TABLES, ids=lambda table: table.word)
+def test_every_key_of_a_table_of_a_layout_is_explained_in_its_row(table: TableKeys) -> None:
+    plan, layout, rest = (README.index(f"## {head}") for head in ("The plan,", "The layout,", "Methods"))
+    head = f"`[[{table.word}]]`" if table.many else f"`[{table.word}]`"
+    rows = (README[layout:rest] + README[plan:layout]).splitlines()
+    row = next((row for row in rows if row.startswith("|") and head in row.split("|")[1]), "")
+    assert row, f"README has no row for {head}"
+    # A port's height is as that of a hole, and a title may stand beside every part.
+    shared = {"title", *({"above_lower", "below_upper", "height"} if "`bay`" in row else ())}
+    assert [key for key in table.words if key not in shared and not re.search(rf"\b{key}\b", row)] == []
