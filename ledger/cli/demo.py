@@ -7,6 +7,7 @@ from pathlib import Path
 import click
 
 from ledger.cli.app import OpenScreens
+from ledger.cli.progress import watched
 from ledger.cli.say import print_lines, print_words
 
 
@@ -21,7 +22,8 @@ def demo_command(open_screens: OpenScreens, folder: Path | None, report: bool) -
     """
     from ledger.operations.lay_out_demo import free_folder, lay_out_demo
 
-    book = lay_out_demo(folder if folder is not None else free_folder(Path.cwd()))
+    with watched() as progress:
+        book = lay_out_demo(folder if folder is not None else free_folder(Path.cwd()), progress=progress)
     print_words([f"Invented build, nothing here flies. The book is {book}"])
     if report:
         _print_report(book)
@@ -42,7 +44,8 @@ def _print_report(book: Path) -> None:
     from ledger.reports.demo_lines import demo_lines
 
     weights = weigh_up_build(book)
-    fuel = reckon_fuel(book)
     last = [iteration.name for iteration in open_build(book).snapshot.iterations[-2:]]
-    change = compare_iterations(book, *last) if len(last) == 2 else None
+    with watched() as progress:
+        fuel = reckon_fuel(book, progress=progress)
+        change = compare_iterations(book, *last, progress=progress) if len(last) == 2 else None
     print_lines(demo_lines(weights.report, fuel.report, fuel.findings, weights.display, change=change))

@@ -32,6 +32,7 @@ def reckon(
     listed: tuple[str, ...] | None = None,
     asked: Attitude | None = None,
     temperature_k: float | None = None,
+    volumes_only: bool = False,
     progress: Progress = unwatched,
 ) -> FuelReport:
     """Reckon all tanks of a plan.
@@ -42,6 +43,8 @@ def reckon(
         whatever is listed.
     asked : one more attitude to show; it never counts as flight.
     temperature_k : of the fuel, for masses; 15 C where None.
+    volumes_only : leave out tables, what moving an opening would free, and whether openings and cells
+        lie where they belong: all that two plans are not compared by.
     progress : told every attitude the plan is stood at, then every tank at each attitude shown.
     Raises
         ValueError: levels below 1, or a listed name that is no attitude of the plan.
@@ -50,9 +53,32 @@ def reckon(
     if not tanks.tanks:
         return FuelReport(tanks=(), feeds=())
     system = System.of(tanks, cells, displaced)
+    return _reckoned(
+        system,
+        attitudes,
+        listed=listed,
+        asked=asked,
+        progress=progress,
+        levels=levels,
+        volumes_only=volumes_only,
+        density_kg_m3=density_at(fuel, temperature_k),
+    )
+
+
+def _reckoned(
+    system: System,
+    attitudes: tuple[Attitude, ...],
+    *,
+    listed: tuple[str, ...] | None,
+    asked: Attitude | None,
+    progress: Progress,
+    levels: int,
+    volumes_only: bool,
+    density_kg_m3: float | None,
+) -> FuelReport:
     chosen = _that_count(attitudes, listed)
     showing = sum(listed is None or one.name in listed for one in chosen) + (asked is not None)
-    steps = Steps(len(chosen) + len(tanks.tanks) * showing, progress)
+    steps = Steps(len(chosen) + len(system.tanks.tanks) * showing, progress)
     stoods = _stand_all(system, chosen, steps)
     shown = [stood for stood in stoods if listed is None or stood.attitude.name in listed]
     if asked is not None:
@@ -60,7 +86,8 @@ def reckon(
     wanted = Wanted(
         told=steps,
         steps=levels,
-        density_kg_m3=density_at(fuel, temperature_k),
+        volumes_only=volumes_only,
+        density_kg_m3=density_kg_m3,
         ground=next((stood for stood in stoods if stood.attitude.fill), None),
         flights=tuple(stood for stood in stoods if stood.attitude.flight),
         listed=tuple(shown),
@@ -90,8 +117,8 @@ def _report(system: System, wanted: Wanted) -> FuelReport:
             tank_fuel(tank, system.group_of(tank), filled[tank.name], wanted) for tank in tanks.tanks
         ),
         feeds=feed_rows(system, filled, flights),
-        far_openings=far_openings(tanks, system.cells),
-        overlaps=overlaps(system.cells),
+        far_openings=() if wanted.volumes_only else far_openings(tanks, system.cells),
+        overlaps=() if wanted.volumes_only else overlaps(system.cells),
         airless=_airless(flights, tanks),
         pocketed=_pocketed(flights, tanks),
     )

@@ -11,7 +11,7 @@ from ledger.fuel.capacity import Filled, lost_overboard
 from ledger.fuel.freeing import LEAST_M3, freed_lower, freed_wider
 from ledger.fuel.layout import Group
 from ledger.fuel.pool import Pool
-from ledger.fuel.report import AttitudeFuel, DrainedCell, DrainedRow, FilledCell, TankFuel
+from ledger.fuel.report import AttitudeFuel, DrainedCell, DrainedRow, FilledCell, TableRow, TankFuel
 from ledger.fuel.stood import Stood
 from ledger.fuel.tank_tables import Draining, table_rows
 from ledger.fuel.worst import UNKNOWN, Worst, usable_uncertainty, worst_of
@@ -25,10 +25,12 @@ class Wanted:
 
     ground : where the tanks are filled. flights : all flight attitudes. listed : those to show.
     any_stood : one of them, or a level one where the plan has none, for what no attitude changes.
+    volumes_only : no tables, and not what moving an opening would free.
     told : who is told each attitude of a tank before it is reckoned.
     """
 
     steps: int
+    volumes_only: bool
     density_kg_m3: float | None
     ground: Stood | None
     flights: tuple[Stood, ...]
@@ -93,17 +95,12 @@ def _attitude(
     tank: Tank, group: Group, stood: Stood, filled: Filled | None, *, worst_m3: float | None, wanted: Wanted
 ) -> AttitudeFuel:
     wanted.told.take(f"fuel, {tank.name} at {stood.attitude.name}")
-    bays = [stood.bays[cell] for cell in tank.cells]
-    pool = Pool(bays)
-    levels = np.linspace(pool.lowest_m, pool.highest_m, wanted.steps + 1)
-    sums = pool.at(levels)
     trapped = stood.trapped_in(tank)
     lost = None if filled is None else lost_overboard(tank, group, stood, filled)
+    table: tuple[TableRow, ...] = ()
     drained: tuple[DrainedRow, ...] = ()
-    if filled is not None and lost is not None and trapped is not None:
-        drained = Draining(bays, stood.kept, (pool, levels, sums)).rows(
-            filled.capacity_m3 - lost, wanted.steps, worst_m3=worst_m3, density_kg_m3=wanted.density_kg_m3
-        )
+    if not wanted.volumes_only:
+        table, drained = _tables(tank, stood, filled, wanted, lost_m3=lost, worst_m3=worst_m3)
     return AttitudeFuel(
         attitude=stood.attitude.name,
         pitch_deg=stood.attitude.pitch_deg,
@@ -112,15 +109,38 @@ def _attitude(
         flight=stood.attitude.flight,
         trapped_m3=trapped,
         lost_m3=lost,
-        cells=tuple(_drained_cell(cell, stood) for cell in tank.cells),
-        table=table_rows(
-            levels,
-            sums,
-            displaced_m3=sum(bay.cell.displaced_m3 or 0.0 for bay in bays),
-            filled_m3=0.0 if filled is None else _standing_when_filled(filled, wanted.ground),
-        ),
+        cells=tuple(_drained_cell(cell, stood, freeing=not wanted.volumes_only) for cell in tank.cells),
+        table=table,
         drained=drained,
     )
+
+
+def _tables(
+    tank: Tank,
+    stood: Stood,
+    filled: Filled | None,
+    wanted: Wanted,
+    *,
+    lost_m3: float | None,
+    worst_m3: float | None,
+) -> tuple[tuple[TableRow, ...], tuple[DrainedRow, ...]]:
+    """What the tank holds below each level, and what is in it while it drains."""
+    bays = [stood.bays[cell] for cell in tank.cells]
+    pool = Pool(bays)
+    levels = np.linspace(pool.lowest_m, pool.highest_m, wanted.steps + 1)
+    sums = pool.at(levels)
+    drained: tuple[DrainedRow, ...] = ()
+    if filled is not None and lost_m3 is not None and stood.trapped_in(tank) is not None:
+        drained = Draining(bays, stood.kept, (pool, levels, sums)).rows(
+            filled.capacity_m3 - lost_m3, wanted.steps, worst_m3=worst_m3, density_kg_m3=wanted.density_kg_m3
+        )
+    table = table_rows(
+        levels,
+        sums,
+        displaced_m3=sum(bay.cell.displaced_m3 or 0.0 for bay in bays),
+        filled_m3=0.0 if filled is None else _standing_when_filled(filled, wanted.ground),
+    )
+    return table, drained
 
 
 def _standing_when_filled(filled: Filled, ground: Stood | None) -> float:
@@ -130,13 +150,13 @@ def _standing_when_filled(filled: Filled, ground: Stood | None) -> float:
     return sum(ground.bays[cell.cell].net(filled.filling.level_of(cell.cell)) for cell in filled.cells)
 
 
-def _drained_cell(name: str, stood: Stood) -> DrainedCell:
+def _drained_cell(name: str, stood: Stood, *, freeing: bool) -> DrainedCell:
     kept, bay = stood.kept[name], stood.bays[name]
     pockets = stood.pockets(name)
     trapped = stood.trapped(name, kept)
     partly = 0.0 < trapped < bay.volume(math.inf)
     lower = wider = None
-    if kept.opening is not None and pockets == 1 and trapped > LEAST_M3:
+    if freeing and kept.opening is not None and pockets == 1 and trapped > LEAST_M3:
         lower, wider = freed_lower(stood, kept.opening), freed_wider(stood, kept.opening)
     return DrainedCell(
         cell=name,

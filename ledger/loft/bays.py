@@ -81,15 +81,7 @@ def filled_space(
     taken = {cell.bay.name for cell in cells}
     found, faults = [], []
     for fill in layout.fills:
-        bays = [
-            bay
-            for name in fill.rows
-            for bay in (
-                _between_ribs(division, name, fill.ribs)
-                if fill.ribs is not None
-                else tuple(bay for bay in division.bays if bay.row.name == name)
-            )
-        ]
+        bays = _bays_of(fill, division)
         wet = [bay.name for bay in bays if bay.name in {cell.bay.name for cell in cells}]
         if wet and fill.ribs is not None:
             faults.append(
@@ -116,6 +108,13 @@ def filled_space(
             continue
         found.append((fill, solid))
     return tuple(found), tuple(faults)
+
+
+def _bays_of(fill: Fill, division: Division) -> list[Bay]:
+    ribs = fill.ribs
+    if ribs is None:
+        return [bay for name in fill.rows for bay in division.bays if bay.row.name == name]
+    return [bay for name in fill.rows for bay in _between_ribs(division, name, ribs)]
 
 
 def spots(

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from itertools import pairwise
 from typing import Any
 
@@ -17,6 +17,11 @@ Body = Any
 
 Booleans = NDArray[np.bool_]
 
+
+class NoSolidError(ValueError):
+    """A mesh that encloses nothing, or not once."""
+
+
 # Far enough beyond any wing that a prism of this height is as good as endless.
 BEYOND_M = 1e3
 _TOLERANCE_M = 1e-12
@@ -24,7 +29,7 @@ _NO_AREA_M2 = 1e-13
 
 
 def body_of(mesh: Mesh) -> Body:
-    """A closed mesh as a solid. Raises ValueError for one that encloses nothing, or not once."""
+    """A closed mesh as a solid. Raises NoSolidError for one that encloses nothing, or not once."""
     from manifold3d import Error, Manifold, Mesh64
 
     body = Manifold(
@@ -35,7 +40,7 @@ def body_of(mesh: Mesh) -> Body:
         )
     )
     if body.status() != Error.NoError:
-        raise ValueError(f"the mesh is no solid: {body.status()}")
+        raise NoSolidError(f"the mesh is no solid: {body.status()}")
     return body
 
 
@@ -175,4 +180,11 @@ def tidied(vertices: Floats, faces: Indices) -> Mesh:
 
 def _with_three_corners(faces: Indices) -> Indices:
     a, b, c = faces.T
-    return faces[(a != b) & (b != c) & (c != a)]
+    return np.asarray(faces[(a != b) & (b != c) & (c != a)])
+
+
+def runs(there: Sequence[bool]) -> Iterator[tuple[int, int]]:
+    """For pieces between corners: first and last corner of each unbroken run of pieces that are there."""
+    edges = np.flatnonzero(np.diff([False, *there, False]))
+    for first, last in edges.reshape(-1, 2):
+        yield int(first), int(last)

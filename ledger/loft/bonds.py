@@ -15,6 +15,8 @@ from ledger.loft.layout import FilletShape, Joint, Layout, Walls
 from ledger.loft.lofted import BondRun, Floats, PanelEdge
 from ledger.loft.panels import FlatPanel, panel_edges
 
+_SAME_M = 1e-9
+
 
 @dataclass(frozen=True, kw_only=True, eq=False)
 class _Bonded:
@@ -113,10 +115,11 @@ def _length_between(spot: Spot, points_m: Floats) -> float:
     """How much of a line lies along a stretch of its panel; what stands upright at an end counts whole."""
     local = spot.panel.wall.slab.local(points_m)
     start, end = local[:-1], local[1:]
-    along = end[:, 0] - start[:, 0]
+    along = np.abs(end[:, 0] - start[:, 0])
     length = np.linalg.norm(end - start, axis=1)
     # A panel is a gap shorter than its stretch, so what stands at its ends lies just inside.
     low, high = np.minimum(start[:, 0], end[:, 0]), np.maximum(start[:, 0], end[:, 0])
     inside = np.minimum(high, spot.end_m) - np.maximum(low, spot.start_m)
-    share = np.where(np.abs(along) > 0.0, inside / np.where(along == 0.0, 1.0, np.abs(along)), inside >= 0.0)
+    upright = along < _SAME_M
+    share = np.where(upright, inside > -_SAME_M, inside / np.where(upright, 1.0, along))
     return float(np.sum(length * np.clip(share, 0.0, 1.0)))

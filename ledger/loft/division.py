@@ -4,13 +4,14 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from functools import partial
 from itertools import pairwise
 
 import numpy as np
 
 from ledger.errors import Finding, Where
-from ledger.loft.bodies import Body, beyond_plane, body_of, prism, united
-from ledger.loft.faults import stop
+from ledger.loft.bodies import Body, beyond_plane, body_of, prism, runs, united
+from ledger.loft.faults import Tick, stop
 from ledger.loft.layout import Cap, Layout, Row, Surface
 from ledger.loft.lofted import Floats
 from ledger.loft.shell import Shell, layer, void
@@ -18,6 +19,8 @@ from ledger.loft.walls import RibPlane, Slab, WebLength, WebLine, chord_point, r
 
 # What is left of a wall over less than this is a shaving, not a panel.
 _SHAVING_M3 = 1e-9
+# A layer that is deeper than its skin is curved folds, and has less than a straight one.
+_UNFOLDED = 0.9
 
 
 @dataclass(frozen=True, kw_only=True, eq=False)
@@ -42,10 +45,11 @@ class Wall:
 
 @dataclass(frozen=True, kw_only=True, eq=False)
 class CapSolid:
-    """A cap and its body."""
+    """A cap and its body, and the least that a straight strip of its size takes up."""
 
     cap: Cap
     solid: Body
+    strip_m3: float
 
 
 @dataclass(frozen=True, kw_only=True, eq=False)
@@ -82,7 +86,7 @@ class Division:
 
 
 def divide(
-    layout: Layout, shell: Shell, lines: tuple[WebLine, ...], planes: tuple[RibPlane, ...]
+    layout: Layout, shell: Shell, lines: tuple[WebLine, ...], planes: tuple[RibPlane, ...], tick: Tick
 ) -> tuple[Division | None, tuple[Finding, ...]]:
     """Cut the void up. A rib is cut between webs but for those it runs through; webs are cut for those.
 
@@ -94,9 +98,9 @@ def divide(
     caps = tuple(_cap_solids(layout, shell, by_name))
     open_space = inside - united(cap.solid for cap in caps) if caps else inside
     cutters = tuple(_rib_cutters(layout, shell, planes, by_name))
-    ribs, faults = _rib_walls(cutters, by_name, open_space)
-    webs, more = _web_walls(lines, cutters, open_space)
-    crossing = (*_overlapping(caps), *_crossing(ribs), *_crossing(webs))
+    ribs, faults = _rib_walls(cutters, by_name, open_space, tick)
+    webs, more = _web_walls(lines, cutters, open_space, tick)
+    crossing = (*_too_thick(caps, inside), *_overlapping(caps), *_crossing(ribs), *_crossing(webs))
     if faults or more or crossing:
         return None, (*faults, *more, *crossing)
     slabs = united(length.slab.body for line in lines for length in line.lengths)
@@ -124,7 +128,8 @@ def _cap_solids(layout: Layout, shell: Shell, lines: dict[str, WebLine]) -> Iter
             run = _strips_over(shell, block, line, cap)
             strip = prism(_strip_over_web(line, cap, low, high))
             pieces.append(body_of(layer(shell, block, run, cap.thickness_m)) ^ strip)
-        yield CapSolid(cap=cap, solid=united(pieces))
+        strip_m3 = cap.width_m * cap.thickness_m * (high - low)
+        yield CapSolid(cap=cap, solid=united(pieces), strip_m3=strip_m3)
 
 
 def _strip_over_web(line: WebLine, cap: Cap, low_m: float, high_m: float) -> Floats:
@@ -171,13 +176,18 @@ def _rib_cutters(
 
 
 def _rib_walls(
-    cutters: tuple[_Cutter, ...], lines: dict[str, WebLine], open_space: Body
+    cutters: tuple[_Cutter, ...], lines: dict[str, WebLine], open_space: Body, tick: Tick
 ) -> tuple[tuple[Wall, ...], tuple[Finding, ...]]:
     walls, faults = [], []
+    rooms: dict[tuple[str, ...], Body] = {}
     for cutter in cutters:
+        tick()
         plane, group = cutter.plane, cutter.group
-        cutting = [line for line in lines.values() if not _runs_through(cutter, line)]
-        room = open_space - united(length.slab.body for line in cutting for length in line.lengths)
+        cutting = tuple(name for name, line in lines.items() if not _runs_through(cutter, line))
+        if cutting not in rooms:
+            slabs = [length.slab.body for name in cutting for length in lines[name].lengths]
+            rooms[cutting] = open_space - united(slabs)
+        room = rooms[cutting]
         solid = room ^ cutter.body
         if solid.volume() < _SHAVING_M3:
             faults.append(_no_room(plane.rib.place, f"rib {plane.rib.name} in row {group[0].name}"))
@@ -223,10 +233,11 @@ def _middle(group: tuple[Row, ...], lines: dict[str, WebLine], plane: RibPlane) 
 
 
 def _web_walls(
-    lines: tuple[WebLine, ...], cutters: tuple[_Cutter, ...], open_space: Body
+    lines: tuple[WebLine, ...], cutters: tuple[_Cutter, ...], open_space: Body, tick: Tick
 ) -> tuple[tuple[Wall, ...], tuple[Finding, ...]]:
     walls, faults = [], []
     for line in lines:
+        tick()
         running = [cutter.body for cutter in cutters if _runs_through(cutter, line)]
         room = open_space - united(running) if running else open_space
         for length in line.lengths:
@@ -259,6 +270,17 @@ def _crossing(walls: tuple[Wall, ...]) -> Iterator[Finding]:
         yield stop(walls[other].place, "walls-cross", what, "move one of them")
 
 
+def _too_thick(caps: tuple[CapSolid, ...], inside: Body) -> Iterator[Finding]:
+    for one in caps:
+        cap, volume = one.cap, one.solid.volume()
+        folded = volume < _UNFOLDED * one.strip_m3
+        if folded or volume - (one.solid ^ inside).volume() > _SHAVING_M3:
+            what = f"{cap.part} has no room under the {cap.surface.value} skin"
+            yield stop(
+                cap.place, "cap-too-thick", what, "make it thinner, or end it where the section is deep"
+            )
+
+
 def _overlapping(caps: tuple[CapSolid, ...]) -> Iterator[Finding]:
     for one, other in _meeting([cap.solid for cap in caps]):
         cap = caps[other].cap
@@ -287,27 +309,54 @@ def _no_room(place: Where, name: str) -> Finding:
 
 
 def _row_prism(layout: Layout, shell: Shell, row: Row, lines: dict[str, WebLine]) -> Body:
-    """Everything above and below a row, between the mid-planes of the webs that bound it."""
+    """Everything above and below a row, between the mid-planes of the webs that bound it.
+
+    Both are carried on beyond their ends; where they would cross there, the row has come to its end.
+    """
     reach = reach_of(shell)
-    low, high = shell.butt_lines_m[0], shell.butt_lines_m[-1]
+    low, high = float(shell.butt_lines_m[0]), float(shell.butt_lines_m[-1])
     nose, _, level = chord_point(layout, low, 0.0)
-    front = _side_of_row(lines.get(row.front), nose - reach, low, high, reach)
-    rear = _side_of_row(lines.get(row.rear), nose + reach, low, high, reach)
-    return prism(np.concatenate((rear, front[::-1])), level - reach, level + reach)
+    bounds = [lines[name] for name in (row.front, row.rear) if name in lines]
+    at = np.array(sorted({low, high, *(y for line in bounds for _, y in line.points if low < y < high)}))
+    front = _stations_of(lines.get(row.front), nose - reach, at)
+    rear = _stations_of(lines.get(row.rear), nose + reach, at)
+    at, front, rear = _with_crossings(at, front, rear)
+    # Straight on across the span beyond root and tip, where two lines at an angle would cross in the end.
+    at[0], at[-1] = low - reach, high + reach
+    at, front, rear = (np.concatenate((one[:1], one, one[-1:])) for one in (at, front, rear))
+    at[1], at[-2] = low, high
+    pieces = []
+    for first, last in runs((rear[:-1] + rear[1:] > front[:-1] + front[1:]).tolist()):
+        aft = np.column_stack((rear, at))[first : last + 1]
+        forward = np.column_stack((front, at))[first : last + 1][::-1]
+        pieces.append(prism(np.concatenate((aft, forward)), level - reach, level + reach))
+    return united(pieces)
 
 
-def _side_of_row(line: WebLine | None, beyond: float, low: float, high: float, reach: float) -> Floats:
-    if line is None:
-        return np.array([(beyond, low - reach), (beyond, high + reach)])
-    points = [point for point in line.points if low <= point[1] <= high]
-    first, last = (line.station(low - reach), low - reach), (line.station(high + reach), high + reach)
-    return np.array([first, *points, last])
+def _stations_of(line: WebLine | None, beyond: float, at: Floats) -> Floats:
+    return np.array([beyond if line is None else line.station(float(one)) for one in at])
+
+
+def _with_crossings(at: Floats, front: Floats, rear: Floats) -> tuple[Floats, Floats, Floats]:
+    """Two lines with a corner more wherever they cross."""
+    wide = rear - front
+    crossed = np.flatnonzero(wide[:-1] * wide[1:] < 0.0)
+    share = wide[crossed] / (wide[crossed] - wide[crossed + 1])
+    lines = at[crossed] + share * (at[crossed + 1] - at[crossed])
+    stations = front[crossed] + share * (front[crossed + 1] - front[crossed])
+    place = crossed + 1
+    return np.insert(at, place, lines), np.insert(front, place, stations), np.insert(rear, place, stations)
 
 
 def _bays(layout: Layout, planes: tuple[RibPlane, ...], lines: dict[str, WebLine]) -> Iterator[Bay]:
     for row in layout.rows:
         standing = [plane for plane in planes if row.name in plane.rib.rows]
-        standing.sort(key=lambda plane, row=row: plane.butt_line(_middle((row,), lines, plane)))
+        standing.sort(key=partial(_butt_line_in, row, lines))
         for inboard, outboard in pairwise((None, *standing, None)):
             name = f"{row.name}{inboard.rib.name if inboard is not None else '0'}"
             yield Bay(name=name, row=row, inboard=inboard, outboard=outboard)
+
+
+def _butt_line_in(row: Row, lines: dict[str, WebLine], plane: RibPlane) -> float:
+    """Where a rib stands in the middle of a row, which may be another order than that of its origin."""
+    return plane.butt_line(_middle((row,), lines, plane))

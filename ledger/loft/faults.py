@@ -1,8 +1,13 @@
-"""What is wrong with a layout, found by its geometry, at the line that says it."""
+"""What is wrong with a layout, at the line that says it, and where long work may be ended."""
 
 from __future__ import annotations
 
+from collections.abc import Callable
+
 from ledger.errors import Finding, Severity, Where
+
+# Called between two pieces of long work: what it raises ends the work.
+Tick = Callable[[], None]
 
 
 def stop(place: Where, code: str, what: str, do: str) -> Finding:

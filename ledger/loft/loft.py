@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from functools import partial
+
 from ledger.errors import Finding
 from ledger.loft.accounting import account, is_proved
 from ledger.loft.bays import Spot, TankBay, filled_space, spots, tank_bays
@@ -44,7 +46,7 @@ def loft(layout: Layout, progress: Progress = unwatched) -> tuple[Lofted | None,
     planes, faults = rib_planes(layout, shell, by_name)
     if faults:
         return None, faults
-    division, faults = divide(layout, shell, lines, planes)
+    division, faults = divide(layout, shell, lines, planes, partial(_tell, progress, 1))
     if division is None:
         return None, faults
     return _fitted_out(layout, shell, division, by_name, progress)
@@ -53,8 +55,7 @@ def loft(layout: Layout, progress: Progress = unwatched) -> tuple[Lofted | None,
 def _fitted_out(
     layout: Layout, shell: Shell, division: Division, lines: dict[str, WebLine], progress: Progress
 ) -> tuple[Lofted | None, tuple[Finding, ...]]:
-    _tell(progress, 2)
-    panels, unfit = flat_panels(layout, (*division.ribs, *division.webs), lines)
+    panels, unfit = flat_panels(layout, (*division.ribs, *division.webs), lines, partial(_tell, progress, 2))
     if unfit:
         return None, unfit
     _tell(progress, 3)
@@ -69,8 +70,7 @@ def _fitted_out(
     faults = (*no_tank, *no_fill, *no_hole, *no_port, *no_bond, *no_strip)
     if faults:
         return None, faults
-    _tell(progress, 5)
-    found = account(shell, division, panels, cells, fills)
+    found = account(shell, division, panels, cells, fills, tick=partial(_tell, progress, 5))
     if not is_proved(found):
         return None, (_unproved(layout, found.apart_m3, found.shared_m3),)
     lofted = Lofted(

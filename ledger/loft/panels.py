@@ -12,10 +12,10 @@ import numpy as np
 from ledger.errors import Finding
 from ledger.loft.bodies import Body, beyond_plane, mesh_of, plate
 from ledger.loft.division import Wall
-from ledger.loft.faults import stop
+from ledger.loft.faults import Tick, stop
 from ledger.loft.layout import NOSE, TAIL, Edge
 from ledger.loft.lofted import Floats, PanelEdge
-from ledger.loft.walls import WebLine, row_stations
+from ledger.loft.walls import Slab, WebLine, row_stations
 from ledger.model.plan import Placement
 
 if TYPE_CHECKING:
@@ -59,12 +59,16 @@ class FlatPanel:
 
 
 def flat_panels(
-    layout: Layout, walls: tuple[Wall, ...], lines: dict[str, WebLine]
+    layout: Layout, walls: tuple[Wall, ...], lines: dict[str, WebLine], tick: Tick
 ) -> tuple[tuple[FlatPanel, ...], tuple[Finding, ...]]:
-    """Every wall's panels: one, or where ribs run through a web one for each stretch between them."""
+    """Every wall's panels: one, or where ribs run through a web one for each stretch between them.
+
+    `tick` is called before each wall.
+    """
     found: list[FlatPanel] = []
     faults: list[Finding] = []
     for wall in walls:
+        tick()
         pieces = _spaces(wall, _limits(layout, wall, lines))
         if wall.rib is not None and len(pieces) > 1:
             faults.append(_in_pieces(wall, len(pieces)))
@@ -111,22 +115,32 @@ def _spaces(wall: Wall, limits: tuple[float, float]) -> list[Polygon]:
     from shapely import box
 
     low, high = (float(np.clip(limit, -1e3, 1e3)) for limit in limits)
-    faces: list[BaseGeometry] = [_slice(wall, side) for side in (0.5, -0.5)]
+    room = _near(wall)
+    faces = [_slice(wall.slab, room, side) for side in (0.5, -0.5)]
     if wall.web is not None:
         # A web ends where it is told to; a rib's own outline says where its webs stand.
         faces = [face.intersection(box(low, -1e3, high, 1e3)) for face in faces]
     between = [piece for piece in _polygons(faces[0].intersection(faces[1])) if piece.area > _SHAVING_M2]
-    fitted = [_inside(wall, piece) for piece in between if low < piece.centroid.x < high]
+    fitted = [_inside(wall.slab, room, piece) for piece in between if low < piece.centroid.x < high]
     pieces = [piece for piece in fitted if piece.area > _SHAVING_M2]
     return sorted(pieces, key=lambda piece: float(piece.centroid.x))
 
 
-def _inside(wall: Wall, piece: Polygon) -> Polygon:
+def _near(wall: Wall) -> Body:
+    """The room of a wall as far as one thickness beyond its faces."""
+    slab = wall.slab
+    room = wall.room
+    for side in (1.5, -1.5):
+        face = np.asarray(slab.origin_m) + side * slab.thickness_m * slab.axes[2]
+        room = beyond_plane(room, face, -np.sign(side) * slab.axes[2])
+    return room
+
+
+def _inside(slab: Slab, room: Body, piece: Polygon) -> Polygon:
     """A piece that lies in both faces' rooms, less what stands into it between them, such as a bent skin."""
     from shapely import Polygon, union_all
 
-    slab = wall.slab
-    beyond = plate(_corners(piece), slab.thickness_m, slab.origin_m, slab.axes) - wall.room
+    beyond = plate(_corners(piece), slab.thickness_m, slab.origin_m, slab.axes) - room
     if beyond.volume() <= _SHAVING_M3:
         return piece
     mesh = mesh_of(beyond)
@@ -136,17 +150,16 @@ def _inside(wall: Wall, piece: Polygon) -> Polygon:
     return max(_polygons(left), key=lambda one: float(one.area), default=Polygon())
 
 
-def _slice(wall: Wall, side: float) -> Polygon:
+def _slice(slab: Slab, room: Body, side: float) -> BaseGeometry:
     """The room for a wall cut by one of its faces, in the wall's own X and Y.
 
     From the triangles of the cut itself: the library's own outlines of a slice are rounded to 0.2 um.
     """
     from shapely import polygons, union_all
 
-    slab = wall.slab
     face = side * slab.thickness_m
     point = np.asarray(slab.origin_m) + face * slab.axes[2]
-    mesh = mesh_of(beyond_plane(wall.room, point, -np.sign(side) * slab.axes[2]))
+    mesh = mesh_of(beyond_plane(room, point, -np.sign(side) * slab.axes[2]))
     local = slab.local(mesh.vertices_m)
     in_face = (np.abs(local[:, 2] - face) < _IN_FACE_M)[mesh.faces].all(axis=1)
     return union_all(polygons(local[:, :2][mesh.faces[in_face]]))

@@ -10,15 +10,19 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from functools import cached_property
 from itertools import pairwise
+from typing import TYPE_CHECKING
 
 import numpy as np
 
 from ledger.errors import Finding
-from ledger.loft.bodies import Booleans, strips, tidied, tube
+from ledger.loft.bodies import runs, strips, tidied, tube
 from ledger.loft.faults import stop
 from ledger.loft.layout import Layout, Section, SkinZone, Surface
 from ledger.loft.lofted import Floats, Indices, Mesh
 from ledger.loft.profile import chord_shares, section_ring
+
+if TYPE_CHECKING:
+    from shapely import Polygon
 
 # Between sections that are not alike a strip is wound; so many pieces of span follow it closely.
 _PIECES_WHERE_WOUND = 8
@@ -98,8 +102,10 @@ class Shell:
         chosen = np.array(owner, dtype=np.intp)
         outer, way = self.outer_m[first : last + 1, chosen], self.mitre[first : last + 1, chosen]
         rings = outer + way * np.array(deep)[:, None]
-        nose = len(self.shares) - 1
-        return np.stack([_pinched(ring, chosen, nose) for ring in rings]), chosen
+        # What is deeper than a skin is not ended where both sides meet: it shows that it finds no room.
+        if extra_m == 0.0:
+            rings = np.stack([_pinched(ring, chosen, len(self.shares) - 1) for ring in rings])
+        return rings, chosen
 
 
 def build_shell(layout: Layout) -> tuple[Shell | None, tuple[Finding, ...]]:
@@ -114,7 +120,7 @@ def build_shell(layout: Layout) -> tuple[Shell | None, tuple[Finding, ...]]:
         zone=_zones(layout.skins, shares, butt_lines),
         skins=layout.skins,
     )
-    faults = _folded(shell)
+    faults = tuple(_crossed(layout.sections, shell)) or _folded(shell)
     return (None, faults) if faults else (shell, ())
 
 
@@ -229,11 +235,13 @@ def _folded(shell: Shell) -> tuple[Finding, ...]:
     found: dict[str, Finding] = {}
     for block in shell.blocks:
         rings, owner = shell.inner_rings(block)
-        for ring, butt_line in zip(rings, shell.butt_lines_m[block[0] : block[1] + 1], strict=True):
+        stations = range(block[0], block[1] + 1)
+        for ring, station in zip(rings, stations, strict=True):
+            butt_line, outer = shell.butt_lines_m[station], shell.outer_m[station]
             corners = ring[:, [0, 2]]
             kept = corners[(corners != np.roll(corners, 1, axis=0)).any(axis=1)]
             inside = Polygon(kept) if len(kept) > 2 else Polygon()
-            if inside.is_valid and inside.exterior.is_ccw and inside.area > 0.0:
+            if inside.is_valid and inside.exterior.is_ccw and _holds(outer, inside):
                 continue
             skin = _thickest_near(shell, block, owner, ring, explain_validity(inside))
             found.setdefault(
@@ -247,6 +255,30 @@ def _folded(shell: Shell) -> tuple[Finding, ...]:
                 ),
             )
     return tuple(found.values())
+
+
+def _crossed(sections: tuple[Section, ...], shell: Shell) -> Iterator[Finding]:
+    """Sections whose outline crosses itself, as of points that do not lie on a smooth curve."""
+    from shapely import Polygon
+
+    for section in sections:
+        ring = shell.outer_m[int(np.searchsorted(shell.butt_lines_m, section.butt_line_m))]
+        outline = Polygon(ring[:, [0, 2]])
+        if not (outline.is_valid and outline.exterior.is_ccw):
+            yield stop(
+                section.place,
+                "section-crossed",
+                f"section {section.profile} crosses itself",
+                "give it points on a smooth curve, from the upper trailing edge round the nose",
+            )
+
+
+def _holds(outer: Floats, inside: Polygon) -> bool:
+    """Whether what is inside the skins lies inside the section, to a hair."""
+    from shapely import Polygon as Outline
+
+    whole = Outline(outer[:, [0, 2]])
+    return inside.area > 0.0 and whole.buffer(_SAME_M, join_style="mitre").covers(inside)
 
 
 def _thickest_near(
@@ -286,16 +318,9 @@ def tail_solids(shell: Shell) -> tuple[Mesh, ...]:
         corners = np.stack((outer[:, 0], rings[:, 0], rings[:, -1], outer[:, -1]), axis=1)
         # Seen from inboard the closing line runs down, so this ring turns the way all do.
         thick = np.array([_area(corner) > 1e-12 for corner in corners])
-        for first, last in _stretches(thick[:-1] | thick[1:]):
+        for first, last in runs((thick[:-1] | thick[1:]).tolist()):
             found.append(tube(corners[first : last + 1]))
     return tuple(found)
-
-
-def _stretches(there: Booleans) -> Iterator[tuple[int, int]]:
-    """First and last station of each run of pieces of span that are there."""
-    edges = np.flatnonzero(np.diff(np.concatenate(([False], there, [False]))))
-    for first, last in edges.reshape(-1, 2):
-        yield int(first), int(last)
 
 
 def void(shell: Shell) -> tuple[Mesh, ...]:

@@ -20,6 +20,8 @@ from ledger.model.vectors import Vector
 _STRAIGHT_M = 1e-6
 # A web that runs less than this share of its length along the span is a rib.
 _LEAST_SPANWISE = 0.3
+# And a rib that runs less than this share along the chord is a web.
+_LEAST_CHORDWISE = 0.3
 
 
 @dataclass(frozen=True, kw_only=True, eq=False)
@@ -87,15 +89,17 @@ class RibPlane:
         return float(y + (station_m - x) * along[1] / along[0])
 
     def crossing(self, line: WebLine) -> PlanPoint:
-        """Where its mid-line meets that of a web in plan, both carried on straight."""
-        (x, y, _), (along_x, along_y, _) = self.slab.origin_m, self.slab.axes[0].tolist()
-        beyond = [along_x * (at - y) - along_y * (station - x) for station, at in line.points]
-        last = len(beyond) - 1
-        end = next((place for place in range(1, last) if beyond[place] >= 0.0), last)
-        before, after = beyond[end - 1], beyond[end]
-        share = 0.0 if after == before else before / (before - after)
-        (x0, y0), (x1, y1) = line.points[end - 1], line.points[end]
-        return x0 + share * (x1 - x0), y0 + share * (y1 - y0)
+        """Where its mid-line meets that of a web in plan; infinitely far where they are parallel."""
+        y = np.array(line.points)[:, 1]
+        off = np.array([butt_line - self.butt_line(station) for station, butt_line in line.points])
+        passed = np.flatnonzero(off[:-1] * off[1:] <= 0.0)
+        last = 0 if abs(off[0]) < abs(off[-1]) else len(y) - 2
+        piece = int(passed[0]) if len(passed) else last
+        gain = float(off[piece + 1] - off[piece])
+        if gain == 0.0:
+            return line.points[piece][0], float("inf")
+        butt_line = float(y[piece] - off[piece] * (y[piece + 1] - y[piece]) / gain)
+        return line.station(butt_line), butt_line
 
 
 def reach_of(shell: Shell) -> float:
@@ -232,7 +236,9 @@ def rib_planes(
     """Every rib, root to tip, or what is wrong with where it stands."""
     planes = [RibPlane(rib=rib, slab=_rib_slab(layout, shell, rib)) for rib in layout.ribs]
     planes.sort(key=lambda plane: plane.slab.origin_m[1])
-    faults: list[Finding] = []
+    faults: list[Finding] = [finding for plane in planes for finding in _along_span(plane)]
+    if faults:
+        return (), tuple(faults)
     for plane in planes:
         missing = (*_without_web(layout, plane, lines), *_through_end(layout, plane))
         faults.extend(missing or _beyond_ends(layout, shell, plane, lines))
@@ -264,6 +270,16 @@ def _rib_slab(layout: Layout, shell: Shell, rib: Rib) -> Slab:
         axes=axes,
         body=plate(square, rib.thickness_m, origin, axes),
     )
+
+
+def _along_span(plane: RibPlane) -> Iterator[Finding]:
+    if abs(float(plane.slab.axes[0, 0])) < _LEAST_CHORDWISE:
+        yield stop(
+            plane.rib.place,
+            "rib-along",
+            f"rib {plane.rib.name} runs more along the span than along the chord",
+            "give its two ends other stations, or make it a web",
+        )
 
 
 def _without_web(layout: Layout, plane: RibPlane, lines: dict[str, WebLine]) -> Iterator[Finding]:

@@ -68,14 +68,7 @@ def adopt_plan(
     with open_for_reading(book) as connection:
         _refuse_taken_names(connection, wanted.plan)
     comparison, unfit = _what_it_does(build, wanted, preview=preview, progress=progress)
-    try:
-        with open_for_writing(book) as connection:
-            _refuse_taken_names(connection, wanted.plan)
-            entry = write_adoption(connection, wanted, build.cache, by=who(by), now=moment)
-            if preview:
-                raise _OnlyLooked
-    except _OnlyLooked:
-        pass
+    entry = _written(build, wanted, preview=preview, by=who(by), now=moment)
     return Adopted(
         iteration=wanted.plan.name,
         seq=entry.seq,
@@ -85,6 +78,19 @@ def adopt_plan(
         before=build.snapshot.plan.name,
         comparison=comparison,
     )
+
+
+def _written(build: Build, wanted: PlanToAdopt, *, preview: bool, by: str, now: datetime) -> Entry:
+    """The entry, written, or of a preview as it would have been."""
+    try:
+        with open_for_writing(build.book) as connection:
+            _refuse_taken_names(connection, wanted.plan)
+            entry = write_adoption(connection, wanted, build.cache, by=by, now=now)
+            if preview:
+                raise _OnlyLooked
+    except _OnlyLooked:
+        pass
+    return entry
 
 
 def _what_it_does(

@@ -8,6 +8,7 @@ from datetime import datetime
 from pathlib import Path
 
 from ledger.errors import Finding, Refused, Severity, Where
+from ledger.fuel.report import FuelReport
 from ledger.mass.part_changes import part_changes, why_changed
 from ledger.mass.plan_index import PlanIndex
 from ledger.mass.report import TotalMass, WeightReport
@@ -30,9 +31,6 @@ from ledger.operations.choices_for_piece import choices_for
 from ledger.operations.open_build import Build, open_build
 from ledger.operations.plan_to_adopt import PlanToAdopt, read_plan_to_adopt
 from ledger.operations.reckon_fuel import reckon_build
-
-# Text shows no dip tables here, so the coarsest will do.
-_LEVELS = 1
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -205,10 +203,13 @@ def _fuel_change(a: Side, b: Side, progress: Progress) -> FuelChange | None:
         return None
     from ledger.fuel.changes import fuel_change
 
-    fuel_a = reckon_build(a.build, levels=_LEVELS, progress=_named(progress, a.name))
-    same = _same_fuel(a, b)
-    fuel_b = fuel_a if same else reckon_build(b.build, levels=_LEVELS, progress=_named(progress, b.name))
+    fuel_a = _fuel_of(a, progress)
+    fuel_b = fuel_a if _same_fuel(a, b) else _fuel_of(b, progress)
     return fuel_change(fuel_a, fuel_b, (a.name, b.name))
+
+
+def _fuel_of(side: Side, progress: Progress) -> FuelReport:
+    return reckon_build(side.build, volumes_only=True, progress=_named(progress, side.name))
 
 
 def _named(progress: Progress, plan: str) -> Progress:

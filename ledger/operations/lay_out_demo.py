@@ -16,16 +16,18 @@ from ledger.book.opening import open_for_writing
 from ledger.errors import Finding, Refused, Severity, Where
 from ledger.model import acts  # noqa: F401  the kinds are declared when this is imported
 from ledger.model.declare import KINDS, Takes
+from ledger.model.progress import Progress, unwatched
+from ledger.model.steps import Steps
+from ledger.operations.adopt_plan import adopt_plan
 from ledger.operations.log_entry import Writing, log_entry
 from ledger.operations.open_build import open_build
 from ledger.operations.start_book import start_book
 
 SAMPLE = "two_seater"
 BOOK_NAME = "two_seater.wingledger"
-_PLAN_NAME = "plan"
+_TO_TRY_CHANGES_ON = ("layouts", "plans")
 _FOLDER_NAME = "wingledger-demo"
 _LAST_ENTRY_AGE = timedelta(minutes=2)
-_ADOPTED_BEFORE = timedelta(minutes=10)
 
 
 def free_folder(inside: Path) -> Path:
@@ -47,32 +49,37 @@ def sample_folder() -> Path:
     raise FileNotFoundError(2, "the sample build is missing from this installation", SAMPLE)
 
 
-def lay_out_demo(folder: Path, now: datetime | None = None) -> Path:
-    """Make the sample's book, and a copy of its plan to try changes on, in `folder`; the book's path.
+def lay_out_demo(folder: Path, now: datetime | None = None, *, progress: Progress = unwatched) -> Path:
+    """Make the sample's book, and copies of its layouts and plans to try changes on; the book's path.
 
     The last entry is two minutes old, and every interval between entries is that of the sample.
 
     Raises
-        Refused: the book or the plan is there already; nothing is ever written over.
+        Refused: the book or one of the copies is in `folder` already; nothing is ever written over.
+        Stopped: `progress` was told to end the work; nothing was made.
     """
     moment = now if now is not None else datetime.now().astimezone()
     sample = sample_folder()
     book = folder / BOOK_NAME
-    for target in (book, folder / _PLAN_NAME):
+    for target in (book, *(folder / name for name in _TO_TRY_CHANGES_ON)):
         if os.path.lexists(target):
             raise Refused(_taken(target))
+    new = not folder.exists()
     folder.mkdir(parents=True, exist_ok=True)
     # Named only when whole, so that a demo stopped half way can simply be begun again.
     making = folder / f".{BOOK_NAME}.making-{os.getpid()}"
     try:
-        _play(making, sample, moment)
+        _play(making, sample, moment, progress)
         give_name(making, book)
     except FileExistsError:
         raise Refused(_taken(book)) from None
     finally:
         for ending in ("", "-wal", "-shm"):
             making.with_name(making.name + ending).unlink(missing_ok=True)
-    shutil.copytree(sample / "plan", folder / _PLAN_NAME)
+        if new and not any(folder.iterdir()):
+            folder.rmdir()
+    for name in _TO_TRY_CHANGES_ON:
+        shutil.copytree(sample / name, folder / name)
     return book
 
 
@@ -95,32 +102,38 @@ def _moved(row: Mapping[str, str], by: timedelta, now: datetime) -> dict[str, st
     return moved
 
 
-def _play(book: Path, sample: Path, now: datetime) -> None:
-    """Start a book with the sample's plan and log every row at its own time."""
+def _play(book: Path, sample: Path, now: datetime, progress: Progress) -> None:
+    """Log every row at its own time; the first adopts the plan the book is started with."""
     text = (sample / "log.jsonl").read_text(encoding="utf-8")
-    rows = shifted([json.loads(line) for line in text.splitlines() if line.strip()], now)
-    first = min(datetime.fromisoformat(row["at"]) for row in rows)
-    start_book(book, sample / "plan", by=rows[0]["by"], now=first - _ADOPTED_BEFORE)
-    # One transaction for all that lies between two acceptances, which need the findings open by then.
+    first, *rows = shifted([json.loads(line) for line in text.splitlines() if line.strip()], now)
+    start_book(book, sample / first["plan"], by=first["by"], now=datetime.fromisoformat(first["at"]))
+    steps = Steps(len(rows), progress)
+    # One transaction for all that lies between: an acceptance needs the findings open by then, and an
+    # adoption the record as it stands.
     waiting: list[dict[str, str]] = []
     for row in rows:
-        if row["kind"] != "accept":
+        if row["kind"] not in ("accept", "adopt"):
             waiting.append(row)
             continue
-        _log_together(book, waiting)
+        _log_together(book, waiting, steps)
         waiting = []
-        fields = {word: value for word, value in row.items() if word != "kind"}
-        log_entry(book, "accept", fields, now=datetime.fromisoformat(row["at"]))
-    _log_together(book, waiting)
+        steps.take("sample's log")
+        at = datetime.fromisoformat(row["at"])
+        if row["kind"] == "adopt":
+            adopt_plan(book, sample / row["plan"], by=row["by"], now=at)
+        else:
+            log_entry(book, "accept", {word: value for word, value in row.items() if word != "kind"}, now=at)
+    _log_together(book, waiting, steps)
 
 
-def _log_together(book: Path, rows: list[dict[str, str]]) -> None:
+def _log_together(book: Path, rows: list[dict[str, str]], steps: Steps) -> None:
     if not rows:
         return
     build = open_build(book)
     with open_for_writing(book) as connection:
         writing = Writing(connection, build, now=datetime.fromisoformat(rows[0]["at"]), by=None)
         for row in rows:
+            steps.take("sample's log")
             writing.now = datetime.fromisoformat(row["at"])
             writing.enter(row["kind"], {word: value for word, value in row.items() if word != "kind"})
         writing.keep_geometry()

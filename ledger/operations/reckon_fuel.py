@@ -70,6 +70,7 @@ def reckon_build(
     asked: Attitude | None = None,
     levels: int = _LEVELS,
     temperature_k: float | None = None,
+    volumes_only: bool = False,
     progress: Progress = unwatched,
 ) -> FuelReport:
     """The complete fuel report of an open build. A plan without tanks gives an empty one."""
@@ -87,6 +88,7 @@ def reckon_build(
         levels=levels,
         asked=asked,
         temperature_k=temperature_k,
+        volumes_only=volumes_only,
         progress=progress,
     )
 

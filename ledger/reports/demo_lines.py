@@ -7,6 +7,8 @@ from collections.abc import Sequence
 from ledger.errors import Finding, Severity
 from ledger.fuel.report import FuelReport
 from ledger.mass.report import CauseMass, WeightReport
+from ledger.model.comparison import Comparison
+from ledger.reports.compare_lines import headline
 from ledger.reports.finding_lines import WORD, counted
 from ledger.reports.fuel_lines import CAUTION, hole_line, tank_line
 from ledger.reports.plain import shortened
@@ -18,12 +20,18 @@ COLUMNS = 80
 
 
 def demo_lines(
-    weights: WeightReport, fuel: FuelReport, findings: Sequence[Finding], display: Display
+    weights: WeightReport,
+    fuel: FuelReport,
+    findings: Sequence[Finding],
+    display: Display,
+    *,
+    change: Comparison | None = None,
 ) -> tuple[str, ...]:
-    """At most 24 rows of 80 columns."""
+    """At most 24 rows of 80 columns; `change` is what the iteration changed of the one before it."""
     below = (
         "",
         f"iteration {weights.iteration}; for planning, not approved weight and balance",
+        *((headline(change),) if change is not None else ()),
         *total_lines(weights.total, display),
         _main_causes(weights.off_plan, display),
         "",

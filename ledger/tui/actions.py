@@ -44,12 +44,19 @@ def key_name(key: str) -> str:
     return names.get(key, key.upper() if key.startswith("f") and key[1:].isdigit() else key.capitalize())
 
 
-# The loading and iteration screens have their places kept: 4 and F5, 6 and F7.
+# The loading screen has its place kept: 4 and F5.
 SCREENS: tuple[Action, ...] = (
     Action(name="go_bench", word="bench", key="f2", lone="1", tip="the slip in hand, cups, next jobs, today"),
     Action(name="go_weights", word="weights", key="f3", lone="2", tip="what the wing weighs and why"),
     Action(name="go_fuel", word="fuel", key="f4", lone="3", tip="what the tanks hold at any attitude"),
     Action(name="go_trace", word="trace", key="f6", lone="5", tip="what a number is and where it went"),
+    Action(
+        name="go_iterations",
+        word="iterations",
+        key="f7",
+        lone="6",
+        tip="what a change of design does to mass, CG, fuel and built work",
+    ),
 )
 
 SHELL: tuple[Action, ...] = (

@@ -8,46 +8,33 @@ import time
 from collections.abc import Callable
 from datetime import datetime
 from pathlib import Path
-from typing import ClassVar
 
 from textual import events, work
-from textual.app import App
 
 from ledger.errors import LedgerError
 from ledger.operations.find_thing import FoundThing, find_thing, why_unknown
 from ledger.operations.open_build import Build, newest_entry
 from ledger.operations.take_stock import Plate, Stock, take_stock
-from ledger.tui.actions import SCREENS, Action
-from ledger.tui.bench_screen import BenchScreen
 from ledger.tui.crew import Crew, read_badge
-from ledger.tui.fuel_screen import FuelScreen
+from ledger.tui.going import Going
 from ledger.tui.list_screen import ListScreen, actions_listed, findings_listed, help_listed
 from ledger.tui.listening import ListeningScreen
 from ledger.tui.lock_screen import LockScreen
 from ledger.tui.scan import ScanLine
 from ledger.tui.themes import DRAWN, PLAIN, THEMES, is_plain
 from ledger.tui.tour import Act, act_now, leads, line_of, words_on
-from ledger.tui.trace_screen import TraceScreen
 from ledger.tui.wall_clock import WallClock, read_told_time
-from ledger.tui.weights_screen import WeightsScreen
-from ledger.tui.work_screen import WorkScreen, first_words
+from ledger.tui.work_screen import first_words
 
 _POLL_S = 0.7
 _CLOCK_S = 5.0
 _BELL_GAP_S = 0.18
 
 
-class LedgerApp(App[None], inherit_bindings=False):
+class LedgerApp(Going, inherit_bindings=False):
     """One book, one scan line, one crew; a mode for each screen."""
 
     ENABLE_COMMAND_PALETTE = False
-    MODES: ClassVar[dict[str, Callable[[], WorkScreen]]] = {  # type: ignore[assignment, type-arg]
-        "bench": BenchScreen,
-        "weights": WeightsScreen,
-        "fuel": FuelScreen,
-        "trace": TraceScreen,
-    }
-    DEFAULT_MODE = "bench"
 
     def __init__(
         self,
@@ -71,10 +58,10 @@ class LedgerApp(App[None], inherit_bindings=False):
         self.plain = is_plain() if plain is None else plain
         self.lines = PLAIN if self.plain else DRAWN
         self.stock: Stock | None = None
+        self.reading: tuple[str, int, int] | None = None
         self._stale = True
         self._stock_lock = threading.Lock()
         self.wall = WallClock(now if now is not None else _computers_time)
-        self.toured: set[str] = set()
         self._tour_said: tuple[str, str] | None = None
         self._clock = clock
         self._poll_s = poll_s
@@ -102,8 +89,12 @@ class LedgerApp(App[None], inherit_bindings=False):
         with self._stock_lock:
             if self.stock is None or self._stale:
                 self._stale = False
-                self.stock = take_stock(self.book, self.stock)
+                self.stock = take_stock(self.book, self.stock, progress=self._reads)
+                self.reading = None
             return self.stock
+
+    def _reads(self, what: str, done: int, of: int) -> None:
+        self.reading = (what, done, of)
 
     @property
     def build(self) -> Build | None:
@@ -168,28 +159,13 @@ class LedgerApp(App[None], inherit_bindings=False):
             self._tour_said = (screen.WORD, line)
             screen.say("", words_on(screen.WORD, self._act_now()))
 
-    # -- screens
-
-    @property
-    def work_screen(self) -> WorkScreen | None:  # type: ignore[type-arg]
-        """The working screen, also when a list or the lock lies over it."""
-        return next((screen for screen in self.screen_stack if isinstance(screen, WorkScreen)), None)
-
-    @property
-    def bench(self) -> BenchScreen | None:
-        """The bench, where it is the screen that is up."""
-        screen = self.work_screen
-        return screen if isinstance(screen, BenchScreen) else None
+    # -- keys and silence
 
     def on_mount(self) -> None:
         """Begin to watch the book and the clocks."""
         self.crew = self.crew.badged(self.crew.by, self.now()) if self.crew.by else self.crew
         self.set_interval(self._poll_s, self._poll)
         self.set_interval(_CLOCK_S, self._tick)
-
-    def has(self, action: Action) -> bool:
-        """Whether this release has the screen of this action."""
-        return action not in SCREENS or action.word in self.MODES
 
     def someone_is_here(self) -> None:
         """A key was pressed: the idle time begins anew, unless it has run out."""
@@ -201,50 +177,6 @@ class LedgerApp(App[None], inherit_bindings=False):
         up = self.screen_stack[-1] if self.screen_stack else None
         if isinstance(up, ListeningScreen):
             up.let_silence_speak()
-
-    async def go(self, word: str) -> None:
-        """Bring a screen up; a list that lies over the one left is put away."""
-        while isinstance(self.screen, ListScreen):
-            await self.pop_screen()
-        self.toured.add(word)
-        if self.current_mode != word:
-            await self.switch_mode(word)
-
-    async def do_go_bench(self) -> None:
-        """Word or key."""
-        await self.go("bench")
-
-    async def do_go_weights(self) -> None:
-        """Word or key."""
-        await self.go("weights")
-
-    async def do_go_fuel(self) -> None:
-        """Word or key."""
-        await self.go("fuel")
-
-    async def do_go_trace(self) -> None:
-        """Word or key."""
-        await self.go("trace")
-
-    def open_slip(self, kind: str, about: FoundThing | None) -> None:
-        """Open a slip at the bench, from whichever screen."""
-        self.run_worker(self._open_slip(kind, about))
-
-    async def _open_slip(self, kind: str, about: FoundThing | None) -> None:
-        await self.go("bench")
-        bench = self.bench
-        if bench is not None:
-            bench.open_kind(kind, about)
-
-    def offer_thing(self, thing: FoundThing) -> None:
-        """A number that the screen had no use for: the bench says what can be done with it."""
-        self.run_worker(self._offer_thing(thing))
-
-    async def _offer_thing(self, thing: FoundThing) -> None:
-        await self.go("bench")
-        bench = self.bench
-        if bench is not None:
-            bench.take_thing(thing)
 
     def is_about_crew(self, text: str) -> bool:
         """Whether the text says who is present: `with AB MT`."""

@@ -3,10 +3,12 @@
 from __future__ import annotations
 
 import os.path
+from collections.abc import Sequence
 from datetime import datetime
 from typing import ClassVar
 
 from ledger.errors import Severity
+from ledger.model.comparison import EntryToMake
 from ledger.operations.clock_cups import Cup
 from ledger.operations.find_thing import FoundThing
 from ledger.operations.look_at_bench import BenchView, look_at_bench
@@ -142,6 +144,11 @@ class BenchScreen(BenchFace):
     def open_kind(self, kind: str, about: FoundThing | None) -> None:
         """A word opened a slip."""
         self.desk.open(kind, about)
+        self._slip_opened()
+
+    def open_entries(self, entries: Sequence[EntryToMake]) -> None:
+        """Another screen chose what is to be logged."""
+        self.desk.open_entries(entries)
         self._slip_opened()
 
     def open_correction(self, seq: int | None = None) -> None:

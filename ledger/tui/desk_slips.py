@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 from datetime import datetime
 from pathlib import Path
 from typing import Protocol
 
+from ledger.model.comparison import EntryToMake
 from ledger.operations.find_thing import FoundThing
 from ledger.operations.keep_draft import DraftNotKept, keep_draft
-from ledger.operations.propose_entry import entry_to_correct, propose_entry
+from ledger.operations.propose_entry import Proposal, entry_to_correct, propose_entry
 from ledger.operations.take_stock import Stock
 from ledger.tui.crew import Crew
 from ledger.tui.draft_box import DraftBox
@@ -172,6 +174,35 @@ class SlipsOnDesk:
         for sign, words in proposal.says:
             self.shop.remind(sign, words)
         self.keep()
+
+    def open_entries(self, entries: Sequence[EntryToMake]) -> None:
+        """Slips with what these entries say in them: the first on the desk, the others as drafts."""
+        for entry in entries[:0:-1]:
+            if self._open_given(entry):
+                self.put_away(though_untouched=True)
+        if not entries or not self._open_given(entries[0]):
+            return
+        waits = ", then ".join(entry.kind for entry in entries[1:])
+        if waits:
+            self.shop.remind("LOOK", f"after {entries[0].kind}: {waits}; each waits as a draft")
+
+    def _open_given(self, entry: EntryToMake) -> bool:
+        stock = self.shop.stock
+        if stock is None or not self._may_open(""):
+            return False
+        # What stands in a draft of this kind is about something else: it waits under its own name.
+        self.box.make_way(self.shop.book, entry.kind, self.shop.now(), self.shop.crew.by)
+        proposal = Proposal(values={}, notes={})
+        # Lots and cups proposed for a ply are those of the ply laid next, not of this piece.
+        if entry.kind != "lay":
+            proposal = propose_entry(stock, entry.kind, None, self.shop.now())
+        given = dict(entry.fields)
+        values = {**proposal.values, **given}
+        notes = {word: text for word, text in proposal.notes.items() if word not in given}
+        self.slip = new_slip(entry.kind, self.shop.units, Proposal(values=values, notes=notes))
+        self.reading = None
+        self.keep()
+        return True
 
     def _may_open(self, kind: str) -> bool:
         stock = self.shop.stock

@@ -44,13 +44,13 @@ class Messages:
         """The newest."""
         return self.said[-1] if self.said else None
 
-    def drawn(self, width: int, signs: Signs) -> Text:
-        """A long newest one takes both rows; above a short one the one before is cut to a row."""
+    def drawn(self, width: int, signs: Signs, rows: int = _SHOWN) -> Text:
+        """A long newest one takes all rows; above a short one the one before is cut to a row."""
         standing = [message for message in self.said if not message.over]
         if not standing:
             return Text()
-        newest = _rows_of(standing[-1], width, signs, _SHOWN)
-        if len(newest) == 1 and len(standing) > 1:
+        newest = _rows_of(standing[-1], width, signs, rows)
+        if len(newest) < rows and len(standing) > 1:
             newest = [*_rows_of(standing[-2], width, signs, 1), *newest]
         return Text("\n").join(newest)
 

@@ -5,6 +5,7 @@ A screen gathers input, calls one operation in a thread, and shows the frozen re
 
 from __future__ import annotations
 
+import time
 from collections.abc import Callable
 from datetime import datetime
 from typing import Any, ClassVar, Generic, TypeVar
@@ -13,13 +14,15 @@ from rich.text import Text
 from textual import work
 from textual.app import ComposeResult
 from textual.containers import Vertical
-from textual.worker import get_current_worker
+from textual.timer import Timer
+from textual.worker import Worker, get_current_worker
 
 from ledger.errors import FindingsError, LedgerError
 from ledger.operations.open_build import Build
 from ledger.tui.area import Area
 from ledger.tui.large_print import large_text
 from ledger.tui.listening import ListeningScreen
+from ledger.tui.long_work import LongWork, progress_row
 from ledger.tui.messages import Message, Messages
 from ledger.tui.plate import plate_rows
 from ledger.tui.themes import SIGNS, Lines, Signs
@@ -29,6 +32,8 @@ View = TypeVar("View")
 Result = TypeVar("Result")
 
 _WIDE = (160, 48)
+_BEAT_S = 0.2
+_READING_S = 0.5
 
 
 class ShellScreen(ListeningScreen[None], Generic[View]):
@@ -53,8 +58,11 @@ class ShellScreen(ListeningScreen[None], Generic[View]):
         self.messages = Messages()
         self._area_index = 0
         self._looking = False
+        self._looking_since_s = 0.0
         self._look_again = False
         self._newest_thread: dict[str, int] = {}
+        self.long = LongWork(self)
+        self._beat: Timer | None = None
 
     # -- what a screen adds
 
@@ -151,6 +159,8 @@ class ShellScreen(ListeningScreen[None], Generic[View]):
             self._look_again = True
             return
         self._looking = True
+        self._looking_since_s = time.monotonic()
+        self._go_on_beating()
         self._look_in_thread()
 
     def in_thread(
@@ -215,8 +225,14 @@ class ShellScreen(ListeningScreen[None], Generic[View]):
 
     def draw_messages(self) -> None:
         """Redraw the message lines."""
-        if self.is_mounted:
-            self.query_one("#messages", Area).draw(self.messages.drawn(self.app.size.width, self.signs))
+        if not self.is_mounted:
+            return
+        width = self.app.size.width
+        working = self._working()
+        shown = self.messages.drawn(width, self.signs, 1 if working else 2)
+        if working is not None:
+            shown = Text("\n").join([shown, working])
+        self.query_one("#messages", Area).draw(shown)
 
     def draw_line(self) -> None:
         """Redraw the scan line; of a long text its end is what shows."""
@@ -228,6 +244,38 @@ class ShellScreen(ListeningScreen[None], Generic[View]):
         row.append(text if len(text) <= room else f"..{text[-(room - 2) :]}")
         row.append("_", style="bold")
         self.query_one("#scan-line", Area).draw(row)
+
+    # -- long work
+
+    def run_job(self, work: Callable[[], None]) -> Worker[None]:
+        """In a thread of its own; its line is drawn as long as it runs."""
+        self._go_on_beating()
+        return self.run_worker(work, thread=True, group="long", exit_on_error=True)
+
+    def call_here(self, function: Callable[..., None], *words: Any) -> None:
+        """From a thread: call a function where screens may be touched."""
+        self.app.call_from_thread(function, *words)
+
+    def draw_progress(self) -> None:
+        """The line anew, again and again while the work goes on."""
+        self.draw_messages()
+        if self.long.running is None and not self._looking and self._beat is not None:
+            self._beat.stop()
+            self._beat = None
+
+    def _go_on_beating(self) -> None:
+        if self._beat is None:
+            self._beat = self.set_interval(_BEAT_S, self.draw_progress)
+
+    def _working(self) -> Text | None:
+        """The line of the work that runs: of this screen, else of the book being read."""
+        width = self.app.size.width
+        row = self.long.drawn(width, self.signs)
+        reading = self.ledger_app.reading
+        waited = time.monotonic() - self._looking_since_s
+        if row is None and self._looking and reading is not None and waited > _READING_S:
+            row = progress_row(reading, width, self.signs, end="reading the book")
+        return row
 
     @work(thread=True, group="look", exit_on_error=True)
     def _look_in_thread(self) -> None:

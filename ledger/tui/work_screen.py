@@ -120,7 +120,9 @@ class WorkScreen(ShellScreen[View], Generic[View]):
         self._step_area(-1)
 
     def do_leave_slip(self) -> None:
-        """Esc on a screen with nothing open leaves nothing."""
+        """Esc ends long work between two of its steps; with nothing open it leaves nothing."""
+        if self.long.end_by_hand():
+            self.draw_messages()
         self.ledger_app.line.put("")
         self.draw_line()
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import random
 from dataclasses import replace
+from itertools import pairwise
 from typing import Any
 
 import numpy as np
@@ -87,9 +88,7 @@ class Wings:
     @staticmethod
     def rib(name: str, butt_line: float | None = None, **other: Any) -> Rib:
         said: dict[str, Any] = {"thickness_m": 0.006, "rows": ("R",), **other}
-        return Rib(
-            place=place(f"rib {name}"), name=name, laminate="PANEL", butt_line_m=butt_line, **said
-        )
+        return Rib(place=place(f"rib {name}"), name=name, laminate="PANEL", butt_line_m=butt_line, **said)
 
     @staticmethod
     def cap(web: str, surface: Surface, **other: Any) -> Cap:
@@ -118,7 +117,9 @@ class Wings:
             "axis": Axis.UP,
             **other,
         }
-        return Port(place=place(f"{outside.value} {bay}"), name=outside.value, outside=outside, bay=bay, **said)
+        return Port(
+            place=place(f"{outside.value} {bay}"), name=outside.value, outside=outside, bay=bay, **said
+        )
 
     @staticmethod
     def ports(bay: str) -> tuple[Port, ...]:
@@ -156,7 +157,7 @@ class Wings:
 
     @staticmethod
     def plain(**changed: Any) -> Layout:
-        """Two sections, one skin, webs A and B at a fifth and three fifths, ribs 1, 2, 3, a tank of two bays."""
+        """Two sections, one skin, webs A and B, ribs 1, 2, 3, and a tank of the two bays between."""
         layout = Layout(
             place=place("layout"),
             sections=(Wings.section(0.0), Wings.section(2.0)),
@@ -208,9 +209,7 @@ class AnyWing:
             ribs=self.ribs,
             caps=tuple(self._caps()),
             tanks=tanks,
-            ports=tuple(
-                port for tank in tanks for port in Wings.ports(f"{tank.rows[0]}{tank.ribs[0]}")
-            ),
+            ports=tuple(port for tank in tanks for port in Wings.ports(f"{tank.rows[0]}{tank.ribs[0]}")),
             fills=tuple(Wings.fill(f"FOAM.{row.name}", (row.name,)) for row in self.rows if self.often(0.25)),
             holes=tuple(self._holes()) if tanks else (),
             joints=(Wings.joint("JNT", Walls.RIBS, (Edge.WALL,), 0.004),)
@@ -261,7 +260,7 @@ class AnyWing:
         whole = (self.lines[0], self.lines[-1])
         for surface in (Surface.UPPER, Surface.LOWER) if first < 1.0 else ():
             cuts = sorted({first, 1.0, *self.chance.sample([0.25, 0.4, 0.5, 0.6, 0.65, 0.9], 2)})
-            for low, high in zip(cuts, cuts[1:], strict=False):
+            for low, high in pairwise(cuts):
                 step = self.chance.choice([self.lines[1], self.between(whole[0] + 0.1, whole[1] - 0.1)])
                 if self.often(0.3) and whole[0] < step < whole[1]:
                     add(surface, low, high, (whole[0], step))

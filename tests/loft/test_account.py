@@ -27,6 +27,7 @@ Floats = NDArray[np.float64]
 
 # What somebody may write, and is told of. The account that does not come out even is not among them.
 TOLD = {
+    "cap-too-thick",
     "caps-overlap",
     "hole-larger-than-wall",
     "rib-meets-no-web",
@@ -37,6 +38,10 @@ TOLD = {
     "web-outside-section",
     "port-outside-bay",
 }
+
+
+def idle() -> None:
+    """Nobody waits."""
 
 
 def check(layout: Layout) -> bool:
@@ -75,7 +80,9 @@ def full(wings: Any, **changed: Any) -> Layout:
         "sections": (
             wings.section(0.0, profile="2415"),
             wings.section(1.0, leading_edge_m=1.1, chord_m=0.9, water_line_m=0.05, profile="2415"),
-            wings.section(2.0, leading_edge_m=1.4, chord_m=0.6, water_line_m=0.2, twist_deg=-3.0, profile="0012"),
+            wings.section(
+                2.0, leading_edge_m=1.4, chord_m=0.6, water_line_m=0.2, twist_deg=-3.0, profile="0012"
+            ),
         ),
         "skins": (
             wings.skin("NOSE", Surface.BOTH, (0.0, 0.08), 1.2),
@@ -132,14 +139,14 @@ def built(layout: Layout) -> tuple[Shell, Division, tuple[FlatPanel, ...]]:
     lines, _ = web_lines(layout, shell)
     by_name = {line.web.name: line for line in lines}
     planes, _ = rib_planes(layout, shell, by_name)
-    division, _ = divide(layout, shell, lines, planes)
+    division, _ = divide(layout, shell, lines, planes, idle)
     assert division is not None
-    panels, _ = flat_panels(layout, (*division.ribs, *division.webs), by_name)
+    panels, _ = flat_panels(layout, (*division.ribs, *division.webs), by_name, idle)
     return shell, division, panels
 
 
 def how_often_inside(mesh: Mesh, points: Floats) -> NDArray[np.intp]:
-    """How often a closed mesh encloses points, (n,): faces above each that look up, less those that look down."""
+    """How often a closed mesh encloses points, (n,): faces above that look up, less those that look down."""
     count = np.zeros(len(points), dtype=np.intp)
     for a, b, c in mesh.vertices_m[mesh.faces]:
         ab, ac = b - a, c - a
@@ -167,7 +174,10 @@ def test_every_point_of_the_box_is_in_exactly_one_thing(wings: Any) -> None:
     assert set(within) == {0, 1}
     assert within.sum() > 2500
     counts = {
-        kind: np.sum([how_often_inside(mesh, points) for mesh in meshes] or [np.zeros(len(points))], axis=0)
+        kind: np.sum(
+            [how_often_inside(mesh, points) for mesh in meshes] or [np.zeros(len(points), dtype=np.intp)],
+            axis=0,
+        )
         for kind, meshes in parts.items()
     }
     assert sum(counts[kind] for kind in counts if kind != "panels").tolist() == within.tolist()
@@ -228,9 +238,12 @@ def test_walls_of_cells_lie_on_faces_of_panels(wings: Any) -> None:
             upright |= here
             if areas[here].sum() > 1e-4:
                 touched.add((panel.part, cell.bay))
+        # Two lengths of a web that meet at an angle leave a step of their end faces, here at BL 1.
+        ends = (np.abs(corners[:, :, 1] - 1.0) < 1e-9).all(axis=1)
         # What is left of its faces are skins, which lie nearly level.
         level = np.abs(normals[:, 2]) > 0.6
-        assert (upright | level | (areas < 1e-12)).all()
+        assert (upright | ends | level | (areas < 1e-12)).all()
+        assert areas[ends].sum() < 1e-3
     assert {("RIB.R1", "R1"), ("RIB.RS2", "R1"), ("RIB.RS2", "R2"), ("RIB.S3", "S2")} <= touched
 
 
@@ -238,12 +251,12 @@ def test_the_proof_speaks_when_a_cell_is_counted_twice_or_left_out(wings: Any) -
     layout = wings.plain()
     shell, division, panels = built(layout)
     cells, _ = tank_bays(layout, division)
-    assert is_proved(account(shell, division, panels, cells, ()))
-    twice = account(shell, division, panels, (*cells, cells[0]), ())
+    assert is_proved(account(shell, division, panels, cells, (), tick=idle))
+    twice = account(shell, division, panels, (*cells, cells[0]), (), tick=idle)
     assert not is_proved(twice)
     assert twice.shared_m3 == pytest.approx(cells[0].space.volume(), rel=1e-6)
     grown = replace(panels[0], outline=1.5 * panels[0].outline)
-    beyond = account(shell, division, (grown, *panels[1:]), cells, ())
+    beyond = account(shell, division, (grown, *panels[1:]), cells, (), tick=idle)
     assert not is_proved(beyond)
     assert beyond.shared_m3 > 1e-6
 

@@ -132,7 +132,9 @@ def test_a_straight_cell_has_its_middle_half_way(wings: Any, measured: Any) -> N
 def test_cells_are_numbered_from_the_root_and_named_by_row_and_rib(wings: Any) -> None:
     layout = wings.plain(
         rows=(wings.row("R", "A", "B"), wings.row("S", "B", TAIL)),
-        ribs=tuple(wings.rib(name, line, rows=("R", "S")) for name, line in (("1", 0.1), ("2", 1.0), ("3", 1.9))),
+        ribs=tuple(
+            wings.rib(name, line, rows=("R", "S")) for name, line in (("1", 0.1), ("2", 1.0), ("3", 1.9))
+        ),
         tanks=(wings.tank(("R", "S")),),
     )
     assert [(cell.number, cell.bay) for cell in lofted(layout).cells] == [

@@ -9,7 +9,7 @@ from typing import Any
 import pytest
 
 from ledger.errors import Severity
-from ledger.loft.layout import NOSE, TAIL, Along, Axis, Edge, Height, Layout, Surface, Walls
+from ledger.loft.layout import TAIL, Along, Axis, Edge, Height, Layout, Surface, Walls
 from ledger.loft.loft import loft
 from ledger.model.tanks import Outside
 
@@ -94,6 +94,11 @@ WRONG: dict[str, tuple[str, str, Wrong]] = {
             ribs=(w.rib("1", 0.1), w.rib("2", 0.9), w.rib("3", 1.9)),
         ),
     ),
+    "a rib along the span": (
+        "rib-along",
+        "rib 3",
+        lambda w: w.plain(ribs=ribs_of(w, w.rib("3", points_m=((1.4, 1.2), (1.4, 1.9))))),
+    ),
     "a rib beyond the root": (
         "rib-outside-wing",
         "rib 1",
@@ -113,6 +118,11 @@ WRONG: dict[str, tuple[str, str, Wrong]] = {
         "rib-ends-at-web",
         "rib 3",
         lambda w: w.plain(ribs=ribs_of(w, w.rib("3", 1.9, through=("B",)))),
+    ),
+    "a cap thicker than the wing": (
+        "cap-too-thick",
+        "CAP.A.upper",
+        lambda w: w.plain(caps=(w.cap("A", Surface.UPPER, thickness_m=1.0, between_m=(0.0, 0.5)),)),
     ),
     "caps side by side that overlap": (
         "caps-overlap",

@@ -169,21 +169,24 @@ def exact_cell(sections: tuple[Any, Any], webs: tuple[float, float], stations: i
         )
         for share in np.linspace(0.0, 1.0, stations)
     ]
-    return moments(common(through_sections(rings, angle), upright_prism(cell_outline(sections, webs), -1.0, 1.0)))
+    return moments(
+        common(through_sections(rings, angle), upright_prism(cell_outline(sections, webs), -1.0, 1.0))
+    )
 
 
 def exact_box(sections: tuple[Any, Any]) -> tuple[float, Floats]:
     angle = np.linspace(0.0, np.pi, 241)
     rings = [
-        tuple(placed(section, curve(section.profile, angle, upper)) for upper in (True, False))
+        (
+            placed(section, curve(section.profile, angle, True)),
+            placed(section, curve(section.profile, angle, False)),
+        )
         for section in sections
     ]
     return moments(through_sections(rings, angle))
 
 
-def layout_of(
-    wings: Any, sections: tuple[Any, Any], webs: tuple[float, float], corners: int
-) -> Layout:
+def layout_of(wings: Any, sections: tuple[Any, Any], webs: tuple[float, float], corners: int) -> Layout:
     plain = wings.plain(
         sections=sections,
         skins=(wings.skin("SKIN", Surface.BOTH, (0.0, 1.0), 1000.0 * SKIN),),

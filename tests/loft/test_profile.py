@@ -43,13 +43,14 @@ def exact(number: str) -> tuple[float, tuple[float, float]]:
             camber, angle, turn, h = parts(x)
             flat, bend = 2.0 * h / np.cos(angle), -2.0 / 3.0 * turn * h**3
             if moment == 0:
-                return flat
+                return float(flat)
             middle, way = (x, -np.sin(angle)) if moment == 1 else (camber, np.cos(angle))
             return float(middle * flat + way * bend)
 
         knees = {4: [int(number[1]) / 10.0], 5: [0.058, 0.126, 0.2025, 0.217, 0.29, 0.318, 0.391, 0.441]}
         inner = [knee for knee in knees[len(number)] if 0.0 < knee < 1.0]
-        return float(quad(element, 0.0, 1.0, points=inner, limit=400, epsabs=1e-11)[0])
+        found: float = quad(element, 0.0, 1.0, points=inner, limit=400, epsabs=1e-11)[0]
+        return found
 
     area = strip(0)
     return area, (strip(1) / area, strip(2) / area)
@@ -93,7 +94,9 @@ def test_the_box_between_two_webs(wings: Any, polygon_moments: Any) -> None:
     low = np.interp(0.15, x, top), np.interp(0.65, x, top)
     between = ring[(ring[:, 0] > 0.15) & (ring[:, 0] < 0.65)]
     upper = between[between[:, 1] > 0.0]
-    corners = np.array([(0.65, low[1]), *upper, (0.15, low[0]), (0.15, -low[0]), *upper[::-1] * (1, -1), (0.65, -low[1])])
+    corners = np.array(
+        [(0.65, low[1]), *upper, (0.15, low[0]), (0.15, -low[0]), *upper[::-1] * (1, -1), (0.65, -low[1])]
+    )
     area, centroid = polygon_moments(corners)
     assert area == pytest.approx(0.455344 * 0.12, abs=1e-5)
     assert centroid == pytest.approx((0.388653, 0.0), abs=1e-5)
@@ -129,9 +132,7 @@ def outline_of(number: str, spacing: str, blunt: bool) -> tuple[tuple[float, flo
         "cosine": 0.5 * (1.0 - np.cos(angle)),
         "even": np.concatenate(([0.0, 0.0025, 0.0075], np.linspace(0.0, 1.0, 51)[1:])),
         # As old tables have it: close at the nose, and less and less so.
-        "uneven": np.array(
-            [0, 0.5, 1.25, 2.5, 5, 7.5, 10, 15, 20, 25, 30, 40, 50, 60, 70, 80, 90, 95, 100]
-        )
+        "uneven": np.array([0, 0.5, 1.25, 2.5, 5, 7.5, 10, 15, 20, 25, 30, 40, 50, 60, 70, 80, 90, 95, 100])
         / 100.0,
     }[spacing]
     camber, slope = camber_line(number, x)
@@ -147,7 +148,9 @@ def outline_of(number: str, spacing: str, blunt: bool) -> tuple[tuple[float, flo
 def sharpened(number: str) -> float:
     """Area of what is taken off: half the opening at the tail, in proportion to x, on both sides."""
     tail = float(half_thickness(int(number[2:]) / 100.0, np.array([1.0]))[0])
-    return float(quad(lambda x: 2.0 * tail * x / np.cos(np.arctan(camber_line(number, np.array([x]))[1][0])), 0, 1)[0])
+    return float(
+        quad(lambda x: 2.0 * tail * x / np.cos(np.arctan(camber_line(number, np.array([x]))[1][0])), 0, 1)[0]
+    )
 
 
 def test_wanted_shares_are_among_the_corners() -> None:
