@@ -81,6 +81,39 @@ GOOD = {
 Openings = Mapping[str, Opening]
 
 
+def plan_of(tanks: Tanks, attitudes: tuple[Attitude, ...], fuel: FuelGrade | None) -> Plan:
+    """A plan of tanks and nothing else."""
+    return Plan(
+        name="r1",
+        title="first",
+        display=Display.METRIC,
+        materials=(),
+        laminates=(),
+        parts=(),
+        shapes=(),
+        tanks=tanks,
+        attitudes=attitudes,
+        fuel=fuel,
+    )
+
+
+NOTHING_BUILT = Snapshot(
+    iterations=(),
+    logged=(),
+    pieces={},
+    lots={},
+    sheets={},
+    offcuts={},
+    batches={},
+    scales={},
+    held={},
+    gone={},
+    last_seq=1,
+    last_digest="",
+    now=NOW,
+)
+
+
 def facts(
     openings: Openings = GOOD,
     *,
@@ -100,33 +133,8 @@ def facts(
         openings=tuple(openings.values()),
         feeds=feeds,
     )
-    plan = Plan(
-        name="r1",
-        title="first",
-        display=Display.METRIC,
-        materials=(),
-        laminates=(),
-        parts=(),
-        shapes=(),
-        tanks=tanks,
-        attitudes=attitudes,
-        fuel=fuel,
-    )
-    snapshot = Snapshot(
-        iterations=(Iteration(name="r1", seq=1, at=NOW, plan=plan),),
-        logged=(),
-        pieces={},
-        lots={},
-        sheets={},
-        offcuts={},
-        batches={},
-        scales={},
-        held={},
-        gone={},
-        last_seq=1,
-        last_digest="",
-        now=NOW,
-    )
+    iteration = Iteration(name="r1", seq=1, at=NOW, plan=plan_of(tanks, attitudes, fuel))
+    snapshot = replace(NOTHING_BUILT, iterations=(iteration,))
     report = reckon(tanks, cells, {}, attitudes, fuel, levels=2) if reckoned else None
     return Facts(snapshot=snapshot, weights=cast(WeightReport, None), fuel=report)
 

@@ -7,6 +7,7 @@ import pty
 import signal
 import subprocess
 import sys
+import tempfile
 from collections.abc import Callable
 from pathlib import Path
 from typing import Any
@@ -97,14 +98,17 @@ class Child:
 
     def __init__(self, *words: object) -> None:
         self._terminal, theirs = pty.openpty()
+        out, self._out = tempfile.mkstemp()
         self.process = subprocess.Popen(
             [sys.executable, "-m", "ledger", *map(str, words)],
-            stdout=subprocess.PIPE,
+            # Not a pipe: what is read too late would hold the child up.
+            stdout=out,
             stderr=theirs,
             text=True,
             env={**os.environ, "PYTHONPATH": CHECKOUT, "WINGLEDGER_BY": "JK"},
         )
         os.close(theirs)
+        os.close(out)
         self.err = ""
 
     def read(self) -> bool:
@@ -124,8 +128,10 @@ class Child:
         self.process.send_signal(signal.SIGINT)
         while self.read():
             pass
-        out, _ = self.process.communicate(timeout=60)
+        self.process.wait(timeout=60)
         os.close(self._terminal)
+        out = Path(self._out).read_text()
+        Path(self._out).unlink()
         return out
 
     @property

@@ -3,14 +3,17 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+from itertools import count
 from typing import Any
 
 import numpy as np
 import pytest
+from hypothesis import strategies as st
 
 from ledger.fuel.reckon import reckon
 from ledger.fuel.report import AttitudeFuel, DrainedCell, FuelReport, TankFuel
+from ledger.fuel.ways import Network, Way
 from ledger.geometry.closed_cell import ClosedCell
 from ledger.model.attitude import Attitude
 from ledger.model.plan import FuelGrade
@@ -181,6 +184,116 @@ class Builder:
     @staticmethod
     def kept(tank: TankFuel, cell: str, attitude: str = "level") -> DrainedCell:
         return next(one for one in Builder.at(tank, attitude).cells if one.cell == cell)
+
+
+@dataclass(frozen=True)
+class UprightBoxes:
+    """Cells that are upright boxes of one square metre, with rims, floors and tops at whole metres."""
+
+    floor: dict[str, int]
+    top: dict[str, int]
+    ways: tuple[Way, ...]
+    tee: bool
+
+    @property
+    def network(self) -> Network:
+        return Network(self.floor, self.ways)
+
+    def kind(self, outside: Outside) -> list[Way]:
+        return [way for way in self.ways if way.outside is outside]
+
+    @property
+    def pulls(self) -> tuple[tuple[str, ...], ...]:
+        names = tuple(way.name for way in self.kind(Outside.OUTLET))
+        return (names,) if self.tee else tuple((name,) for name in names)
+
+    def volume(self, cell: str, level: float) -> float:
+        return max(0.0, min(level, self.top[cell]) - self.floor[cell])
+
+    @staticmethod
+    def may(one: Way, into: str | None, *, air: bool) -> bool:
+        """Whether fuel, or air, passes an opening into that cell."""
+        return one.one_way in (None, into) or (air and one.air_both)
+
+    @property
+    def dry(self) -> set[str]:
+        """Cells no fuel comes to, found by spreading from fillers as often as there are cells."""
+        wet = {one.cells[0] for one in self.kind(Outside.FILLER)}
+        tee = {one.cells[0] for one in self.kind(Outside.OUTLET)} if self.tee else set()
+        for _ in self.floor:
+            for one in self.ways:
+                if one.outside is None:
+                    for here, into in (one.cells, one.cells[::-1]):
+                        if here in wet and self.may(one, into, air=False):
+                            wet.add(into)
+            if wet & tee:
+                wet |= tee
+        return set(self.floor) - wet
+
+    @staticmethod
+    def way(
+        name: str, cells: tuple[str, ...], outside: Outside | None, low: int, high: int, **more: object
+    ) -> Way:
+        """An opening with its two heights."""
+        one_way = more.get("one_way")
+        return Way(
+            name=name,
+            cells=cells,
+            outside=outside,
+            low_m=low,
+            high_m=high,
+            one_way=one_way if isinstance(one_way, str) else None,
+            air_both=bool(more.get("air_both")),
+        )
+
+    @staticmethod
+    def drawn(*, one_way: bool) -> st.SearchStrategy[UprightBoxes]:
+        """Any one to four cells with up to seven openings, with flaps only on request."""
+        return _boxes(one_way=one_way)
+
+
+def _rim(
+    draw: st.DrawFn, boxes: UprightBoxes, cells: tuple[str, ...], *, lift: bool
+) -> tuple[int, int] | None:
+    """The two heights of an opening that all these cells reach, or None."""
+    least, most = max(boxes.floor[cell] for cell in cells), min(boxes.top[cell] for cell in cells)
+    if least > most:
+        return None
+    low = draw(st.integers(least, most))
+    high = draw(st.integers(low, most))
+    # A dam, or a pipe that rises and falls, asks fuel to stand higher than air must stay below.
+    return low + (draw(st.sampled_from([0, 0, 0, 1, 2])) if lift else 0), high
+
+
+@st.composite
+def _boxes(draw: st.DrawFn, *, one_way: bool) -> UprightBoxes:
+    names = "ABCD"[: draw(st.integers(1, 4))]
+    floor = {name: draw(st.integers(0, 3)) for name in names}
+    top = {name: floor[name] + draw(st.integers(2, 6)) for name in names}
+    bare = UprightBoxes(floor=floor, top=top, ways=(), tee=False)
+    numbers = count(1)
+    ways: list[Way] = []
+    for _ in range(draw(st.integers(0, 7)) if len(names) > 1 else 0):
+        pair = draw(st.permutations(names))[:2]
+        heights = _rim(draw, bare, tuple(pair), lift=True)
+        if heights is None:
+            continue
+        flap = draw(st.sampled_from([None, None, pair[0]])) if one_way else None
+        both = draw(st.booleans()) if flap else False
+        name = f"o{next(numbers)}"
+        ways.append(bare.way(name, tuple(pair), None, *heights, one_way=flap, air_both=both))
+    for outside, least, most in ((Outside.OUTLET, 1, 2), (Outside.FILLER, 1, 2), (Outside.VENT, 0, 2)):
+        for _ in range(draw(st.integers(least, most))):
+            cell = draw(st.sampled_from(names))
+            heights = _rim(draw, bare, (cell,), lift=outside is not Outside.FILLER)
+            assert heights is not None
+            ways.append(bare.way(f"{outside.value}{next(numbers)}", (cell,), outside, *heights))
+    return replace(bare, ways=tuple(ways), tee=draw(st.booleans()))
+
+
+@pytest.fixture(scope="session")
+def networks() -> type[UprightBoxes]:
+    return UprightBoxes
 
 
 @pytest.fixture(scope="session")

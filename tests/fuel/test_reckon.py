@@ -205,6 +205,30 @@ def test_a_lower_and_a_wider_hole_free_what_the_closed_form_says(build: Any) -> 
     assert kept.frees_wider_10pc_m3 == pytest.approx(0.001, rel=1e-9)
 
 
+def test_volumes_alone_are_those_of_the_whole_report(build: Any, ground: Attitude, level: Attitude) -> None:
+    cells = build.row_of_boxes(2)
+    openings = (
+        build.slot("outlet", "A outlet", 0.0, 0.0),
+        build.hole("drain", "A B", (0.5, 1.0, 0.05), 0.02, (0.0, 1.0, 0.0)),
+        build.slot("high", "A B", 0.9, 1.0, at=(0.5, 1.0)),
+        build.slot("filler", "A filler", 0.9, 0.9),
+        build.slot("vent", "A vent", 1.0, 1.0),
+    )
+    tanks = build.tanks(cells, openings)
+    whole, alone = (
+        reckon(tanks, cells, {}, (ground, level), None, volumes_only=only) for only in (False, True)
+    )
+    assert build.kept(whole.tanks[0], "B").frees_lower_1mm_m3 is not None
+    assert all(one.table and one.drained for one in whole.tanks[0].attitudes)
+
+    def bare(attitude: Any) -> Any:
+        kept = [replace(one, frees_lower_1mm_m3=None, frees_wider_10pc_m3=None) for one in attitude.cells]
+        return replace(attitude, cells=tuple(kept), table=(), drained=())
+
+    tank = replace(whole.tanks[0], attitudes=tuple(map(bare, whole.tanks[0].attitudes)))
+    assert alone == replace(whole, tanks=(tank,), far_openings=(), overlaps=())
+
+
 def test_the_opening_moved_by_1_mm_in_the_plan_frees_what_was_said(build: Any, ground: Attitude) -> None:
     cells = {
         "A": build.box((0.0, 0.0, 0.0), (1.0, 1.0, 1.0)),

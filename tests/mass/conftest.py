@@ -8,15 +8,16 @@ from typing import Any
 
 import pytest
 
+from ledger.checks.facts import Facts, Rule
 from ledger.mass.report import PartMass, PieceMass, WeightReport
 from ledger.mass.weigh_up import weigh_up
-from ledger.model.acts import Act, Adopt, Instrument, Mix, Receive, Sheet
+from ledger.model.acts import Act, Adopt, Bond, Cut, Instrument, Lay, Mix, Receive, Sheet, Weigh
 from ledger.model.declare import KINDS
 from ledger.model.entry import Logged
 from ledger.model.gather import gather, pieces_begun_by
 from ledger.model.plan import Form, Laminate, Material, MaterialKind, Part, PartClass, Plan, Shape, Side, Step
 from ledger.model.snapshot import Snapshot
-from ledger.model.things import Measure, Minted, ThingKind
+from ledger.model.things import Measure, Minted, Share, ThingKind
 from ledger.model.vectors import NO_SPREAD, Vector
 from ledger.units import Display
 
@@ -94,6 +95,36 @@ class Shop:
     def piece(self, name: str) -> PieceMass:
         """One piece weighed up."""
         return next(piece for part in self.weights().parts for piece in part.pieces if piece.piece == name)
+
+    def say(self, rule: Rule) -> list[tuple[str, str | None, int | None]]:
+        """What a rule says: severity, thing and entry of each finding."""
+        findings = rule(Facts(snapshot=self.snapshot(), weights=self.weights(), fuel=None))
+        for finding in findings:
+            assert finding.what
+            assert finding.do
+            assert rule.__module__.endswith("." + finding.code.replace("-", "_"))
+        return [(one.severity.value, one.where.thing, one.where.entry) for one in findings]
+
+    @staticmethod
+    def lay(step: int, piece: str = "SKIN/1", **more: Any) -> Lay:
+        """A ply of cloth from lot LT."""
+        more = {"lots": (Share(what="LT"),)} | more
+        return Lay(piece=piece, step=step, **more)
+
+    @staticmethod
+    def weigh(what: str, *readings_kg: float, **more: Any) -> Weigh:
+        """A weighing on scale W1."""
+        return Weigh(what=what, reading_kg=readings_kg, **({"scale": "W1"} | more))
+
+    @staticmethod
+    def cut(*pieces: str, **more: Any) -> Cut:
+        """Pieces cut from sheet S1."""
+        return Cut(pieces=pieces, **({"sheet": "S1"} | more))
+
+    @staticmethod
+    def bond(*pieces: str, **more: Any) -> Bond:
+        """Pieces bonded with 20 g of cup B1."""
+        return Bond(pieces=pieces, batches=(Share(what="B1", mass_kg=0.02),), **more)
 
     def _parts(self) -> set[str]:
         return {part.name for plan in self.plans.values() for part in plan.parts}
@@ -193,15 +224,25 @@ def standard_parts() -> tuple[tuple[Part, Shape], ...]:
     )
 
 
+def stocked(shop: Shop) -> Shop:
+    """The shop with lots of twill, resin and hardener, and scale W1."""
+    shop.receive("LT", "twill")
+    shop.receive("LR", "resin")
+    shop.receive("LH", "hardener")
+    shop.scale("W1", 0.001, 0.002)
+    return shop
+
+
+def sandwich_shop() -> Shop:
+    """A shop with one rib of cloth, foam, cloth and peel ply."""
+    rib = part("RIB", Form.PANEL, "sandwich", PartClass.RIB)
+    return stocked(Shop(plan((rib, shape(0.5)))))
+
+
 @pytest.fixture
 def shop() -> Shop:
     """The standard shop."""
-    opened = Shop(plan(*standard_parts()))
-    opened.receive("LT", "twill")
-    opened.receive("LR", "resin")
-    opened.receive("LH", "hardener")
-    opened.scale("W1", 0.001, 0.002)
-    return opened
+    return stocked(Shop(plan(*standard_parts())))
 
 
 class Make:
@@ -212,6 +253,7 @@ class Make:
     part = staticmethod(part)
     shape = staticmethod(shape)
     standard_parts = staticmethod(standard_parts)
+    sandwich_shop = staticmethod(sandwich_shop)
     causes = staticmethod(causes)
     materials = MATERIALS
     laminates = LAMINATES

@@ -10,7 +10,9 @@ from typing import Any
 
 import pytest
 
+from ledger.model.comparison import Comparison, Pair
 from ledger.operations.adopt_plan import adopt_plan
+from ledger.operations.compare_iterations import compare_iterations
 from ledger.operations.log_entry import LoggedEntry, log_entry
 from ledger.operations.start_book import start_book
 
@@ -37,6 +39,37 @@ FILES = {
     "geometry/rib.obj": "v 0 0 0\nv 0.4 0 0\nv 0.4 0 0.2\nv 0 0 0.2\nf 1 2 3\nf 1 3 4\n",
     "geometry/skin.obj": "v 0 0 0\nv 0.5 0 0\nv 0.5 1 0\nv 0 1 0\nf 1 2 3\nf 1 3 4\n",
 }
+
+
+TANK = """length_unit = "m"
+[[tank]]
+name = "{tank}"
+cells = ["B1"]
+[[cell]]
+name = "B1"
+mesh = "geometry/box.obj"
+[[opening]]
+name = "outlet"
+between = ["B1", "outlet"]
+shape = "circle"
+centre = [0.0, 0.25, {low}]
+diameter = 1e-6
+normal = [1, 0, 0]
+[[opening]]
+name = "cap"
+between = ["B1", "filler"]
+shape = "circle"
+centre = [0.5, 0.25, 0.2]
+diameter = 0.05
+normal = [0, 0, 1]
+[[opening]]
+name = "breather"
+between = ["B1", "vent"]
+shape = "circle"
+centre = [0.4, 0.25, 0.2]
+diameter = 0.01
+normal = [0, 0, 1]
+"""
 
 
 def write_plan(folder: Path, name: str) -> Path:
@@ -117,6 +150,8 @@ class Drawing:
         "part,title,class,side,assembly,form,made_of,geometry,geometry_unit,origin,across,up_axis,quantity,"
         "planned_mass"
     )
+    GROUND = '[[attitude]]\nname = "ground"\nfill = true\nflight = false\n'
+    CRUISE = '[[attitude]]\nname = "cruise"\n'
     PLIES = "PLIES,plies,skin,L,WING,skin,SKIN,geometry/skin.obj,m,,,,,"
 
     @staticmethod
@@ -130,6 +165,21 @@ class Drawing:
     def item(name: str, mass: str, x: float = 0.0, y: float = 0.0) -> str:
         """An item's row."""
         return f"{name},a thing,fitting,L,WING,item,,,m,{x} {y} 0,,,,{mass}"
+
+    @staticmethod
+    def climb(pitch_deg: float) -> str:
+        """An attitude of flight, nose up."""
+        return f'[[attitude]]\nname = "climb"\npitch_deg = {pitch_deg}\n'
+
+    @staticmethod
+    def fuel(density: str) -> str:
+        """The fuel of a plan."""
+        return f'[fuel]\ngrade = "avgas"\ndensity_15C = "{density}"\n'
+
+    @staticmethod
+    def tank(name: str, low: float) -> str:
+        """tanks.toml of a tank of one box, whose outlet stands so many metres above the floor."""
+        return TANK.format(tank=name, low=low)
 
     @staticmethod
     def box(length: float, width: float) -> str:
@@ -180,3 +230,29 @@ def _sheet(length: float, height: float) -> str:
 def drawing() -> type[Drawing]:
     """The writer of small plans."""
     return Drawing
+
+
+@pytest.fixture
+def two(drawing: type[Drawing], tmp_path: Path) -> Callable[..., Comparison]:
+    """A book begun with one plan, and the second adopted or only compared with."""
+
+    def compare(first: dict[str, Any], second: dict[str, Any], *, adopted: bool = True) -> Comparison:
+        book = tmp_path / "wing.book"
+        start_book(book, drawing.write(tmp_path / "one", "r1", **first), by="JK", now=NOON)
+        folder = drawing.write(tmp_path / "two", "r2", **second)
+        if adopted:
+            adopt_plan(book, folder, by="JK", now=NOON)
+        return compare_iterations(book, "r1", "r2" if adopted else str(folder))
+
+    return compare
+
+
+@pytest.fixture(scope="session")
+def close() -> Callable[..., bool]:
+    """Whether a pair and its change are these: `close(mass.now_kg, 4.0, 3.0)`."""
+
+    def is_close(pair: Pair, a: float, b: float, tolerance: float = 1e-12) -> bool:
+        assert (pair.a, pair.b, pair.change) == pytest.approx((a, b, b - a), abs=tolerance)
+        return True
+
+    return is_close

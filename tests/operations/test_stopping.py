@@ -17,6 +17,7 @@ from ledger.model.progress import Progress, unwatched
 from ledger.operations.adopt_plan import adopt_plan
 from ledger.operations.back_up import back_up
 from ledger.operations.check_book import check_book
+from ledger.operations.lay_out_demo import lay_out_demo
 from ledger.operations.log_file import log_file
 from ledger.operations.look_at_iterations import Wanted, look_at_iterations
 from ledger.operations.open_build import open_build
@@ -157,3 +158,19 @@ def test_a_file_tells_every_row(folder: Path) -> None:
         progress=lambda what, done, of: told.append((what, done, of)),
     )
     assert told == [("rows", done, 30) for done in range(31)]
+
+
+def test_a_demo_ended_half_way_leaves_no_folder(tmp_path: Path) -> None:
+    steps = 0
+
+    def tell(what: str, done: int, of: int) -> None:
+        nonlocal steps
+        del what, of
+        steps += 1
+        if done == 20:
+            raise Stopped("enough")
+
+    with pytest.raises(Stopped):
+        lay_out_demo(tmp_path / "demo", progress=tell)
+    assert steps == 21
+    assert list(tmp_path.iterdir()) == []

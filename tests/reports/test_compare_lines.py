@@ -7,6 +7,8 @@ from typing import Any
 
 import pytest
 
+from ledger.fuel.report import FuelReport
+from ledger.mass.report import WeightReport
 from ledger.model.comparison import (
     AttitudeChange,
     Choice,
@@ -23,6 +25,7 @@ from ledger.model.comparison import (
 )
 from ledger.model.plan import FuelGrade, Plan
 from ledger.reports.compare_lines import choice_lines, compare_lines, headline
+from ledger.reports.demo_lines import ROWS, demo_lines
 from ledger.units import Display
 
 NOT_KNOWN = Pair(a=None, b=None)
@@ -109,6 +112,16 @@ def unfit(piece: str) -> UnfitPiece:
 def test_the_headline_says_kilograms_millimetres_litres_and_built_work(count: int, ending: str) -> None:
     compared = a_comparison(no_longer_fits=tuple(unfit(f"RIB/{number}") for number in range(count)))
     assert headline(compared) == f"r3 for r2:  -0.62 kg  CG 4 mm aft  usable +3.1 L{ending}"
+
+
+def test_the_demo_report_says_it_below_the_name_of_the_iteration(
+    weights: WeightReport, fuel: FuelReport
+) -> None:
+    compared = a_comparison(no_longer_fits=(unfit("RIB/1"),))
+    lines = demo_lines(weights, fuel, (), Display.METRIC, change=compared)
+    named = next(number for number, line in enumerate(lines) if line.startswith("iteration "))
+    assert lines[named + 1] == headline(compared)
+    assert len(lines) <= ROWS
 
 
 def test_the_headline_of_a_us_build_is_in_its_units() -> None:

@@ -54,12 +54,25 @@ def test_every_row_of_the_sample_logs_fits_the_schema_of_its_kind() -> None:
         for path, schema in all_schemas().items()
         if path.startswith("entry/")
     }
-    rows = sample_rows()
+    # No schema has an adoption: to enter one there is a command, and a log only says when which plan was.
+    rows = [row for row in sample_rows() if row["kind"] != "adopt"]
     assert len(rows) > 100
     misfits = [
         (row["kind"], error.message) for row in rows for error in validators[row["kind"]].iter_errors(row)
     ]
     assert misfits == []
+
+
+def test_each_adoption_in_a_sample_log_names_a_plan_that_comes_with_it() -> None:
+    adopted = [
+        (log.parent, json.loads(line))
+        for log in (SCHEMAS.parent / "sample_builds").glob("*/log.jsonl")
+        for line in log.read_text(encoding="utf-8").splitlines()
+        if json.loads(line)["kind"] == "adopt"
+    ]
+    assert len(adopted) >= 3
+    assert all(set(row) == {"kind", "at", "by", "plan"} for _, row in adopted)
+    assert all((folder / row["plan"] / "plan.toml").is_file() for folder, row in adopted)
 
 
 WEIGH = {"kind": "weigh", "what": "RIB.03-L", "reading": ["412.3 g", "412.5 g"], "by": "JK"}

@@ -15,10 +15,13 @@ from textual import events
 from textual.pilot import Pilot
 
 from ledger.cli.app import run_command
+from ledger.operations.adopt_plan import adopt_plan
 from ledger.operations.find_thing import FoundThing, find_thing
 from ledger.operations.log_entry import log_entry
 from ledger.operations.start_book import start_book
 from ledger.tui.app import LedgerApp
+from ledger.tui.area import Area
+from ledger.tui.iterations_screen import IterationsScreen
 from ledger.tui.listening import ListeningScreen
 from ledger.tui.work_screen import WorkScreen
 
@@ -160,6 +163,50 @@ def demo_book(_demo_book: Path, tmp_path: Path) -> Path:
     return book
 
 
+@pytest.fixture
+def at_minute() -> Callable[[int], datetime]:
+    """A moment so many minutes after the books were begun."""
+    return lambda minute: START + timedelta(minutes=minute)
+
+
+@pytest.fixture(scope="session")
+def _one_cell_book(tmp_path_factory: pytest.TempPathFactory) -> Path:
+    book = tmp_path_factory.mktemp("box") / "box.wingledger"
+    plan = Path(__file__).resolve().parents[2] / "sample_builds" / "one_cell_box" / "plan"
+    start_book(book, plan, by="JK")
+    return book
+
+
+@pytest.fixture
+def one_cell_book(_one_cell_book: Path, tmp_path: Path) -> Path:
+    """One cell, 1 m along, 0.5 m across, 0.2 m high."""
+    return Path(shutil.copy(_one_cell_book, tmp_path / "box.wingledger"))
+
+
+@pytest.fixture
+def less_fuel(box_plan: Callable[..., Path]) -> Callable[[str], Path]:
+    """The plan of the one-cell box under a name, with room for expansion of 40 % instead of 2 %."""
+    return lambda name: box_plan(
+        name, {"tanks.toml": ("expansion_percent = 2.0", "expansion_percent = 40.0")}
+    )
+
+
+@pytest.fixture
+def box_book(tmp_path: Path, box_plan: Callable[..., Path], at_minute: Callable[[int], datetime]) -> Path:
+    """r1 with floor and outboard wall weighed, then r2, which changes both and so fits neither."""
+    book = tmp_path / "box.book"
+    start_book(book, box_plan("r1"), by="JK", now=START)
+    for minute, (what, reading) in enumerate((("FLOOR", "2.85 kg"), ("WALL.OUT", "410 g")), start=1):
+        log_entry(book, "weigh", {"what": what, "reading": reading}, by="JK", now=at_minute(minute))
+    # The outboard wall 50 mm inboard and a floor of 5.0 instead of 5.6 kg/m2.
+    moved = {
+        "parts.csv": ("mm,2 0.6 0,", "mm,2 0.55 0,"),
+        "laminates.csv": ("FLOOR 5600,5600", "FLOOR 5600,5000"),
+    }
+    adopt_plan(book, box_plan("r2", moved), by="AB", now=at_minute(10))
+    return book
+
+
 @pytest.fixture(autouse=True)
 def _own_state(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setenv("WINGLEDGER_STATE", str(tmp_path / "state"))
@@ -248,6 +295,12 @@ class Bench:
         await settled(self.pilot)
         await self.pilot.pause()
 
+    async def reckoned(self) -> None:
+        """Wait until all that was asked for is compared and drawn."""
+        for _ in range(3):
+            await self.app.workers.wait_for_complete()
+            await self.pilot.pause()
+
     async def key(self, *keys: str) -> None:
         assert not self.only_scans
         for key in keys:
@@ -265,6 +318,13 @@ class Bench:
         lines = self.app.screen._compositor.render_strips()
         return "\n".join("".join(segment.text for segment in strip) for strip in lines)
 
+    def words(self, area: str) -> list[str]:
+        """The rows of one area of the screen as they are drawn."""
+        screen = self.app.work_screen
+        assert screen is not None
+        drawn = screen.query_one(f"#{screen.WORD}-{area}", Area).words
+        return [line.rstrip() for line in drawn.split("\n")]
+
     @property
     def said(self) -> list[str]:
         screen = self.app.work_screen
@@ -280,6 +340,19 @@ def open_bench(open_screen: Opened, clock: Clock) -> Callable[..., AbstractAsync
     async def opened(book: Path, **more: object) -> AsyncIterator[Bench]:
         async with open_screen(book, clock=clock, **more) as pilot:
             yield Bench(pilot, clock)
+
+    return opened
+
+
+@pytest.fixture
+def at_iterations(open_bench: Callable[..., Any]) -> Callable[..., AbstractAsyncContextManager[Bench]]:
+    """The Iterations screen up and its comparison done."""
+
+    @asynccontextmanager
+    async def opened(book: Path, **more: object) -> AsyncIterator[Bench]:
+        async with open_bench(book, screen=IterationsScreen, **more) as bench:
+            await bench.reckoned()
+            yield bench
 
     return opened
 

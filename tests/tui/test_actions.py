@@ -44,7 +44,7 @@ def test_every_action_has_something_that_does_it(screen: type[WorkScreen]) -> No
             continue
         done = action.name.startswith("open_") and action.word in KINDS
         done = done or hasattr(screen, f"do_{action.name}") or hasattr(LedgerApp, f"do_{action.name}")
-        assert done or action.name in ("go_weights", "go_fuel", "go_trace"), action.name
+        assert done or action.name in ("go_weights", "go_fuel", "go_trace", "go_iterations"), action.name
 
 
 @pytest.mark.parametrize("screen", SCREENS)
@@ -63,7 +63,7 @@ def test_printable_characters_are_keys_only_as_lone_digits_and_space() -> None:
     for screen in SCREENS:
         for action in table_of(screen):
             assert action.key is None or len(action.key) > 1, action.name
-            assert action.lone is None or action.lone in ("1", "2", "3", "5", "space"), action.name
+            assert action.lone is None or action.lone in ("1", "2", "3", "5", "6", "space"), action.name
 
 
 def test_tags_hold_only_letters_and_spaces_so_that_every_keyboard_layout_sends_them_alike() -> None:

@@ -13,33 +13,12 @@ from typing import Any
 import pytest
 
 from ledger.operations.start_book import start_book
-from ledger.tui.area import Area
-from ledger.tui.fuel_actions import FUEL_ACTIONS
 from ledger.tui.fuel_screen import FuelScreen
-from ledger.tui.list_screen import help_listed
 from ledger.units import M3_PER_US_GAL
 
 OpenBench = Callable[..., AbstractAsyncContextManager[Any]]
 WIDE = (160, 48)
 BOX = Path(__file__).parents[2] / "sample_builds" / "one_cell_box" / "plan"
-
-
-@pytest.fixture(scope="session")
-def _box_book(tmp_path_factory: pytest.TempPathFactory) -> Path:
-    book = tmp_path_factory.mktemp("box") / "box.wingledger"
-    start_book(book, BOX, by="JK")
-    return book
-
-
-@pytest.fixture
-def box_book(_box_book: Path, tmp_path: Path) -> Path:
-    """One cell, 1 m along, 0.5 m across, 0.2 m high."""
-    return Path(shutil.copy(_box_book, tmp_path / "box.wingledger"))
-
-
-def words(bench: Any, area: str) -> list[str]:
-    """The rows of one area as they are drawn."""
-    return [line.rstrip() for line in bench.app.screen.query_one(f"#fuel-{area}", Area).words.split("\n")]
 
 
 def up(value: float, scale: float = 1e3) -> str:
@@ -62,13 +41,13 @@ async def test_at_every_attitude_of_the_plan_the_figures_are_those_of_the_comman
     async with open_bench(demo_book, screen=FuelScreen) as bench:
         for tank in (left, right):
             await bench.type(tank["tank"])
-            headline = words(bench, "headline")[0]
+            headline = bench.words("headline")[0]
             assert headline.startswith(f"{tank['tank'].upper()} tank")
             assert "COMPUTED: a flow test decides" in headline
             assert "measured: none yet" in headline
             for attitude in tank["attitudes"]:
                 await bench.type(attitude["attitude"])
-                figures = "\n".join(words(bench, "figures"))
+                figures = "\n".join(bench.words("figures"))
                 worst = max(attitude["cells"], key=lambda cell: cell["trapped_m3"])
                 assert f'as "{attitude["attitude"]}"' in figures
                 assert f"TRAPPED {up(attitude['trapped_m3'])}" in figures
@@ -89,7 +68,7 @@ async def test_at_a_tilt_of_its_own_the_figures_are_those_of_the_command_asked_f
         await bench.type("nose 5")
         await bench.type("roll -1")
         await bench.type(f"{1e3 * drained['quantity_m3']:.9f} L")
-        figures = "\n".join(words(bench, "figures"))
+        figures = "\n".join(bench.words("figures"))
         assert "NOSE UP 5" in figures
         assert "ROLL LEFT 1" in figures
         assert "as no attitude of the plan" in figures
@@ -102,19 +81,19 @@ async def test_at_a_tilt_of_its_own_the_figures_are_those_of_the_command_asked_f
 # Box: outlet at the front of the floor, so nose up 5 deg traps behind it. checks (computed by hand):
 # the surface passes through the aft rim of the outlet, 10 mm aft of the front wall.
 async def test_the_box_holds_and_keeps_what_hand_calculation_says(
-    box_book: Path, open_bench: OpenBench, printed: Callable[..., Any]
+    one_cell_book: Path, open_bench: OpenBench, printed: Callable[..., Any]
 ) -> None:
-    tank = printed("fuel", box_book)["tanks"][0]
+    tank = printed("fuel", one_cell_book)["tanks"][0]
     climb = next(one for one in tank["attitudes"] if one["attitude"] == "climb")
-    async with open_bench(box_book, screen=FuelScreen) as bench:
+    async with open_bench(one_cell_book, screen=FuelScreen) as bench:
         await bench.type("50 L")
         await bench.type("level")
-        figures = "\n".join(words(bench, "figures"))
+        figures = "\n".join(bench.words("figures"))
         # Half of 100 L in a box 200 mm high from WL 0: the surface lies at WL 100 wherever the outlet is.
         assert tank["gross_m3"] == pytest.approx(0.1)
         assert "level WL 100.0 mm at outlet" in figures
         await bench.type("climb")
-        figures = "\n".join(words(bench, "figures"))
+        figures = "\n".join(bench.words("figures"))
         assert f"TRAPPED {up(climb['trapped_m3'])}" in figures
         # Full to half, tilted about the middle of the floor plan: WL 100 less the slope over half a metre.
         wl = 100.0 - math.tan(math.radians(5.0)) * 495.0
@@ -125,8 +104,8 @@ async def test_no_tank_says_what_to_do_and_every_key_is_refused(
     small_book: Path, open_bench: OpenBench
 ) -> None:
     async with open_bench(small_book, screen=FuelScreen) as bench:
-        assert words(bench, "headline")[0].startswith("no tank in the plan: add tanks.toml")
-        assert "adopt BOOK PLAN" in words(bench, "headline")[0]
+        assert bench.words("headline")[0].startswith("no tank in the plan: add tanks.toml")
+        assert "adopt BOOK PLAN" in bench.words("headline")[0]
         for key in ("up", "down", "left", "right", "pageup", "pagedown", "home", "end", "shift+right"):
             before = len(bench.app.rung)
             await bench.key(key)
@@ -145,41 +124,41 @@ async def test_arrows_move_what_tab_is_on(demo_book: Path, open_bench: OpenBench
         screen = bench.app.work_screen
         await bench.key("home")
         assert (screen.asked.attitude.pitch_deg, screen.asked.attitude.roll_deg) == (0.0, 0.0)
-        assert words(bench, "above")[0].endswith("arrows move: TILT")
+        assert bench.words("above")[0].endswith("arrows move: TILT")
         await bench.key("up", "up", "right")
         assert (screen.asked.attitude.pitch_deg, screen.asked.attitude.roll_deg) == (2.0, 1.0)
         await bench.key("down", "left", "left")
         assert (screen.asked.attitude.pitch_deg, screen.asked.attitude.roll_deg) == (1.0, -1.0)
         litres = 1e3 * screen.asked.quantity_m3
         await bench.key("tab", "up", "up", "down", "right")
-        assert words(bench, "above")[0].endswith("arrows move: FUEL")
+        assert bench.words("above")[0].endswith("arrows move: FUEL")
         assert 1e3 * screen.asked.quantity_m3 == pytest.approx(litres + 1.1)
         await bench.key("tab")
-        assert words(bench, "above")[0].endswith("arrows move: CUT")
+        assert bench.words("above")[0].endswith("arrows move: CUT")
         at = screen.asked.at_m
         await bench.key("right")
         assert screen.asked.axis == 1
         assert screen.asked.at_m > at
         await bench.key("up")
         assert screen.asked.axis == 0
-        assert words(bench, "cut-title")[0].startswith("CUT FS")
+        assert bench.words("cut-title")[0].startswith("CUT FS")
         await bench.key("tab", "left")
-        assert words(bench, "above")[0].endswith("arrows move: CELL")
+        assert bench.words("above")[0].endswith("arrows move: CELL")
         assert screen.cell == "L3"
         assert "L3" in bench.said[-1]
         await bench.key("tab")
-        assert words(bench, "above")[0].endswith("arrows move: TILT")
+        assert bench.words("above")[0].endswith("arrows move: TILT")
 
 
 async def test_page_keys_pour_a_litre_and_stop_at_empty_and_full(
-    box_book: Path, open_bench: OpenBench
+    one_cell_book: Path, open_bench: OpenBench
 ) -> None:
-    async with open_bench(box_book, screen=FuelScreen) as bench:
+    async with open_bench(one_cell_book, screen=FuelScreen) as bench:
         screen = bench.app.work_screen
         await bench.type("2 L")
         await bench.key("pagedown", "pagedown", "pagedown")
         assert screen.asked.quantity_m3 == 0.0
-        assert "empty" in "\n".join(words(bench, "figures"))
+        assert "empty" in "\n".join(bench.words("figures"))
         await bench.key("pageup")
         assert screen.asked.quantity_m3 == pytest.approx(0.001)
         await bench.type("500 L")
@@ -191,7 +170,7 @@ async def test_end_goes_round_the_attitudes_of_the_plan(demo_book: Path, open_be
     async with open_bench(demo_book, screen=FuelScreen) as bench:
         names = []
         for _ in range(8):
-            names.append(words(bench, "figures")[1])
+            names.append(bench.words("figures")[1])
             await bench.key("end")
         assert names[0] == names[7] == 'as "descent"'
         assert len(set(names)) == 7
@@ -200,7 +179,7 @@ async def test_end_goes_round_the_attitudes_of_the_plan(demo_book: Path, open_be
 async def test_one_degree_from_a_push_keeps_the_push(demo_book: Path, open_bench: OpenBench) -> None:
     async with open_bench(demo_book, screen=FuelScreen) as bench:
         await bench.type("take-off run")
-        assert "ax 0.12 g" in words(bench, "figures")[1]
+        assert "ax 0.12 g" in bench.words("figures")[1]
         await bench.key("up")
         attitude = bench.app.work_screen.asked.attitude
         assert (attitude.pitch_deg, attitude.ax_g) == (4.0, 0.12)
@@ -215,11 +194,11 @@ async def test_enter_lists_the_openings_by_what_moving_them_frees_and_enter_draw
         await bench.key("enter")
         assert bench.app.screen.query_one("#fuel-listed").display
         assert not bench.app.screen.query_one("#fuel-plan").display
-        rows = [row for row in words(bench, "listed") if row.endswith("mL")]
+        rows = [row for row in bench.words("listed") if row.endswith("mL")]
         freed = [max(float(part.split()[-1]) for part in row.split(" mL")[:2]) for row in rows]
         assert freed == sorted(freed, reverse=True)
         assert rows[0].startswith("outlet left")
-        figures = "\n".join(words(bench, "figures"))
+        figures = "\n".join(bench.words("figures"))
         lower, wider = rows[0].split(" mL")[0].split()[-1], rows[0].split(" mL")[1].split()[-1]
         assert f"1 mm lower frees {lower} mL" in figures
         assert f"10 % wider costs {wider.lstrip('-')} mL" in figures
@@ -233,155 +212,16 @@ async def test_a_wider_outlet_that_costs_fuel_says_why(
 ) -> None:
     async with open_bench(demo_book, screen=FuelScreen, size=size) as bench:
         await bench.key("f4")
-        figures = words(bench, "figures")
+        figures = bench.words("figures")
         place = next(at for at, row in enumerate(figures) if row.startswith("10 % wider costs"))
         assert figures[place - 2] == "behind outlet"
         said = figures[place] if size == WIDE else figures[place + 1]
         assert "draws air sooner" in said
         assert figures[-1].startswith("worst at")
         await bench.type("best climb")
-        climb = "\n".join(words(bench, "figures"))
+        climb = "\n".join(bench.words("figures"))
         assert "behind drain L4-L6" in climb
         assert "air sooner" not in climb
-
-
-# -- drawing
-
-
-@pytest.mark.parametrize("size", [(80, 24), WIDE])
-async def test_every_sign_of_the_drawing_is_explained_on_the_screen(
-    size: tuple[int, int], demo_book: Path, open_bench: OpenBench
-) -> None:
-    async with open_bench(demo_book, screen=FuelScreen, size=size) as bench:
-        await bench.key("f4")
-        below = words(bench, "rule-bottom")[0]
-        assert len(below) == size[0]
-        signs = f"{words(bench, 'ends')[0]}  {below}"
-        for sign in ("# trapped", "= feeds", "o air", "> chosen", "d v hole", "p pipe"):
-            assert f"{sign}" in signs, sign
-        for sign in ("V vent", "D drain", "F filler", "out outlet"):
-            assert f" {sign} " in signs, sign
-        if size != WIDE:
-            await bench.key("enter")
-            assert "vent" not in words(bench, "rule-bottom")[0]
-
-
-def test_help_says_which_area_each_arrow_is_of_and_names_enter() -> None:
-    rows = help_listed("fuel", FUEL_ACTIONS)
-    ups = [says for key, says in rows if key == "Up"]
-    assert [says.split(": ")[1] for says in ups] == [f"Tab on {area}" for area in FuelScreen.AREAS]
-    assert [says for key, says in rows if key == "Enter"] == [
-        "openings: on an empty line: openings by litres gained"
-    ]
-
-
-async def test_without_colour_trapped_feeding_empty_and_caught_air_are_told_apart(
-    demo_book: Path, open_bench: OpenBench
-) -> None:
-    async with open_bench(demo_book, screen=FuelScreen) as bench:
-        shown = set()
-        for _ in range(3):
-            shown.add("\n".join(words(bench, "plan") + words(bench, "cut") + words(bench, "figures")))
-            await bench.type("theme")
-        assert len(shown) == 1
-        text = shown.pop()
-        assert "#" in text
-        assert "=" in text
-        box = [row.split("d")[0] for row in words(bench, "plan")[1:3]]
-        assert box[0].strip("|>") == "L11    "
-
-
-async def test_the_chosen_cell_is_marked_by_a_sign_and_no_hole_is_lost_for_it(
-    demo_book: Path, open_bench: OpenBench
-) -> None:
-    async with open_bench(demo_book, screen=FuelScreen) as bench:
-        await bench.scan("L5")
-        plan = "\n".join(words(bench, "plan"))
-        assert ">L5" in plan
-        assert plan.count(">") == 1
-        await bench.key("right")
-        after = "\n".join(words(bench, "plan"))
-        assert ">L3" in after
-        assert after.count("d") == plan.count("d") > 10
-
-
-async def test_level_and_full_the_whole_box_is_fuel_and_empty_it_is_blank(
-    box_book: Path, open_bench: OpenBench
-) -> None:
-    async with open_bench(box_book, screen=FuelScreen) as bench:
-        await bench.type("level")
-        await bench.type("500 L")
-        full = "\n".join(words(bench, "cut"))
-        assert full.count("=") > 50
-        await bench.type("0 L")
-        empty = "\n".join(words(bench, "cut") + words(bench, "plan"))
-        assert "=" not in empty
-        assert "#" not in empty
-
-
-async def test_nose_up_the_fuel_runs_aft_in_the_plan_and_in_the_cut(
-    box_book: Path, open_bench: OpenBench
-) -> None:
-    async with open_bench(box_book, screen=FuelScreen) as bench:
-        await bench.type("nose 12")
-        await bench.type("30 L")
-        plan, cut = words(bench, "plan"), words(bench, "cut")
-        signs = [sum(row.count(sign) for sign in "=#") for row in plan[1:-1]]
-        assert signs[0] == 0
-        assert min(signs[-2:]) > 20
-        middle = len(cut[0]) // 2
-        front = sum(row[:middle].count(sign) for row in cut for sign in "=#")
-        rear = sum(row[middle:].count(sign) for row in cut for sign in "=#")
-        assert rear > 2 * front
-
-
-async def test_wide_shows_true_outline_openings_and_curve_beside_and_the_map_on_space(
-    demo_book: Path, open_bench: OpenBench
-) -> None:
-    async with open_bench(demo_book, screen=FuelScreen, size=WIDE) as bench:
-        await bench.key("f4")
-        outline = "\n".join(words(bench, "outline"))
-        assert all(f"L{number}" in outline for number in range(1, 13))
-        assert outline.count("d") >= 10
-        assert words(bench, "outline-title")[0].startswith("TRUE OUTLINE")
-        assert words(bench, "gains")[2].startswith("outlet left")
-        assert words(bench, "map")[0].startswith("CURVE")
-        await bench.type("map")
-        await bench.key("f4")
-        assert words(bench, "map")[0].startswith("MAP")
-        assert bench.app.screen.query_one("#fuel-plan").display
-        lines = bench.shown.split("\n")
-        assert len(lines) == 48
-        assert all(len(line) == 160 for line in lines)
-
-
-async def test_a_row_of_the_curve_poured_in_stands_at_its_level(
-    demo_book: Path, open_bench: OpenBench
-) -> None:
-    async with open_bench(demo_book, screen=FuelScreen, size=WIDE) as bench:
-        await bench.key("f4")
-        rows = [row for row in words(bench, "map") if "|" in row]
-        assert len(rows) == 10
-        litres = [float(row.split()[-1]) for row in rows]
-        assert litres == sorted(litres, reverse=True)
-        assert litres[0] == pytest.approx(1e3 * bench.app.work_screen.drawn.most_m3, abs=0.05)
-        assert "#" in rows[-1]
-        assert "=" not in rows[-1]
-        rung = bench.app.work_screen.curve[2]
-        await bench.type(f"{1e3 * rung.volume_m3:.9f} L")
-        assert f"level WL {1e3 * rung.outlet_wl_m:.1f} mm at outlet" in "\n".join(words(bench, "figures"))
-        (marked,) = [row for row in words(bench, "map") if row.startswith(">")]
-        assert f" {1e3 * rung.outlet_wl_m:.1f} |" in marked
-
-
-async def test_another_tank_has_its_own_openings_and_curve(demo_book: Path, open_bench: OpenBench) -> None:
-    async with open_bench(demo_book, screen=FuelScreen, size=WIDE) as bench:
-        await bench.scan("R7")
-        await bench.key("f4")
-        assert words(bench, "gains")[2].startswith("outlet right")
-        await bench.type("left")
-        await bench.key("f4")
-        assert words(bench, "gains")[2].startswith("outlet left")
 
 
 # -- typed and scanned
@@ -394,11 +234,11 @@ async def test_a_scanned_cell_or_opening_is_chosen_with_its_tank(
         screen = bench.app.work_screen
         await bench.scan("R7")
         assert screen.cell == "R7"
-        assert words(bench, "headline")[0].startswith("RIGHT tank")
+        assert bench.words("headline")[0].startswith("RIGHT tank")
         assert bench.said[-1].startswith("R7 ")
         await bench.scan("drain L4-L6")
         assert screen.cell in ("L4", "L6")
-        assert words(bench, "headline")[0].startswith("LEFT tank")
+        assert bench.words("headline")[0].startswith("LEFT tank")
 
 
 @pytest.mark.parametrize(
@@ -417,9 +257,9 @@ async def test_a_scanned_cell_or_opening_is_chosen_with_its_tank(
     ],
 )
 async def test_what_cannot_be_meant_is_refused_with_two_bells_and_changes_nothing(
-    wrong: str, says: str, box_book: Path, open_bench: OpenBench
+    wrong: str, says: str, one_cell_book: Path, open_bench: OpenBench
 ) -> None:
-    async with open_bench(box_book, screen=FuelScreen) as bench:
+    async with open_bench(one_cell_book, screen=FuelScreen) as bench:
         screen = bench.app.work_screen
         before = screen.asked
         await bench.type(wrong)
@@ -429,8 +269,10 @@ async def test_what_cannot_be_meant_is_refused_with_two_bells_and_changes_nothin
         assert bench.app.work_screen is screen
 
 
-async def test_a_negative_quantity_is_empty_and_not_an_error(box_book: Path, open_bench: OpenBench) -> None:
-    async with open_bench(box_book, screen=FuelScreen) as bench:
+async def test_a_negative_quantity_is_empty_and_not_an_error(
+    one_cell_book: Path, open_bench: OpenBench
+) -> None:
+    async with open_bench(one_cell_book, screen=FuelScreen) as bench:
         await bench.type("-5 L")
         assert bench.app.work_screen.asked.quantity_m3 == 0.0
 
@@ -446,9 +288,9 @@ async def test_in_us_units_a_press_is_a_quarter_gallon(tmp_path: Path, open_benc
         await bench.type("4 US gal")
         await bench.key("pageup")
         assert bench.app.work_screen.asked.quantity_m3 == pytest.approx(4.25 * M3_PER_US_GAL)
-        assert "PgUp PgDn 0.25 gal" in words(bench, "keys")[0]
-        assert "fl oz" in "\n".join(words(bench, "figures"))
-        figures = words(bench, "figures")
+        assert "PgUp PgDn 0.25 gal" in bench.words("keys")[0]
+        assert "fl oz" in "\n".join(bench.words("figures"))
+        figures = bench.words("figures")
         assert figures[2].endswith(" lb")
         assert figures[-2].endswith("US gal COMPUTED")
         assert figures[-3].endswith("US gal")

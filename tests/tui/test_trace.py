@@ -85,7 +85,7 @@ async def test_the_over_ratio_batch_is_a_stop_with_its_ratio_and_where_its_grams
         (headline,), (pieces,) = words(bench, "headline"), words(bench, "pieces")
         assert headline.startswith("B014Z  batch, used  hardener 31.1-31.2 to 100, wants 27.0: OUT")
         assert headline.endswith("STOP")
-        assert pieces.startswith("IN 1 piece, it is FITTED: 805.0 g of 805.0 g")
+        assert pieces.startswith("IN 1 piece, it is FITTED: 824.0 g of 824.0 g")
         assert pieces.endswith("NOT ON HOLD: type hold")
         assert len(headline) == len(pieces) == 80
 
@@ -132,9 +132,11 @@ async def test_with_nothing_asked_the_gravest_comes_first_and_enter_follows_it(
     demo_book: Path, open_bench: OpenBench
 ) -> None:
     async with open_bench(demo_book, screen=TraceScreen) as bench:
-        assert words(bench, "pieces")[0] == "5 things are on hold, or have STOP or LOOK"
-        rows = words(bench, "into")[1:6]
-        assert [row[1:5] for row in rows] == ["STOP", "STOP", "LOOK", "LOOK", "LOOK"]
+        assert words(bench, "pieces")[0] == "7 things are on hold, or have STOP or LOOK"
+        rows = words(bench, "into")[1:8]
+        assert [row[1:5] for row in rows] == [*["STOP"] * 2, *["LOOK"] * 5]
+        # A rib kept for stock is on hold, and no question any more.
+        assert "RIB.F8-R" not in bench.shown
         await bench.key("enter")
         assert words(bench, "headline")[0].startswith("B014Z")
 

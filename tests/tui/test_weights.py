@@ -157,8 +157,9 @@ async def test_space_goes_round_the_rows_that_are_flagged_and_says_what_to_do(
         await bench.type("next look")
         assert "SKIN.LWR-L/1" in marked(bench)
         assert "B014Z" in bench.said[-1]
-        await bench.type("next look")
-        assert "SKIN.LWR-R/1" in marked(bench)
+        for flagged in ("RIB.F9-R/1", "WEB.M.OUT-R/1", "SKIN.LWR-R/1"):
+            await bench.type("next look")
+            assert flagged in marked(bench)
 
 
 async def test_a_piece_not_begun_is_one_of_several_and_its_word_opens_with_the_part(
@@ -211,8 +212,8 @@ async def test_beside_the_tree_stand_the_causes_the_readings_and_the_findings_of
         assert beside[1].startswith(f"now {1000 * part['best_kg']:.1f} g")
         causes = [float(row[13:22]) for row in beside[4:12]]
         assert sum(causes) == pytest.approx(part["best_kg"] - part["estimated_kg"], abs=8 * 0.0005)
-        assert any("5467.5 g" in row and "W2" in row and "before trim" in row for row in beside)
-        assert any(row.startswith("LOOK  593.5 g heavy") for row in beside)
+        assert any("5590.0 g" in row and "W2" in row and "before trim" in row for row in beside)
+        assert any(row.startswith("LOOK  606.0 g heavy") for row in beside)
         await bench.scan("RIB.F3-R")
         assert "ok    no rule has noticed anything" in words(bench, "weights-chosen")
 

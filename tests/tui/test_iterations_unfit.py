@@ -1,0 +1,85 @@
+"""Built pieces that no longer fit, on the Iterations screen: cut again, accept, keep for stock."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from contextlib import AbstractAsyncContextManager
+from datetime import datetime
+from pathlib import Path
+from typing import Any
+
+OpenBench = Callable[..., AbstractAsyncContextManager[Any]]
+BoxPlan = Callable[..., Path]
+AtMinute = Callable[[int], datetime]
+WIDE = (160, 48)
+
+
+async def test_cut_again_opens_its_slips_on_the_bench_the_first_open_the_others_kept(
+    box_book: Path, at_iterations: OpenBench
+) -> None:
+    async with at_iterations(box_book) as bench:
+        await bench.type("cut again")
+        assert bench.said[-1].startswith("LOOK Tab to the built pieces")
+        await bench.key("tab", "tab", "down")
+        await bench.type("cut again")
+        await bench.reckoned()
+        assert bench.app.current_mode == "bench"
+        desk = bench.app.bench.desk
+        assert (desk.slip.kind, desk.slip.value("what")) == ("scrap", "WALL.OUT/1")
+        assert bench.said[-1] == "LOOK after scrap: cut; each waits as a draft"
+        await bench.type("moved in r2")
+        await bench.type("log")
+        await bench.reckoned()
+        await bench.type("cut")
+        await bench.reckoned()
+        assert (desk.slip.kind, desk.slip.value("pieces")) == ("cut", "WALL.OUT/2")
+
+
+async def test_accept_is_about_the_marked_piece_and_then_it_is_gone_from_the_list(
+    box_book: Path, at_iterations: OpenBench
+) -> None:
+    async with at_iterations(box_book) as bench:
+        await bench.key("tab", "tab")
+        await bench.type("accept")
+        await bench.reckoned()
+        slip = bench.app.bench.desk.slip
+        assert (slip.kind, slip.value("finding"), slip.value("what")) == (
+            "accept",
+            "built-to-earlier-iteration",
+            "FLOOR/1",
+        )
+        await bench.type("heavier but sound")
+        await bench.type("log")
+        await bench.reckoned()
+        await bench.key("f7")
+        await bench.reckoned()
+        assert bench.words("unfit")[0].split()[-1] == "1"
+        assert bench.words("unfit")[1].startswith(">WALL.OUT/1")
+
+
+async def test_keep_for_stock_opens_what_puts_the_piece_aside_and_then_the_one_in_its_stead(
+    box_book: Path, at_iterations: OpenBench
+) -> None:
+    async with at_iterations(box_book) as bench:
+        await bench.key("tab", "tab")
+        await bench.type("keep for stock")
+        await bench.reckoned()
+        slip = bench.app.bench.desk.slip
+        assert (slip.kind, slip.value("what"), slip.value("why")) == ("hold", "FLOOR/1", "kept for stock")
+        await bench.type("log")
+        await bench.reckoned()
+        await bench.type("cut")
+        await bench.reckoned()
+        slip = bench.app.bench.desk.slip
+        assert (slip.kind, slip.value("pieces")) == ("cut", "FLOOR/2")
+
+
+async def test_outside_that_area_cut_and_accept_are_the_ordinary_words(
+    box_book: Path, at_iterations: OpenBench
+) -> None:
+    for word in ("cut", "accept"):
+        async with at_iterations(box_book) as bench:
+            await bench.type(word)
+            await bench.reckoned()
+            assert bench.app.current_mode == "bench"
+            assert bench.app.bench.desk.slip.kind == word
