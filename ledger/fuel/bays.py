@@ -10,7 +10,7 @@ import numpy as np
 
 from ledger.fuel.sealant import fillet_below
 from ledger.geometry.closed_cell import ClosedCell
-from ledger.geometry.lowest_places import lowest_places
+from ledger.geometry.lowest_places import Place, places_by_depth
 from ledger.geometry.standing import Floats
 from ledger.geometry.submerged import CellAt
 from ledger.model.tanks import Cell
@@ -18,6 +18,9 @@ from ledger.model.vectors import ZERO, Vector
 
 # Up to so many levels one by one cost less than a table of them.
 FEW_LEVELS = 5
+# A pool no deeper than a coat of paint is not worth a wall: straight pieces of a curved skin leave such
+# pools where the real one has none. Common practice, no source.
+SHALLOW_M = 5e-5
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -158,9 +161,26 @@ class Bay:
     @property
     def pockets(self) -> int:
         """How many separate lowest places the cell has along `up`; 1 where all runs to one place."""
-        return _count_lowest(self.solid, self.up)
+        return sum(place.depth_m > SHALLOW_M for place in self.pools)
+
+    @property
+    def pools(self) -> tuple[Place, ...]:
+        """The lowest places with the depth of each pool, lowest first; the first is as deep as the cell."""
+        return _pools(self.solid, self.up)
+
+    @property
+    def film_m3(self) -> float:
+        """At most what pools too shallow to count can keep: each as if it covered the whole cell."""
+        shallow = sum(place.depth_m for place in self.pools if place.depth_m <= SHALLOW_M)
+        return shallow * _shadow_m2(self.solid, self.up) if shallow else 0.0
 
 
 @lru_cache(maxsize=4096)
-def _count_lowest(solid: ClosedCell, up: Vector) -> int:
-    return len(lowest_places(solid, up))
+def _pools(solid: ClosedCell, up: Vector) -> tuple[Place, ...]:
+    return places_by_depth(solid, up)
+
+
+def _shadow_m2(solid: ClosedCell, up: Vector) -> float:
+    """What the faces that look up and those that look down cover, along `up`, at the least one of them."""
+    p, q, r = (solid.vertices_m[solid.faces[:, corner]] for corner in range(3))
+    return 0.25 * float(np.abs(np.cross(q - p, r - p) @ np.array(up)).sum())

@@ -153,9 +153,22 @@ def _airless(flights: Sequence[Stood], tanks: Tanks) -> tuple[Airless, ...]:
 
 def _pocketed(flights: Sequence[Stood], tanks: Tanks) -> tuple[Pocketed, ...]:
     return tuple(
-        Pocketed(tank=tank.name, cell=cell, attitude=stood.attitude.name, places=stood.pockets(cell))
+        _pocket(tank.name, cell, stood)
         for tank in tanks.tanks
         for cell in tank.cells
         for stood in flights
         if stood.pockets(cell) > 1
+    )
+
+
+def _pocket(tank: str, cell: str, stood: Stood) -> Pocketed:
+    _, *others = stood.bays[cell].pools
+    deepest = max(others, key=lambda place: place.depth_m)
+    return Pocketed(
+        tank=tank,
+        cell=cell,
+        attitude=stood.attitude.name,
+        places=stood.pockets(cell),
+        depth_m=deepest.depth_m,
+        point_m=deepest.point_m,
     )

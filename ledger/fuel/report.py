@@ -146,12 +146,17 @@ class Airless:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Pocketed:
-    """A cell with more than one lowest place, in a flight attitude."""
+    """A cell with more than one lowest place, in a flight attitude.
+
+    `depth_m` is that of the deepest pool beside the lowest, and `point_m` its lowest point.
+    """
 
     tank: str
     cell: str
     attitude: str
     places: int
+    depth_m: float
+    point_m: Vector
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

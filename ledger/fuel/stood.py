@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
 from dataclasses import dataclass
 
@@ -81,8 +82,10 @@ class Stood:
         return drain(self.network, pulls, self.dry)
 
     def trapped(self, cell: str, kept: Kept) -> float:
-        """Volume that level keeps in a cell, m3."""
-        return self.bays[cell].volume(kept.level_m)
+        """Volume that level keeps in a cell, m3, with what pools too shallow to count may keep."""
+        bay = self.bays[cell]
+        volume, film = bay.volume(kept.level_m), 0.0 if kept.by == DRY else bay.film_m3
+        return min(volume + film, bay.volume(math.inf)) if film else volume
 
     def pockets(self, cell: str) -> int:
         """Lowest places of a cell; a dry cell has nothing in them to count."""

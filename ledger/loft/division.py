@@ -193,10 +193,11 @@ def _rib_walls(
             faults.append(_no_room(plane.rib.place, f"rib {plane.rib.name} in row {group[0].name}"))
             continue
         names = tuple(row.name for row in group)
+        butt_line = plane.butt_line(_middle(group, lines, plane))
         walls.append(
             Wall(
                 part=f"RIB.{''.join(names)}{plane.rib.name}",
-                title=f"{group[0].title} rib at BL {plane.butt_line(_middle(group, lines, plane)):.2f}",
+                title=f"{group[0].title} rib at BL {1000.0 * butt_line:.0f} mm",
                 place=plane.rib.place,
                 slab=plane.slab,
                 solid=solid,

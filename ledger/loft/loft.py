@@ -18,7 +18,7 @@ from ledger.loft.lofted import Lofted, LoftedCell, LoftedSkin, Panel
 from ledger.loft.panels import FlatPanel, flat_panels, panel_edges
 from ledger.loft.ports import place_ports
 from ledger.loft.shell import Shell, build_shell, skin_surface
-from ledger.loft.solids import lofted_solids
+from ledger.loft.solids import lofted_solids, taken_by_blocks
 from ledger.loft.strips import let_in_strips
 from ledger.loft.walls import WebLine, rib_planes, web_lines
 from ledger.model.plan import PartClass
@@ -131,7 +131,7 @@ def _cell(layout: Layout, cell: TankBay, parted: tuple[Spot, ...]) -> LoftedCell
         bay=cell.bay.name,
         tank=cell.tank,
         mesh=mesh_of(cell.space),
-        displaced_m3=fillets_in(layout, cell, parted),
+        displaced_m3=fillets_in(layout, cell, parted) + taken_by_blocks(layout, cell.space),
     )
 
 

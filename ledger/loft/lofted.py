@@ -105,7 +105,7 @@ class Strip:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class LoftedCell:
-    """A cell net of structure. `number` counts from the root; `displaced_m3` is what its fillets take up."""
+    """A cell net of structure. `number` counts from the root; fillets and blocks take up `displaced_m3`."""
 
     number: int
     bay: str

@@ -6,7 +6,7 @@ from collections.abc import Iterator
 
 import numpy as np
 
-from ledger.loft.bodies import Body, mesh_of, tube
+from ledger.loft.bodies import Body, body_of, mesh_of, tube
 from ledger.loft.division import Division
 from ledger.loft.layout import Block, Closeout, Fill, Layout
 from ledger.loft.lofted import Mesh, Solid
@@ -60,6 +60,11 @@ def _closeout(shell: Shell, closeout: Closeout) -> Mesh:
     along = ring[nose] - beside[nose]
     beyond = ring + along * closeout.length_m / abs(along[1])
     return tube(np.stack((ring, beyond) if closeout.at_tip else (beyond, ring)))
+
+
+def taken_by_blocks(layout: Layout, space: Body) -> float:
+    """What blocks that stand in a space take of it, m3."""
+    return sum(float((space ^ body_of(_block(block))).volume()) for block in layout.blocks)
 
 
 def _block(block: Block) -> Mesh:

@@ -388,3 +388,31 @@ def test_cells_joined_by_one_tee_after_another_all_have_to_do_with_one_another(b
     system = System.of(build.tanks(cells, openings, feeds=feeds, split=split), cells, {})
     assert set(system.joined_with("A")) == {"A", "B", "C"}
     assert system.joined_with("D") == ("D",)
+
+
+@pytest.mark.parametrize(("ridge_mm", "pockets"), [(0.049, 1), (0.051, 2)])
+def test_a_pool_no_deeper_than_paint_is_charged_in_full_and_a_deeper_one_is_told(
+    build: Any, ground: Attitude, ridge_mm: float, pockets: int
+) -> None:
+    ridge = ridge_mm / 1000.0
+    section = [(0.0, 0.0), (0.5, ridge), (1.0, 0.0), (1.0, 1.0), (0.0, 1.0)]
+    openings = (
+        build.slot("outlet", "A outlet", 0.0, 0.0),
+        build.slot("filler", "A filler", 0.9, 0.9),
+        build.slot("vent", "A vent", 1.0, 1.0),
+    )
+    report = build.report({"A": build.prism(section)}, openings, (ground, build.pitched(0.0)))
+    level = build.at(report.tanks[0], "pitch 0")
+    if pockets == 1:
+        # Half the floor keeps half a ridge's depth at most; it is charged as if all of it were that deep.
+        flat = build.report(
+            {"A": build.prism(section[:1] + section[2:])}, openings, (ground, build.pitched(0.0))
+        )
+        area = build.at(flat.tanks[0], "pitch 0").table[-1].volume_m3
+        dry = build.at(flat.tanks[0], "pitch 0").trapped_m3
+        assert level.trapped_m3 == pytest.approx(dry + ridge * area, abs=1e-9)
+        assert report.pocketed == ()
+        assert report.tanks[0].usable_m3 is not None
+    else:
+        assert (level.trapped_m3, report.tanks[0].usable_m3) == (None, None)
+        assert report.pocketed[0].depth_m == pytest.approx(ridge, abs=1e-12)

@@ -118,3 +118,21 @@ def test_a_block_is_a_box(wings: Any, measured: Any) -> None:
     volume, middle = measured(mesh.vertices_m, mesh.faces)
     assert volume == pytest.approx(0.012 * 0.15 * 0.045, rel=1e-12)
     assert middle == pytest.approx((1.006, -0.025, 0.2225), abs=1e-12)
+
+
+def test_a_block_takes_from_a_cell_only_what_stands_in_it(wings: Any) -> None:
+    # Bay R1 lies between BL 0.1 and 1.0 and webs at 0.2 and 0.6 of a chord of 1 m that begins at FS 1.
+    block = Block(
+        place=wings.section().place,
+        part="FIT",
+        title="fitting",
+        part_class=PartClass.FITTING,
+        material="M",
+        corner_m=(1.35, 0.5, -0.005),
+        size_m=(0.1, 0.2, 0.02),
+    )
+    empty, taken = (
+        [cell.displaced_m3 for cell in lofted(wings.plain(blocks=blocks)).cells] for blocks in ((), (block,))
+    )
+    assert taken[0] - empty[0] == pytest.approx(0.1 * 0.2 * 0.02, rel=1e-9)
+    assert taken[1] == empty[1]
