@@ -20,6 +20,7 @@ from ledger.checks.feed_flow_unknown import feed_flow_unknown
 from ledger.checks.few_adverse_attitudes import few_adverse_attitudes
 from ledger.checks.held_used import held_used
 from ledger.checks.instrument_out_of_calibration import instrument_out_of_calibration
+from ledger.checks.lost_overboard import lost_overboard
 from ledger.checks.lot_expired import lot_expired
 from ledger.checks.mass_off_plan import mass_off_plan
 from ledger.checks.mass_unknown import mass_unknown
@@ -68,6 +69,7 @@ RULES: tuple[Rule, ...] = (
     few_adverse_attitudes,
     held_used,
     instrument_out_of_calibration,
+    lost_overboard,
     lot_expired,
     mass_off_plan,
     mass_unknown,

@@ -15,6 +15,9 @@ _R = TypeVar("_R")
 Tabled = tuple[tuple[TomlTable, _R], ...]
 
 _SLACK_M = 1e-9
+# Beyond these a wing is more likely in another unit than as large as that.
+_MOST_HALF_SPAN_M = 40.0
+_MOST_CHORD_M = 15.0
 
 
 def check_sections(whole: TomlTable, sections: Tabled[Section]) -> None:
@@ -32,6 +35,20 @@ def check_sections(whole: TomlTable, sections: Tabled[Section]) -> None:
                 f"BL {_mm(after.butt_line_m)} is not outboard of {_mm(before.butt_line_m)}, the one before",
                 "put the sections in order, inboard first",
             )
+
+
+def check_scale(whole: TomlTable, sections: tuple[Section, ...]) -> None:
+    """Note, once, a wing too large to have been meant in its unit."""
+    for words, sizes, most_m in (
+        ("half span", [section.butt_line_m for section in sections], _MOST_HALF_SPAN_M),
+        ("chord", [section.chord_m for section in sections], _MOST_CHORD_M),
+    ):
+        size_m = max(sizes, default=0.0)
+        if size_m > most_m:
+            what = f"a {words} of {size_m:.6g} m: check length_unit"
+            do = "write the unit that the numbers are in, or leave it as it is if the wing is that large"
+            whole.problems.look("unit-doubtful", whole.where("length_unit"), what, do)
+            return
 
 
 def check_betweens(

@@ -35,7 +35,7 @@ def read_joints(whole: TomlTable, shelf: Shelf, gap_m: float | None) -> tuple[tu
             fillet_shape=FilletShape(values.get("fillet_shape", FilletShape.CONCAVE)),
         )
 
-    return read_records(whole, JOINT, shelf.unit, check, make)
+    return read_records(whole, JOINT, shelf, check, make)
 
 
 def _check_solid(table: TomlTable, values: Values, shelf: Shelf) -> None:
@@ -62,7 +62,7 @@ def read_fills(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Fill], 
             ribs=values.get("ribs"),
         )
 
-    return read_records(whole, FILL, shelf.unit, check, make)
+    return read_records(whole, FILL, shelf, check, make)
 
 
 def read_closeouts(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Closeout], ...]:
@@ -88,7 +88,7 @@ def read_closeouts(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Clo
             material=values["material"],
         )
 
-    return read_records(whole, CLOSEOUT, shelf.unit, check, make)
+    return read_records(whole, CLOSEOUT, shelf, check, make)
 
 
 def read_blocks(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Block], ...]:
@@ -105,9 +105,7 @@ def read_blocks(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Block]
             size_m=values["size"],
         )
 
-    return read_records(
-        whole, BLOCK, shelf.unit, lambda table, values: _check_solid(table, values, shelf), make
-    )
+    return read_records(whole, BLOCK, shelf, lambda table, values: _check_solid(table, values, shelf), make)
 
 
 def read_items(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Item], ...]:
@@ -127,7 +125,7 @@ def read_items(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Item], 
     return read_records(
         whole,
         ITEM,
-        shelf.unit,
+        shelf,
         lambda table, values: shelf.take_part(table, "part", values.get("part")),
         make,
     )

@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 from difflib import get_close_matches
 from typing import Any, TypeVar
 
+from ledger.exchange.layout_examples import in_own_names
 from ledger.exchange.layout_thickness import Thicknesses
 from ledger.exchange.layout_values import read_values
 from ledger.exchange.materials_table import Named
@@ -130,7 +131,7 @@ def names_said(whole: TomlTable, word: str) -> tuple[str, ...]:
 def read_records(
     whole: TomlTable,
     keys: TableKeys,
-    unit: str | None,
+    shelf: Shelf,
     check: Callable[[TomlTable, Values], None],
     make: Callable[[TomlTable, Values], _R],
 ) -> tuple[tuple[TomlTable, _R], ...]:
@@ -139,9 +140,10 @@ def read_records(
     `check` sees the values that could be read, `make` only a table without a problem.
     """
     found: list[tuple[TomlTable, _R]] = []
+    keys = in_own_names(whole, keys, shelf)
     for table in whole.tables(keys.word):
         before = table.problems.stops
-        values = read_values(table, keys, unit)
+        values = read_values(table, keys, shelf.unit)
         check(table, values)
         if table.problems.stops == before:
             found.append((table, make(table, values)))

@@ -6,11 +6,13 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any, TypeVar
 
+from ledger.errors import Where
 from ledger.exchange.layout_bays import Bays
 from ledger.exchange.layout_checks import (
     Tabled,
     check_betweens,
     check_rows,
+    check_scale,
     check_sections,
     take_rib_parts,
 )
@@ -154,6 +156,11 @@ def _gap_m(whole: TomlTable, shelf: Shelf) -> float | None:
     return values.get("gap", None if "gap" in bond.values else 0.0)
 
 
+def _gap_place(whole: TomlTable) -> Where | None:
+    bond = whole.table(BOND.word) if "bond" in whole.values else None
+    return None if bond is None else bond.where("gap")
+
+
 def check_tables(whole: TomlTable, read: LayoutTables, shelf: Shelf) -> None:
     """What tables must agree on; only what can be judged from those that were read."""
     before = whole.problems.stops
@@ -163,6 +170,8 @@ def check_tables(whole: TomlTable, read: LayoutTables, shelf: Shelf) -> None:
         check_rows(read.rows, read.webs, records(read.sections))
         if read.complete(whole, "skin"):
             check_cover(whole, records(read.skins), read.span_m)
+    if whole.problems.stops == 0:
+        check_scale(whole, records(read.sections))
     if read.complete(whole, "row", "rib"):
         take_rib_parts(read.ribs, records(read.rows), shelf)
     if read.complete(whole, "row", "rib", "web"):
@@ -216,6 +225,7 @@ def layout_of(whole: TomlTable, read: LayoutTables, shelf: Shelf, top: Mapping[s
         feeds=records(read.feeds),
         planned_kg=read_planned(whole, shelf, every_part=every_part),
         gap_m=read.gap_m,
+        gap_place=_gap_place(whole),
         corners=top.get("corners", 48),
         mirrored=top.get("mirror", True),
     )

@@ -33,7 +33,7 @@ def read_layout_tanks(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, 
             sealant_material=values.get("sealant_material"),
         )
 
-    found = read_records(whole, TANK, shelf.unit, check, make)
+    found = read_records(whole, TANK, shelf, check, make)
     for number, (table, tank) in enumerate(found):
         if not says(table, "name") and any(tank.name == other.name for _, other in found[:number]):
             what = "two tanks have no name"
@@ -77,7 +77,7 @@ def read_holes(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Hole], 
             leaving_out=values.get("leaving_out", ()),
         )
 
-    return read_records(whole, HOLE, shelf.unit, _nothing_more, make)
+    return read_records(whole, HOLE, shelf, _nothing_more, make)
 
 
 def read_ports(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Port], ...]:
@@ -101,7 +101,7 @@ def read_ports(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Port], 
                 pipe_m=values.get("pipe", ()),
             )
 
-        found.extend(read_records(whole, keys, shelf.unit, _nothing_more, make))
+        found.extend(read_records(whole, keys, shelf, _nothing_more, make))
     return tuple(found)
 
 
@@ -125,7 +125,7 @@ def read_layout_feeds(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, 
             outlets=values.get("outlets", ()),
         )
 
-    return read_records(whole, FEED, shelf.unit, check, make)
+    return read_records(whole, FEED, shelf, check, make)
 
 
 def _nothing_more(table: TomlTable, values: Values) -> None:

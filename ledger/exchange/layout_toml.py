@@ -54,9 +54,9 @@ def read_layout(path: Path) -> ReadLayout:
         return ReadLayout(
             layout=None, head=None, materials={}, laminates={}, sources={}, findings=problems.findings()
         )
-    whole.refuse_others((*TOP.words, *(table.word for table in TABLES)))
+    meant = whole.refuse_others((*TOP.words, *(table.word for table in TABLES)))
     check_format(whole, FORMAT)
-    head = read_head(whole)
+    head = read_head(whole, meant)
     top = read_some(whole, TOP, None, _OWN_TOP_KEYS)
     files = FolderFiles(path.parent)
     sources = _sources(whole, files, top)

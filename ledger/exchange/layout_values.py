@@ -25,13 +25,23 @@ def read_values(table: TomlTable, keys: TableKeys, unit: str | None) -> dict[str
 
     `unit` is that of bare lengths, None where the file says none.
     """
-    table.refuse_others(keys.words)
-    _check_alternatives(table, keys)
-    return read_some(table, keys, unit, keys.words)
+    meant = table.refuse_others(keys.words)
+    _check_alternatives(table, keys, meant)
+    return read_some(table, keys, unit, keys.words, meant=meant)
 
 
-def read_some(table: TomlTable, keys: TableKeys, unit: str | None, words: Iterable[str]) -> dict[str, Any]:
-    """What stands behind some keys of a table, as `read_values` does it."""
+def read_some(
+    table: TomlTable,
+    keys: TableKeys,
+    unit: str | None,
+    words: Iterable[str],
+    *,
+    meant: frozenset[str] = frozenset(),
+) -> dict[str, Any]:
+    """What stands behind some keys of a table, as `read_values` does it.
+
+    `meant` are keys of which a misspelt one was told: that one is missing says nothing new.
+    """
     wanted = frozenset(words)
     found: dict[str, Any] = {}
     for key in keys.keys:
@@ -39,10 +49,8 @@ def read_some(table: TomlTable, keys: TableKeys, unit: str | None, words: Iterab
             continue
         value = table.values.get(key.word)
         if not says(table, key.word):
-            if key.required:
-                table.stop(
-                    "key-missing", key.word, f"{key.word} is missing", f"write {key.word} = {key.example}"
-                )
+            if key.required and key.word not in meant:
+                table.stop("key-missing", key.word, f"{key.word} is missing", _for_example(key))
             continue
         read = _read(table, key, value, unit)
         if read is not None:
@@ -75,23 +83,31 @@ def _read(table: TomlTable, key: Key, value: object, unit: str | None) -> Any:
         return None
 
 
-def _check_alternatives(table: TomlTable, keys: TableKeys) -> None:
-    examples = {key.word: key.example for key in keys.keys}
+def _for_example(*keys: Key) -> str:
+    """How keys are written; only a value that can be no other is not called an example."""
+    written = " and ".join(f"{as_key(key.word)} = {key.example}" for key in keys)
+    return (
+        f"write {written}" if all(len(key.choices) == 1 for key in keys) else f"write for example {written}"
+    )
+
+
+def _check_alternatives(table: TomlTable, keys: TableKeys, meant: frozenset[str]) -> None:
+    by_word = {key.word: key for key in keys.keys}
     for group in keys.one_of:
         ways = [" and ".join(way) for way in group]
         given = [way for way in group if any(says(table, word) for word in way)]
         if not given:
-            first = " and ".join(f"{word} = {examples[word]}" for word in group[0])
-            table.stop("key-missing", group[0][0], f"none of {listed(ways)} is given", f"write {first}")
+            if not any(meant.intersection(way) for way in group):
+                do = _for_example(*(by_word[word] for word in group[0]))
+                table.stop("key-missing", group[0][0], f"none of {listed(ways)} is given", do)
         elif len(given) > 1:
             said = " and ".join(word for way in given for word in way if says(table, word))
             what, do = f"{said} are both given", f"give one of {listed(ways)}"
             table.stop("given-both-ways", given[1][0], what, do)
         else:
             for word in given[0]:
-                if not says(table, word):
-                    do = f"write {word} = {examples[word]}"
-                    table.stop("key-missing", word, f"{word} is missing", do)
+                if not says(table, word) and word not in meant:
+                    table.stop("key-missing", word, f"{word} is missing", _for_example(by_word[word]))
 
 
 def _wrong(key: Key, value: object, what: str | None = None) -> Unplaced:

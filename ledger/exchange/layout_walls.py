@@ -35,7 +35,7 @@ def read_sections(
             coordinates=() if file is None else profiles.outline(table, file),
         )
 
-    return read_records(whole, SECTION, shelf.unit, check, make)
+    return read_records(whole, SECTION, shelf, check, make)
 
 
 def read_skins(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, SkinZone], ...]:
@@ -67,7 +67,7 @@ def read_skins(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, SkinZon
             finish_part=values.get("finish_part"),
         )
 
-    return read_records(whole, SKIN, shelf.unit, check, make)
+    return read_records(whole, SKIN, shelf, check, make)
 
 
 def _check_chord(table: TomlTable, values: Values) -> None:
@@ -124,7 +124,7 @@ def read_webs(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Web], ..
             lengths=values.get("lengths", ()),
         )
 
-    return read_records(whole, WEB, shelf.unit, check, make)
+    return read_records(whole, WEB, shelf, check, make)
 
 
 def _unread(table: TomlTable, values: Values) -> set[str]:
@@ -163,7 +163,7 @@ def read_rows(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Row], ..
             rear=values["webs"][1],
         )
 
-    return read_records(whole, ROW, shelf.unit, check, make)
+    return read_records(whole, ROW, shelf, check, make)
 
 
 def _stop_order(table: TomlTable, front: str, rear: str) -> None:
@@ -198,7 +198,7 @@ def read_ribs(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Rib], ..
             through=values.get("through", ()),
         )
 
-    return read_records(whole, RIB, shelf.unit, check, make)
+    return read_records(whole, RIB, shelf, check, make)
 
 
 def read_caps(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Cap], ...]:
@@ -224,4 +224,4 @@ def read_caps(whole: TomlTable, shelf: Shelf) -> tuple[tuple[TomlTable, Cap], ..
             let_in=values.get("let_in", False),
         )
 
-    return read_records(whole, CAP, shelf.unit, check, make)
+    return read_records(whole, CAP, shelf, check, make)

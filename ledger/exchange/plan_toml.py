@@ -47,9 +47,12 @@ def read_plan_head(content: bytes, problems: Problems) -> PlanHead | None:
     return read_head(whole)
 
 
-def read_head(whole: TomlTable) -> PlanHead:
-    """Name, title, display, fuel, attitudes, tolerances and growths, in a plan or in a layout."""
-    name = whole.text("name", wanted='"r1", the name of this iteration')
+def read_head(whole: TomlTable, meant: frozenset[str] = frozenset()) -> PlanHead:
+    """Name, title, display, fuel, attitudes, tolerances and growths, in a plan or in a layout.
+
+    `meant` are keys of which a misspelt one was told.
+    """
+    name = whole.text("name", wanted=None if "name" in meant else '"r1", the name of this iteration')
     if name is not None and _PLAIN_WORD.fullmatch(name) is None:
         whole.stop(
             "name-wrong",

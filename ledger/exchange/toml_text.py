@@ -17,6 +17,7 @@ from typing import Any
 from ledger.errors import Where
 from ledger.exchange.problems import Problems
 from ledger.exchange.texts import read_text
+from ledger.exchange.toml_faults import fault_of
 from ledger.units import Dimension, UnitError, read_quantity
 
 Path = tuple[str | int, ...]
@@ -61,14 +62,17 @@ class TomlTable:
             'write length_unit = "mm" at the top of the file',
         )
 
-    def refuse_others(self, known: Iterable[str]) -> None:
-        """Note every key that is not known here."""
+    def refuse_others(self, known: Iterable[str]) -> frozenset[str]:
+        """Note every key that is not known here; returns the keys that were named in their stead."""
         words = tuple(known)
+        named: set[str] = set()
         for key in self.values:
             if key not in words:
                 close = get_close_matches(key, words, n=1, cutoff=0.75)
                 do = f"write {close[0]}" if close else f"the keys here are {', '.join(words)}"
+                named.update(close)
                 self.stop("key-unknown", key, f"{key!r} is not known here", do)
+        return frozenset(named)
 
     def text(self, key: str, *, wanted: str | None = None) -> str | None:
         """A text; where `wanted` says what it is for, it may not be missing."""
@@ -199,15 +203,12 @@ def read_toml(file: str, content: bytes, problems: Problems) -> TomlTable | None
         values = tomllib.loads(text)
     except (tomllib.TOMLDecodeError, RecursionError) as error:
         told = str(error)
-        at = re.search(r"\s*\(at line (\d+), column \d+\)", told)
+        at = re.search(r"\s*\(at line (\d+), column (\d+)\)", told)
         row = int(at.group(1)) if at is not None else text.count("\n") + 1
         plain = told[: at.start()] if at is not None else told.removesuffix(" (at end of document)")
-        problems.stop(
-            "toml-broken",
-            Where(file=file, row=row),
-            f"the line cannot be read: {plain[:1].lower()}{plain[1:]}",
-            "mend the line",
-        )
+        line = text.split("\n")[row - 1]
+        what, do = fault_of(plain, line, int(at.group(2)) if at is not None else None)
+        problems.stop("toml-broken", Where(file=file, row=row), f"the line cannot be read: {what}", do)
         return None
     return TomlTable(file=file, values=values, path=(), lines=lines_of(text), problems=problems)
 

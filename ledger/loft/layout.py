@@ -331,5 +331,6 @@ class Layout:
     feeds: tuple[LayoutFeed, ...] = ()
     planned_kg: tuple[tuple[str, float], ...] = ()
     gap_m: float = 0.0
+    gap_place: Where | None = None
     corners: int = 48
     mirrored: bool = True

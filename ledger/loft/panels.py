@@ -9,10 +9,10 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from ledger.errors import Finding
+from ledger.errors import Finding, Where
 from ledger.loft.bodies import Body, beyond_plane, mesh_of, plate
 from ledger.loft.division import Wall
-from ledger.loft.faults import Tick, stop
+from ledger.loft.faults import Tick, millimetres, stop
 from ledger.loft.layout import NOSE, TAIL, Edge
 from ledger.loft.lofted import Floats, PanelEdge
 from ledger.loft.walls import Slab, WebLine, row_stations
@@ -29,6 +29,7 @@ _SHAVING_M2 = 1e-5
 _SHAVING_M3 = 1e-12
 _CLEAR_M = 1e-7
 _IN_FACE_M = 1e-10
+_PARTS_SHOWN = 3
 
 
 @dataclass(frozen=True, kw_only=True, eq=False)
@@ -67,6 +68,7 @@ def flat_panels(
     """
     found: list[FlatPanel] = []
     faults: list[Finding] = []
+    filled: list[Wall] = []
     for wall in walls:
         tick()
         pieces = _spaces(wall, _limits(layout, wall, lines))
@@ -74,11 +76,11 @@ def flat_panels(
             faults.append(_in_pieces(wall, len(pieces)))
             continue
         if not pieces:
-            faults.append(_all_gap(wall))
+            faults.append(_no_room(wall))
         for number, space in enumerate(pieces, start=1):
             outline = _less_gap(space, layout.gap_m)
             if outline is None:
-                faults.append(_all_gap(wall))
+                filled.append(wall)
                 continue
             several = len(pieces) > 1
             found.append(
@@ -90,6 +92,8 @@ def flat_panels(
                     outline=_corners(outline),
                 )
             )
+    if filled:
+        faults.append(_all_gap(layout, tuple(dict.fromkeys(wall.part for wall in filled)), filled[0].place))
     return tuple(found), tuple(faults)
 
 
@@ -200,7 +204,19 @@ def _in_pieces(wall: Wall, count: int) -> Finding:
     )
 
 
-def _all_gap(wall: Wall) -> Finding:
+def _all_gap(layout: Layout, parts: tuple[str, ...], first: Where) -> Finding:
+    """One finding for all: it is the one gap that leaves no panel."""
+    more = f" and {len(parts) - _PARTS_SHOWN} more" if len(parts) > _PARTS_SHOWN else ""
+    return stop(
+        layout.gap_place or first,
+        "gap-too-wide",
+        f"a gap of {millimetres(layout.gap_m)} at each edge leaves nothing of"
+        f" {', '.join(parts[:_PARTS_SHOWN])}{more}",
+        "write a smaller gap, or move what is left too small to where the section is deeper",
+    )
+
+
+def _no_room(wall: Wall) -> Finding:
     return stop(
         wall.place,
         "rib-outside-wing" if wall.rib is not None else "web-outside-section",

@@ -173,15 +173,21 @@ def _plan_faults(layout: Layout, web: Web, points: tuple[PlanPoint, ...]) -> Ite
                 web, f"is at FS {millimetres(x)} at BL {millimetres(line)}, where the chord runs from {chord}"
             )
             return
-    for (x0, y0), (x1, y1), (x2, y2) in zip(points, points[1:], points[2:], strict=False):
-        off = x1 - (x0 + (x2 - x0) * (y1 - y0) / (y2 - y0))
-        if abs(off) > _STRAIGHT_M and all(abs(splice - y1) > 1e-6 for splice in web.splices_m):
-            yield stop(
-                web.place,
-                "web-bends",
-                f"web {web.name} bends at BL {millimetres(y1)} and a panel is flat",
-                f"add a splice at {millimetres(y1)}, or give it two points",
-            )
+    bends = [
+        y1
+        for (x0, y0), (x1, y1), (x2, y2) in zip(points, points[1:], points[2:], strict=False)
+        if abs(x1 - (x0 + (x2 - x0) * (y1 - y0) / (y2 - y0))) > _STRAIGHT_M
+        and all(abs(splice - y1) > 1e-6 for splice in web.splices_m)
+    ]
+    if bends:
+        cuts_mm = sorted(round(1000.0 * line, 4) for line in (*web.splices_m, *bends))
+        splices = ", ".join(f'"{line:.10g} mm"' for line in cuts_mm)
+        yield stop(
+            web.place,
+            "web-bends",
+            f"web {web.name} bends at BL {' and '.join(map(millimetres, bends))} and a panel is flat",
+            f"add splices = [{splices}] and a name for each length in lengths, or give it two points",
+        )
 
 
 def _outside(web: Web, why: str) -> Finding:
@@ -197,9 +203,8 @@ def _lengths(layout: Layout, shell: Shell, web: Web, points: tuple[PlanPoint, ..
     found = []
     for name, (low, high) in zip(names, pairwise(cuts), strict=True):
         start, end = ((float(np.interp(line, y, x)), float(line)) for line in (low, high))
-        whole = len(cuts) == 2 and not web.lengths
         part, title = f"WEB.{web.name}", web.title
-        if not whole:
+        if len(cuts) > 2 or web.lengths:
             part, title = f"{part}.{name}", f"{title}, {_length_word(name)}"
         slab = _web_slab(layout, shell, web, start, end)
         found.append(WebLength(web=web, part=part, title=title, start=start, end=end, slab=slab))
@@ -284,9 +289,14 @@ def _along_span(plane: RibPlane) -> Iterator[Finding]:
 
 def _without_web(layout: Layout, plane: RibPlane, lines: dict[str, WebLine]) -> Iterator[Finding]:
     """A rib is cut between webs, so those of its rows have to be there."""
-    for row in layout.rows:
-        if row.name not in plane.rib.rows:
-            continue
+    first, last = layout.sections[0].butt_line_m, layout.sections[-1].butt_line_m
+    stands = [point[1] for point in plane.rib.points_m or ()] or [plane.slab.origin_m[1]]
+    if min(stands) > last or max(stands) < first:
+        end, line_m = ("ends", last) if min(stands) > last else ("begins", first)
+        what = f"rib {plane.rib.name} stands outside the wing, which {end} at BL {millimetres(line_m)}"
+        yield stop(plane.rib.place, "rib-outside-wing", what, "move it inside, or add a section beyond it")
+        return
+    for row in (row for row in layout.rows if row.name in plane.rib.rows):
         for name in (row.front, row.rear):
             if name in lines and not lines[name].reaches(plane.crossing(lines[name])[1]):
                 yield stop(

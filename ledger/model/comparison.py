@@ -166,7 +166,8 @@ class Comparison:
     `adopted` is False where the second is a folder not in the book: a preview. `saved_as_fuel_m3` is
     the fuel at 15 C that weighs what `mass.now_kg` saves, below 0 where mass is added; None where the
     plan gives no density. `stays` are the live pieces that fit the second plan or are accepted in it,
-    `fits_again` those of them that do not fit the first.
+    `fits_again` those of them that do not fit the first, `on_hold` those that are on hold. `spare` are
+    the live pieces that count nothing under the second: one too many, or kept for stock.
     """
 
     a: str
@@ -182,3 +183,5 @@ class Comparison:
     stays: tuple[str, ...]
     fits_again: tuple[str, ...]
     findings: tuple[Finding, ...]
+    on_hold: tuple[str, ...] = ()
+    spare: tuple[str, ...] = ()

@@ -105,6 +105,8 @@ def compare_sides(a: Side, b: Side, *, progress: Progress = unwatched) -> Compar
     saved = mass.now_kg.change
     stays = _stays(b.build.snapshot)
     before = set(_stays(a.build.snapshot))
+    pieces = b.build.snapshot.pieces
+    listed = {*stays, *(piece.piece for piece in unfit)}
     return Comparison(
         a=a.name,
         b=b.name,
@@ -119,6 +121,12 @@ def compare_sides(a: Side, b: Side, *, progress: Progress = unwatched) -> Compar
         stays=stays,
         fits_again=tuple(name for name in stays if name not in before),
         findings=(*a.build.warnings, *b.findings),
+        on_hold=tuple(name for name in stays if pieces[name].held_under is not None),
+        spare=tuple(
+            piece.name
+            for piece in pieces.values()
+            if piece.name not in listed and piece.state is not PieceState.SCRAPPED
+        ),
     )
 
 

@@ -21,7 +21,7 @@ from ledger.model.snapshot import Iteration, Snapshot
 from ledger.operations.compare_iterations import Side, build_under, compare_sides, side_of_folder
 from ledger.operations.open_build import Build
 from ledger.operations.outline_plan import FromAbove, outline_plan
-from ledger.operations.plan_to_adopt import read_plan_to_adopt
+from ledger.operations.plan_to_adopt import PlanToAdopt, read_plan_to_adopt
 from ledger.operations.reckon_fuel import reckon_build
 from ledger.operations.stored_plan import plan_key
 from ledger.units import Display
@@ -67,12 +67,16 @@ class Wanted:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class IterationsView:
-    """The two compared, None where there is only one; all of them in order; both plans from above."""
+    """The two compared, None where there is only one; all of them in order; both plans from above.
+
+    `name_taken` is for a folder: whether an iteration of the name in its plan.toml is in the book.
+    """
 
     display: Display
     comparison: Comparison | None
     history: tuple[Moment, ...]
     plans: tuple[FromAbove, FromAbove] | None = None
+    name_taken: bool = False
 
 
 def names_of(snapshot: Snapshot) -> tuple[str, ...]:
@@ -89,7 +93,10 @@ def look_at_iterations(build: Build, wanted: Wanted, progress: Progress = unwatc
         KeyError: an iteration that the book does not have.
         Stopped: `progress` was told to end the work.
     """
-    sides = _sides(build, wanted, progress)
+    previewed = None
+    if wanted.folder is not None:
+        previewed = read_plan_to_adopt(wanted.folder, build.cache, progress=progress)
+    sides = _sides(build, wanted, previewed)
     comparison = None if sides is None else compare_sides(*sides, progress=progress)
     if sides is not None and comparison is not None and comparison.fuel is not None:
         _keep(sides, comparison)
@@ -101,6 +108,7 @@ def look_at_iterations(build: Build, wanted: Wanted, progress: Progress = unwatc
         comparison=comparison,
         history=look_back(build, progress),
         plans=plans,
+        name_taken=previewed is not None and _has(build.snapshot, previewed.plan.name),
     )
 
 
@@ -164,13 +172,16 @@ def _act(entry: Logged) -> Adopt:
     return entry.act
 
 
-def _sides(build: Build, wanted: Wanted, progress: Progress) -> tuple[Side, Side] | None:
+def _has(snapshot: Snapshot, name: str) -> bool:
+    return name.casefold() in {other.casefold() for other in names_of(snapshot)}
+
+
+def _sides(build: Build, wanted: Wanted, previewed: PlanToAdopt | None) -> tuple[Side, Side] | None:
     by_name = {iteration.name: iteration for iteration in build.snapshot.iterations}
     first = by_name[wanted.a]
     a = Side(build=build_under(build, first), name=first.name, adopted=True)
-    if wanted.folder is not None:
-        read = read_plan_to_adopt(wanted.folder, build.cache, progress=progress)
-        return a, side_of_folder(build, read, str(wanted.folder))
+    if previewed is not None:
+        return a, side_of_folder(build, previewed, str(wanted.folder))
     if wanted.b is None or wanted.b == wanted.a:
         return None
     second = by_name[wanted.b]

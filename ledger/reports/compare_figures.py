@@ -47,6 +47,8 @@ def compare_figures(comparison: Comparison) -> Figures:
         "no_longer_fits": [unfit_figures(piece) for piece in comparison.no_longer_fits],
         "stays": list(comparison.stays),
         "fits_again": list(comparison.fits_again),
+        "on_hold": list(comparison.on_hold),
+        "spare": list(comparison.spare),
     }
 
 

@@ -15,11 +15,13 @@ from ledger.model.comparison import (
     TankChange,
     UnfitPiece,
 )
+from ledger.reports.fuel_lines import EACH_ITS_OWN
 from ledger.reports.plain import aligned, clean, how_many
 from ledger.units import Dimension, Display, Rounding, from_si, show, shown_number, shown_unit
 
 CAUTION = "COMPUTED, for planning: a flow test decides; not approved weight and balance"
 _PART_PLACES = 3
+_SAME_M3 = 1e-9
 _AXES = ("CG FS", "CG BL", "CG WL")
 _INERTIAS = (
     ("Ixx", 0, 0), ("Iyy", 1, 1), ("Izz", 2, 2), ("Ixy", 0, 1), ("Ixz", 0, 2), ("Iyz", 1, 2),
@@ -33,10 +35,13 @@ def compare_lines(comparison: Comparison, book: str) -> tuple[str, ...]:
     """Everything `compare` prints, line by line; `book` is written into the commands it names."""
     display = comparison.plan_b.display
     fuel = comparison.fuel
-    tanks = () if fuel is None else (fuel.whole, *(fuel.tanks if len(fuel.tanks) > 1 else ()))
+    several = fuel is not None and len(fuel.tanks) > 1
+    whole = () if fuel is None else _tank_lines(fuel.whole, comparison, display, together=several)
+    tanks = fuel.tanks if fuel is not None and several else ()
     sections: list[tuple[str, ...]] = [
         (headline(comparison), CAUTION, *_preview_lines(comparison)),
         _figure_lines(comparison, display),
+        *([whole] if whole else []),
         *(_tank_lines(tank, comparison, display) for tank in tanks),
         _part_lines(comparison, display),
         _unfit_lines(comparison, book, display),
@@ -171,14 +176,17 @@ def _worth_line(comparison: Comparison, display: Display) -> str | None:
     return clean(f"{verb} {amount} of {grade} at {show(density, Dimension.DENSITY, display)}")
 
 
-def _tank_lines(tank: TankChange, comparison: Comparison, display: Display) -> tuple[str, ...]:
+def _tank_lines(
+    tank: TankChange, comparison: Comparison, display: Display, *, together: bool = False
+) -> tuple[str, ...]:
+    words = f"COMPUTED, {EACH_ITS_OWN}" if together and _each_at_its_own(tank) else "COMPUTED"
     unit = shown_unit(Dimension.VOLUME, display)
     up, down = Rounding.UP, Rounding.DOWN
     rows = [
         _row(f"gross {unit}", tank.gross_m3, Dimension.VOLUME, display),
         _row(f"capacity {unit}", tank.capacity_m3, Dimension.VOLUME, display),
         _row(f"caught air {unit}", tank.caught_air_m3, Dimension.VOLUME, display, rounding=up),
-        _row(f"usable {unit}", tank.usable_m3, Dimension.VOLUME, display, "COMPUTED", rounding=down),
+        _row(f"usable {unit}", tank.usable_m3, Dimension.VOLUME, display, words, rounding=down),
     ]
     heads = ("", comparison.a, comparison.b, "change", "")
     remark = "" if tank.remark is None else f"  {tank.remark}"
@@ -187,6 +195,18 @@ def _tank_lines(tank: TankChange, comparison: Comparison, display: Display) -> t
         *aligned(heads, rows, right=(1, 2, 3)),
         *_attitude_lines(tank.attitudes, comparison, display),
     )
+
+
+def _each_at_its_own(whole: TankChange) -> bool:
+    """Whether less is usable of all tanks than at any one attitude, under either plan."""
+    flown = [attitude.usable_m3 for attitude in whole.attitudes if attitude.flight]
+    for usable_m3, at_m3 in (
+        (whole.usable_m3.a, [one.a for one in flown if one.a is not None]),
+        (whole.usable_m3.b, [one.b for one in flown if one.b is not None]),
+    ):
+        if usable_m3 is not None and at_m3 and usable_m3 < min(at_m3) - _SAME_M3:
+            return True
+    return False
 
 
 def _attitude_lines(
@@ -264,11 +284,19 @@ def _unfit_lines(comparison: Comparison, book: str, display: Display) -> tuple[s
     stays = f"{how_many(len(comparison.stays), 'built piece')} stay{'s' * (len(comparison.stays) == 1)}"
     if again:
         stays += f", {len(again)} of them did not fit {comparison.a}: {', '.join(again)}"
+    if comparison.on_hold:
+        stays += f", {len(comparison.on_hold)} of them ON HOLD: {', '.join(comparison.on_hold)}"
+    spare = ""
+    if comparison.spare:
+        spare = f"; {len(comparison.spare)} spare or kept for stock: {', '.join(comparison.spare)}"
     if not unfit:
-        return (
-            clean(f"BUILT  {stays}, every one that counts" if comparison.stays else "BUILT  nothing yet"),
+        none = not comparison.stays and not spare
+        return (clean("BUILT  nothing yet" if none else f"BUILT  {stays}, every one that counts{spare}"),)
+    lines = [
+        clean(
+            f"BUILT  {stays}{spare}; {how_many(len(unfit), 'piece')} no longer fit{'s' * (len(unfit) == 1)}"
         )
-    lines = [clean(f"BUILT  {stays}; {how_many(len(unfit), 'piece')} no longer fit{'s' * (len(unfit) == 1)}")]
+    ]
     when = "as things stand" if comparison.adopted else "once the plan is adopted"
     lines.append(f"what can be done about each, {when}; after one is made, compare again")
     for piece in unfit:

@@ -51,6 +51,8 @@ def compared() -> Schema:
         no_longer_fits=each(unfit_piece()),
         stays=each(TEXT),
         fits_again=each(TEXT),
+        on_hold=each(TEXT),
+        spare=each(TEXT),
     )
 
 

@@ -3,13 +3,16 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 
-from ledger.fuel.report import AttitudeFuel, DrainedCell, FuelReport, TankFuel
+from ledger.fuel.report import AttitudeFuel, DrainedCell, FeedFuel, FuelReport, TankFuel
+from ledger.model.tanks import Join
 from ledger.model.vectors import Vector
 from ledger.reports.plain import aligned, clean
 from ledger.units import Dimension, Display, Rounding, show, shown_number, shown_unit
 
 CAUTION = "COMPUTED: a flow test decides"
+EACH_ITS_OWN = "each tank at its own worst"
 _ROWS_SHOWN = 10
 _NAMES_SHOWN = 3
 _NO_HOLE = ("no way out", "no air", "dry")
@@ -28,12 +31,19 @@ def fuel_lines(
         for attitude in tank.attitudes if tables else ():
             lines += ["", *_table_lines(tank.tank, attitude, display)]
     for feed in report.feeds:
-        usable = usable_text(feed.usable_m3, display)
-        lines += [
-            "",
-            clean(f"FEED {feed.feed}  joined by {feed.join}  usable {usable}{_at(feed.governing_attitude)}"),
-        ]
+        usable = f"usable {usable_text(feed.usable_m3, display)}{_worst_of_feed(feed, report.tanks)}"
+        lines += ["", clean(f"FEED {feed.feed}  joined by {feed.join}  {usable}")]
     return tuple(lines)
+
+
+def _worst_of_feed(feed: FeedFuel, tanks: Sequence[TankFuel]) -> str:
+    """Where a feed has its usable: at one attitude, or each tank at its own."""
+    known = [tank.usable_m3 for tank in tanks if tank.usable_m3 is not None]
+    own = list(dict.fromkeys(tank.governing_attitude for tank in tanks if tank.governing_attitude))
+    adds_up = feed.usable_m3 is not None and math.isclose(feed.usable_m3, math.fsum(known), abs_tol=1e-9)
+    if feed.join == Join.SELECT and adds_up and len(known) == len(tanks) and len(own) > 1:
+        return f"  {EACH_ITS_OWN}: {', '.join(own)}"
+    return _at(feed.governing_attitude)
 
 
 def density_line(density_kg_m3: float | None, temperature_k: float, display: Display) -> str:

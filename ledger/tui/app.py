@@ -20,7 +20,6 @@ from ledger.tui.going import Going
 from ledger.tui.list_screen import ListScreen, actions_listed, findings_listed, help_listed
 from ledger.tui.listening import ListeningScreen
 from ledger.tui.lock_screen import LockScreen
-from ledger.tui.scan import ScanLine
 from ledger.tui.themes import DRAWN, PLAIN, THEMES, is_plain
 from ledger.tui.tour import Act, act_now, leads, line_of, words_on
 from ledger.tui.wall_clock import WallClock, read_told_time
@@ -52,7 +51,6 @@ class LedgerApp(Going, inherit_bindings=False):
             self.register_theme(theme)
         self.theme = "none" if self.no_color else "dark"
         self.book = book
-        self.line = ScanLine()
         self.crew = Crew(by=os.environ.get("WINGLEDGER_BY") or None)
         self.large = False
         self.plain = is_plain() if plain is None else plain

@@ -238,6 +238,7 @@ class BenchWriting(WorkScreen[BenchView]):
             self.desk.hand = self.find(outcome.request.fields.get("piece", "")) or self.desk.hand
         elif kind == "weigh":
             self.desk.hand = None
+        self.desk.open_next()
 
     def _come_back(self, mix: LoggedEntry) -> None:
         out = any(finding.code == RATIO_OUT for finding in mix.findings)

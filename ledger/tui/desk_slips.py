@@ -73,6 +73,7 @@ class SlipsOnDesk:
         self.come_back_to: str | None = None
         self._stamped_by_press = False
         self._came_back = False
+        self._next: tuple[EntryToMake, ...] = ()
         self.own: set[int] = set()
         self.seen_seq: int | None = None
         self._without: tuple[Stock, int, Stock] | None = None
@@ -139,6 +140,7 @@ class SlipsOnDesk:
         """What stood in the slip of this name, or was read off a scale without one, is in the book."""
         self.shop.settle_said()
         self.own.update(seqs)
+        self._next = self.slip.then if self.slip is not None and self.slip.name == name else ()
         self.slip = None
         self.reading = None
         if name is not None:
@@ -177,16 +179,36 @@ class SlipsOnDesk:
 
     def open_entries(self, entries: Sequence[EntryToMake]) -> None:
         """Slips with what these entries say in them: the first on the desk, the others as drafts."""
-        for entry in entries[:0:-1]:
-            if self._open_given(entry):
-                self.put_away(though_untouched=True)
-        if not entries or not self._open_given(entries[0]):
+        for place in range(len(entries) - 1, 0, -1):
+            if self._open_given(entries[place], of_many=True):
+                self._follow_with(entries[place + 1 :])
+                self.put_away()
+        if not entries or not self._open_given(entries[0], of_many=len(entries) > 1):
             return
+        self._follow_with(entries[1:])
         waits = ", then ".join(entry.kind for entry in entries[1:])
         if waits:
             self.shop.remind("LOOK", f"after {entries[0].kind}: {waits}; each waits as a draft")
 
-    def _open_given(self, entry: EntryToMake) -> bool:
+    def _follow_with(self, entries: Sequence[EntryToMake]) -> None:
+        if self.slip is not None:
+            self.slip = replace(self.slip, then=tuple(entries))
+
+    def open_next(self) -> None:
+        """After a slip was logged: the draft that was prepared to follow it."""
+        entries, self._next = self._next, ()
+        if self.slip is not None or not entries:
+            return
+        # By what stands in it: a draft made to give way since has another name.
+        wanted = set(entries[0].fields)
+        for name, slip in self.drafts.items():
+            if slip.kind == entries[0].kind and wanted <= set(slip.values.items()):
+                self.slip = self.drafts.pop(name).at_first_open()
+                self.keep()
+                self.shop.remind("LOOK", f"{slip.kind} comes next; Esc keeps it for later")
+                return
+
+    def _open_given(self, entry: EntryToMake, *, of_many: bool) -> bool:
         stock = self.shop.stock
         if stock is None or not self._may_open(""):
             return False
@@ -200,6 +222,9 @@ class SlipsOnDesk:
         values = {**proposal.values, **given}
         notes = {word: text for word, text in proposal.notes.items() if word not in given}
         self.slip = new_slip(entry.kind, self.shop.units, Proposal(values=values, notes=notes))
+        if of_many:
+            # Half of what belongs together must not be lost for want of a keystroke.
+            self.slip = replace(self.slip, original={})
         self.reading = None
         self.keep()
         return True

@@ -14,6 +14,7 @@ from ledger.tui.bench_screen import BenchScreen
 from ledger.tui.fuel_screen import FuelScreen
 from ledger.tui.iterations_screen import IterationsScreen
 from ledger.tui.list_screen import ListScreen
+from ledger.tui.scan import ScanLine
 from ledger.tui.trace_screen import TraceScreen
 from ledger.tui.weights_screen import WeightsScreen
 from ledger.tui.work_screen import WorkScreen
@@ -33,6 +34,7 @@ class Going(App[None], inherit_bindings=False):
 
     def __init__(self) -> None:
         super().__init__()
+        self.line = ScanLine()
         self.toured: set[str] = set()
 
     @property
@@ -56,6 +58,7 @@ class Going(App[None], inherit_bindings=False):
             await self.pop_screen()
         self.toured.add(word)
         if self.current_mode != word:
+            self.line.forget_typed()
             await self.switch_mode(word)
 
     async def do_go_bench(self) -> None:

@@ -8,7 +8,7 @@ from datetime import datetime
 from pathlib import Path
 from typing import ClassVar
 
-from ledger.errors import FindingsError
+from ledger.errors import FindingsError, Severity
 from ledger.model.plan import Plan
 from ledger.model.progress import Progress
 from ledger.operations.adopt_plan import Adopted
@@ -23,8 +23,10 @@ from ledger.operations.open_build import Build
 from ledger.reports.plain import clean, how_many, shortened
 from ledger.tui.actions import Action
 from ledger.tui.iterations_actions import ATTITUDES, FIGURES, HISTORY, ITERATION_ACTIONS, PARTS, UNFIT
+from ledger.tui.iterations_typed import about_wanted, path_typed, same_words
 from ledger.tui.list_screen import ListScreen, findings_listed
 from ledger.tui.long_work import Job
+from ledger.tui.messages import Message
 from ledger.tui.work_screen import WorkScreen, first_words
 
 _NAME = 12
@@ -49,6 +51,28 @@ class IterationsAsking(WorkScreen[Build]):
     def draw_all(self) -> None:
         """Every area anew."""
 
+    # -- what is said
+
+    def say(self, sign: str, text: str) -> None:
+        """A line that stands until something else is asked for: beside its answer it would mislead."""
+        self.messages = self.messages.with_one(Message(sign=sign, text=text, passing=True))
+        self.draw_messages()
+
+    def settle_said(self) -> None:
+        """Something else is asked for."""
+        self.messages = self.messages.settled()
+        self.draw_messages()
+
+    def hear_line(self, text: str) -> None:
+        """Enter by hand."""
+        self.settle_said()
+        super().hear_line(text)
+
+    def hear_scan(self, text: str) -> None:
+        """A scan."""
+        self.settle_said()
+        super().hear_scan(text)
+
     # -- what is compared
 
     @property
@@ -67,6 +91,7 @@ class IterationsAsking(WorkScreen[Build]):
 
     def want(self, wanted: Wanted | None) -> None:
         """Compare these from now on; None is the current iteration with the one before."""
+        self.settle_said()
         self.wanted = wanted
         self.asked = None
         self._compare()
@@ -98,7 +123,7 @@ class IterationsAsking(WorkScreen[Build]):
 
         self.long.begin(
             Job(
-                about=_about(wanted),
+                about=about_wanted(wanted),
                 do=compare,
                 then=lambda found: self._took(key, found),
                 undone=self._stand,
@@ -123,7 +148,8 @@ class IterationsAsking(WorkScreen[Build]):
         if comparison is not None and comparison.findings:
             first = comparison.findings[0]
             more = len(comparison.findings) - 1
-            self.say("LOOK", f"{first.where} {first.what}; {first.do}{f' (and {more} more)' if more else ''}")
+            sign = "STOP" if first.severity is Severity.STOP else "LOOK"
+            self.say(sign, f"{first.where} {first.what}; {first.do}{f' (and {more} more)' if more else ''}")
         if self.adopting == key[1].folder and key[1].folder is not None:
             self._ask_to_adopt(key[1].folder)
         self.draw_all()
@@ -146,7 +172,9 @@ class IterationsAsking(WorkScreen[Build]):
             self.refuse("the book is still being read: type it again")
             return
         if not folder.is_dir():
-            self.refuse(f"{folder}: there is no such folder; give the path of a folder with plan.toml in it")
+            self.refuse(
+                f"{folder}: there is no such folder; give the path of a folder with plan.toml in it", "STOP"
+            )
             return
         self.adopting = folder if adopting else None
         self.wanted = Wanted(a=self.names[-1], b=None, folder=folder)
@@ -156,12 +184,15 @@ class IterationsAsking(WorkScreen[Build]):
 
     def _ask_to_adopt(self, folder: Path) -> None:
         self.adopting = None
-        comparison = None if self.compared is None else self.compared.comparison
-        if comparison is None:
+        found = self.compared
+        if found is None or found.comparison is None:
             return
-        if comparison.b == str(folder):
-            self.refuse("an iteration of this plan's name is in the book already: give the plan another name")
+        if found.name_taken:
+            self.refuse(
+                "an iteration of this plan's name is in the book already: give the plan another name", "STOP"
+            )
             return
+        comparison = found.comparison
         self.asked = (comparison.plan_b, folder)
         many = len(comparison.no_longer_fits)
         cost = f"{how_many(many, 'built piece')} will no longer fit" if many else "all that is built fits"
@@ -210,7 +241,7 @@ class IterationsAsking(WorkScreen[Build]):
         rest = rest.strip()
         match word.casefold():
             case "preview" | "adopt" if rest:
-                self.begin_preview(_path(rest), adopting=word.casefold() == "adopt")
+                self.begin_preview(path_typed(rest), adopting=word.casefold() == "adopt")
                 return True
             case "loft" if rest:
                 self._begin_loft(rest)
@@ -219,7 +250,7 @@ class IterationsAsking(WorkScreen[Build]):
 
     def field_takes(self, text: str, *, scanned: bool) -> bool:
         """The name of the plan that is to be adopted, typed: never a scan, never Enter alone."""
-        if self.asked is None or scanned or not _same(text, self.asked[0].name):
+        if self.asked is None or scanned or not same_words(text, self.asked[0].name):
             return False
         self._adopt(*self.asked)
         return True
@@ -232,6 +263,7 @@ class IterationsAsking(WorkScreen[Build]):
 
     def do_leave_slip(self) -> None:
         """Esc: not adopted; else as everywhere."""
+        self.settle_said()
         if self.asked is not None:
             self.asked = None
             self.say("", "not adopted; the preview stands until another comparison is asked for")
@@ -250,7 +282,8 @@ class IterationsAsking(WorkScreen[Build]):
             self._want_one(one)
         elif len(words) == 2 and (words[0].casefold() in names or words[1].casefold() in names):
             wrong = words[0] if words[0].casefold() not in names else words[1]
-            self.refuse(f"the book has no iteration {wrong}; it has {', '.join(map(clean, self.names))}")
+            known = ", ".join(map(clean, self.names))
+            self.refuse(f"the book has no iteration {wrong}; it has {known}", "STOP")
         else:
             return False
         return True
@@ -265,7 +298,7 @@ class IterationsAsking(WorkScreen[Build]):
 
     def _want_two(self, a: str, b: str) -> None:
         if a == b:
-            self.refuse(f"{clean(a)} and {clean(b)} are the same iteration: type two that differ")
+            self.refuse(f"{clean(a)} and {clean(b)} are the same iteration: type two that differ", "STOP")
         else:
             self.want(Wanted(a=a, b=b))
 
@@ -320,7 +353,8 @@ class IterationsAsking(WorkScreen[Build]):
         except ValueError:
             words = []
         if len(words) != 2:
-            self.refuse("write two paths, the layout file and the folder to make: loft wing.toml plans/r4")
+            wanted = "write two paths, the layout file and the folder to make: loft wing.toml plans/r4"
+            self.refuse(wanted, "STOP")
             return
         layout, out = (Path(word).expanduser() for word in words)
 
@@ -356,21 +390,3 @@ class IterationsAsking(WorkScreen[Build]):
         # Whoever has gone on to another screen meanwhile is not torn away from it.
         if len(error.findings) > 1 and self.is_current:
             self.app.push_screen(ListScreen("REFUSED", findings_listed(error.findings)))
-
-
-def _about(wanted: Wanted) -> str:
-    newer = wanted.folder.name if wanted.folder is not None else wanted.b
-    return "the history" if newer is None else f"comparing {clean(newer)} with {clean(wanted.a)}"
-
-
-def _path(text: str) -> Path:
-    """A path as typed, with or without quotes."""
-    try:
-        words = shlex.split(text)
-    except ValueError:
-        words = []
-    return Path(words[0] if len(words) == 1 else text).expanduser()
-
-
-def _same(one: str, other: str) -> bool:
-    return " ".join(one.split()).casefold() == " ".join(other.split()).casefold()

@@ -84,13 +84,13 @@ def figure_rows(compared: Comparison, display: Display) -> tuple[FigureRow, ...]
     """Every figure of the two, what matters most first."""
     mass, place = compared.mass, compared.mass.cg_m
     kg, whole_kg = shown_unit(Dimension.MASS, display), mass.now_kg.a
-    rows = [_figure(f"finished {kg}", mass.now_kg, Dimension.MASS, display, of=whole_kg)]
+    rows = [_figure(f"now {kg}", mass.now_kg, Dimension.MASS, display, of=whole_kg)]
     if compared.no_longer_fits:
-        rows.append(_figure(f"  unfit remade {kg}", mass.remade_kg, Dimension.MASS, display, of=whole_kg))
+        rows.append(_figure(f"remade {kg}", mass.remade_kg, Dimension.MASS, display, of=whole_kg))
     fs = Pair(a=None if place.a is None else place.a[0], b=None if place.b is None else place.b[0])
     rows.append(_figure(f"CG FS {_mm(display)}", fs, Dimension.LENGTH, display))
     rows += _fuel_rows(compared, display)
-    rows.append(_figure(f"designed {kg}", mass.estimated_kg, Dimension.MASS, display, of=whole_kg))
+    rows.append(_figure(f"estimated {kg}", mass.estimated_kg, Dimension.MASS, display, of=whole_kg))
     return (*rows, *_inertia(compared))
 
 

@@ -69,8 +69,8 @@ def chart_text(moments: Sequence[Moment], display: Display, room: Room) -> Text:
             if row is not None:
                 there = canvas[row][column]
                 canvas[row][column] = sign if there in (" ", sign) else BOTH
-    left = _labels(masses, Dimension.MASS, display, down)
-    right = _labels(fuels, Dimension.VOLUME, display, down)
+    left = _labels([_mass(value, display) for value in masses], masses, down)
+    right = _labels([_usable(value, display) for value in fuels], fuels, down)
     for row in range(down):
         line = Text(f"{left[row]:>{_LABEL}}{room.lines.v}")
         for sign in canvas[row]:
@@ -83,14 +83,18 @@ def chart_text(moments: Sequence[Moment], display: Display, room: Room) -> Text:
 
 
 def _figures(one: Moment, display: Display) -> str:
-    def mass(value: float | None) -> str:
-        return "-" if value is None else shown_number(value, Dimension.MASS, display)
+    masses = [_mass(value, display) for value in (one.estimated_kg, one.best_kg, one.forecast_kg)]
+    return "".join(f"{text:>{_COLUMN}}" for text in (*masses, _usable(one.usable_m3, display)))
 
-    usable = "-"
-    if one.usable_m3 is not None:
-        usable = shown_number(one.usable_m3, Dimension.VOLUME, display, rounding=Rounding.DOWN)
-    told = (mass(one.estimated_kg), mass(one.best_kg), mass(one.forecast_kg), usable)
-    return "".join(f"{text:>{_COLUMN}}" for text in told)
+
+def _mass(value: float | None, display: Display) -> str:
+    return "-" if value is None else shown_number(value, Dimension.MASS, display)
+
+
+def _usable(value: float | None, display: Display) -> str:
+    if value is None:
+        return "-"
+    return shown_number(value, Dimension.VOLUME, display, rounding=Rounding.DOWN)
 
 
 def _places(moments: Sequence[Moment], across: int) -> list[int]:
@@ -122,12 +126,13 @@ def _rows(values: Sequence[float | None], down: int) -> list[int | None]:
     return [None if value is None else round((down - 1) * (high - value) / (high - low)) for value in values]
 
 
-def _labels(values: Sequence[float | None], dimension: Dimension, display: Display, down: int) -> list[str]:
-    known = [value for value in values if value is not None]
+def _labels(shown: Sequence[str], values: Sequence[float | None], down: int) -> list[str]:
+    """The most and the least of a chart's values, as they are shown in the rows beside it."""
+    known = sorted((value, text) for value, text in zip(values, shown, strict=True) if value is not None)
     labels = [""] * down
     if not known:
         return labels
-    top, bottom = shown_number(max(known), dimension, display), shown_number(min(known), dimension, display)
+    (_, bottom), (_, top) = known[0], known[-1]
     if top == bottom:
         labels[(down - 1) // 2] = top
     else:

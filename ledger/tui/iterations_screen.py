@@ -8,6 +8,7 @@ from textual.containers import Horizontal, Vertical
 
 from ledger.model.comparison import Comparison, UnfitPiece
 from ledger.operations.find_thing import FoundThing
+from ledger.operations.look_at_iterations import IterationsView
 from ledger.tui.area import Area
 from ledger.tui.bench_drawing import filled, rule
 from ledger.tui.iterations_actions import ATTITUDES, FIGURES, HISTORY, PARTS, UNFIT
@@ -24,6 +25,8 @@ from ledger.tui.iterations_figures import (
 )
 from ledger.tui.iterations_history import chart_text, history_text, moment_words
 from ledger.tui.iterations_plans import attitude_words, attitudes_text, plan_from_above_text, plans_scale
+from ledger.tui.list_screen import ListScreen
+from ledger.tui.messages import fits
 from ledger.tui.room import Room
 
 # Rows of the body below the headline and its rule; the list of parts takes what is left.
@@ -255,21 +258,23 @@ class IterationsScreen(IterationsAsking):
         if found is None or at >= self._many(self.area):
             self.say("", "there is no row here")
             return
-        if self.area == HISTORY:
-            self.say("", moment_words(found.history[at]))
-        elif comparison is None:
-            return
-        elif self.area == PARTS:
-            self.say("", part_words(comparison.mass.parts[at], found.display))
-        elif self.area == UNFIT:
-            self.say("LOOK", unfit_words(comparison.no_longer_fits[at], wide=self.wide))
-        elif self.area == ATTITUDES and comparison.fuel is not None:
-            self.say("", attitude_words(comparison.fuel.whole.attitudes[at], found.display))
-        else:
-            row = figure_rows(comparison, found.display)[at]
-            self.say(
-                "", f"{row.name.strip()}: {row.a or '-'} in {comparison.a}, {row.b or '-'} in {comparison.b}"
-            )
+        sign = "LOOK" if self.area == UNFIT else ""
+        words = self._row_words(found, comparison, at)
+        self.say(sign, words)
+        if not fits(words, self.app.size.width):
+            self.app.push_screen(ListScreen(self.area.upper(), ((sign, words),)))
+
+    def _row_words(self, found: IterationsView, comparison: Comparison | None, at: int) -> str:
+        if self.area == HISTORY or comparison is None:
+            return moment_words(found.history[at])
+        if self.area == PARTS:
+            return part_words(comparison.mass.parts[at], found.display)
+        if self.area == UNFIT:
+            return unfit_words(comparison.no_longer_fits[at], wide=self.wide)
+        if self.area == ATTITUDES and comparison.fuel is not None:
+            return attitude_words(comparison.fuel.whole.attitudes[at], found.display)
+        row = figure_rows(comparison, found.display)[at]
+        return f"{row.name.strip()}: {row.a or '-'} in {comparison.a}, {row.b or '-'} in {comparison.b}"
 
     # -- built pieces
 

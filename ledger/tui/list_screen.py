@@ -174,8 +174,9 @@ _HELP: dict[str, Listed] = {
     "trace": (("scan", "a number: what it was made from, what it went into"),),
     "iterations": (
         ("r1 r3", "two names of iterations: what the second changes of the first"),
-        ("finished", "as it stands today under either plan; a built piece keeps its mass until it is remade"),
-        ("unfit remade", "as if every built piece that does not fit were made again as planned"),
+        ("now", "as it stands today under either plan; a built piece keeps its mass until it is remade"),
+        ("remade", "as if every built piece that does not fit were made again as planned"),
+        ("estimated", "design against design, whatever was built"),
         ("* u %", "on the chart: best mass, usable fuel, both at one place"),
         (":", "from above: a cell's outline; lines are webs, ribs and other panels"),
         ("Esc", "ends what is being reckoned, between two steps; nothing is written then"),

@@ -55,6 +55,14 @@ class Messages:
         return Text("\n").join(newest)
 
 
+def fits(text: str, width: int, rows: int = _SHOWN) -> bool:
+    """Whether the message lines have room for all of a text."""
+    rest = " ".join(text.split())
+    for _ in range(rows):
+        _, rest = _broken(rest, max(8, width - 6))
+    return not rest
+
+
 def _rows_of(message: Message, width: int, signs: Signs, most: int) -> list[Text]:
     room = max(8, width - 6)
     words = " ".join(message.text.split())

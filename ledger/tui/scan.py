@@ -83,6 +83,11 @@ class ScanLine:
         self.put(text)
         self._refused = True
 
+    def forget_typed(self) -> None:
+        """Empty the line but for what a reader may be sending at this moment."""
+        self._settled = ""
+        self._refused = False
+
     def paste(self, text: str) -> None:
         """Add pasted text: its first line, as typed, so that pasting never presses Enter."""
         if self._refused:

@@ -8,6 +8,7 @@ from dataclasses import field as with_default
 from datetime import datetime
 
 from ledger.model import acts  # noqa: F401  the kinds are declared when this is imported
+from ledger.model.comparison import EntryToMake
 from ledger.model.declare import KINDS, Field, Kind, Takes
 from ledger.operations.find_thing import FoundThing
 from ledger.operations.keep_draft import Draft, draft_name
@@ -52,7 +53,7 @@ class Slip:
 
     `strayed` is true once a person moved the mark: then a scan must fit the very field it stands on.
     `filled` remembers the order of filling, so that undo empties the last. `original` is what stood in it
-    when it was opened.
+    when it was opened; `then` what belongs after it.
     """
 
     kind: str
@@ -70,6 +71,7 @@ class Slip:
     ply: PlyInHand | None = None
     kept: str = ""
     apart: str = ""
+    then: tuple[EntryToMake, ...] = ()
 
     @property
     def name(self) -> str:

@@ -165,6 +165,8 @@ APART = {
         slot("drain B", "B drain", 0.0, 0.0, 1.5),
     )
 }
+# At the front wall, as high as the fuel on the ground: nose up or down the fuel stands above it.
+LOW_VENT = slot("vent", "A vent", 0.9, 0.9, 0.02)
 FEED = (Feed(name="engine", outlets=("outlet", "outlet B"), join=Join.SELECT),)
 
 # Rule, how grave, the thing it names, a plan that breaks it.
@@ -202,6 +204,7 @@ BROKEN: dict[str, tuple[Severity, tuple[str, ...], Callable[[], Facts]]] = {
         ("attitude",),
         lambda: facts(attitudes=(GROUND, FLIGHTS[0], *FLIGHTS[2:])),
     ),
+    "lost_overboard": (Severity.LOOK, ("tank A",), lambda: facts({**GOOD, "vent": LOW_VENT})),
     "no_drain": (Severity.LOOK, ("tank A",), lambda: facts(without("drain"))),
     "opening_far_from_wall": (Severity.LOOK, ("low",), lambda: facts({**GOOD, "low": STRAY})),
     "outlet_in_no_feed": (Severity.LOOK, ("outlet", "outlet B"), lambda: facts(APART, split=True)),
@@ -285,3 +288,21 @@ def test_the_missing_attitudes_are_named() -> None:
     for words in ("nose up", "nose down", "left wing down"):
         assert words in found.what
     assert "right wing down" not in found.what
+
+
+def test_fuel_lost_overboard_is_told_in_litres_for_each_attitude_above_a_tenth_of_a_litre() -> None:
+    seen = facts({**GOOD, "vent": LOW_VENT})
+    assert seen.fuel is not None
+    (tank,) = seen.fuel.tanks
+    (found,) = findings("lost_overboard", seen)
+    lost = {one.attitude: one.lost_m3 for one in tank.attitudes if one.flight and one.lost_m3}
+    assert lost
+    for name, volume_m3 in lost.items():
+        assert (f" L at {name}" in found.what) == (volume_m3 > 1e-4)
+    for litres, told in ((0.09, 0), (0.11, 1)):
+        attitudes = tuple(replace(one, lost_m3=litres / 1000.0) for one in tank.attitudes)
+        report = replace(seen.fuel, tanks=(replace(tank, attitudes=attitudes),))
+        assert len(findings("lost_overboard", replace(seen, fuel=report))) == told
+    grounded = tuple(replace(one, flight=False) for one in tank.attitudes)
+    report = replace(seen.fuel, tanks=(replace(tank, attitudes=grounded),))
+    assert findings("lost_overboard", replace(seen, fuel=report)) == ()

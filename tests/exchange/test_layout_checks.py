@@ -112,3 +112,15 @@ def test_a_cap_let_into_the_skin_is_weighed_by_its_length(read: Read) -> None:
     with_length = "\n".join(",".join([*row, more]) for row, more in zip(rows, added, strict=True))
     (cap,) = whole(read(let_in, materials__csv=with_length)).caps
     assert cap.let_in is True
+
+
+def test_a_wing_in_the_wrong_unit_is_one_to_look_at_and_no_more(read: Read) -> None:
+    found = read(('length_unit = "mm"', 'length_unit = "m"'), ('"PANEL" = 5.2', '"PANEL" = "5.2 mm"'))
+    assert found.layout is not None
+    (look,) = found.findings
+    assert (look.code, look.severity, look.where.column) == ("unit-doubtful", Severity.LOOK, "length_unit")
+    assert look.what == "a half span of 1500 m: check length_unit"
+    chord = read(("chord = 800", "chord = 15001"))
+    assert [one.what for one in chord.findings] == ["a chord of 15.001 m: check length_unit"]
+    assert read(("chord = 800", "chord = 15000")).findings == ()
+    assert read(("butt_line = 1500", "butt_line = 40000")).findings == ()

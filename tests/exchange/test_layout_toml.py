@@ -54,6 +54,8 @@ def test_sections_and_skins_are_in_metres_and_shares(read: Read) -> None:
     assert (nose.surface, nose.from_chord, nose.to_chord) == (Surface.BOTH, 0.0, 0.1)
     assert (upper.finish, upper.finish_part, nose.finish) == ("PAINT", "FIN.UPR", None)
     assert (layout.corners, layout.mirrored, layout.gap_m) == (32, True, 0.0005)
+    assert layout.gap_place is not None
+    assert (layout.gap_place.row, layout.gap_place.column) == (120, "gap")
     assert layout.planned_kg == (("RIB.L1", 0.04),)
 
 
@@ -151,9 +153,11 @@ def test_a_text_carries_its_own_unit_beside_bare_lengths(read: Read) -> None:
 
 
 def test_inches_are_read_as_such(read: Read) -> None:
-    assert whole(
-        read(('length_unit = "mm"', 'length_unit = "in"'), ('"PANEL" = 5.2', '"PANEL" = "5.2 mm"'))
-    ).sections[0].chord_m == pytest.approx(800 * 0.0254)
+    found = read(('length_unit = "mm"', 'length_unit = "in"'), ('"PANEL" = 5.2', '"PANEL" = "5.2 mm"'))
+    assert found.layout is not None
+    assert found.layout.sections[0].chord_m == pytest.approx(800 * 0.0254)
+    # A wing this large is one to look at.
+    assert [(one.code, one.severity) for one in found.findings] == [("unit-doubtful", Severity.LOOK)]
 
 
 def test_a_laminate_of_whole_plies_is_as_thick_as_its_constituents(read: Read) -> None:

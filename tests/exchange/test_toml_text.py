@@ -99,21 +99,55 @@ def test_every_key_of_any_text_has_the_line_it_was_written_in(tables: list[tuple
 
 
 @pytest.mark.parametrize(
-    ("text", "row", "what"),
+    ("text", "row", "what", "do"),
     [
-        ("a = 1\nb = \n", 2, "invalid value"),
-        ("a = 1\na = 2\n", 2, "cannot overwrite a value"),
-        ("a = 1\n[x\n", 2, "expected ']' at the end of a table declaration"),
-        ('a = "x\n', 1, "illegal character"),
-        ("a = 01\n", 1, "expected newline or end of document after a statement"),
+        ("a = 1\nb = \n", 2, "nothing stands behind b =", "write the value of b, or take the line out"),
+        ("a = 1\na = 2\n", 2, "a is there twice in its table", "keep one of the two"),
+        ("a = [1,\n2]\na = [1,\n2]\n", 4, "there twice in its table", "keep one of the two"),
+        ("b = { a = 1, a = 2 }\n", 1, "a is there twice in its table", "keep one of the two"),
+        ("[a]\nb = 1\n[a]\n", 3, "[a] can be there once", "write [[a]] at each"),
+        ("[a]\n[[a]]\n", 2, "a is there already as one table", "write [[a]] at each of them"),
+        ("a = 1\n[x\n", 2, "the brackets round the name do not match", "write [x]"),
+        ("[[filler]\n", 1, "the brackets round the name do not match", "write [[filler]]"),
+        ("[filler]] # two\n", 1, "the brackets round the name do not match", "write [[filler]]"),
+        ("[rib one]\n", 1, "the name in the brackets has a space in it", "write [rib_one]"),
+        ('a = "x\n', 1, "a text has no quotation mark at its end", 'close it on its line, as in "text"'),
+        ("a = 'x", 1, "a text has no quotation mark at its end", 'close it on its line, as in "text"'),
+        ("chord = .3\n", 1, ".3 is not how", "write chord = 0.3"),
+        ("chord = -.3 # up\n", 1, "-.3 is not how", "write chord = -0.3"),
+        ("chord = [1, .3]\n", 1, ".3 is not how", "write 0.3"),
+        ("chord = { at = .3 }\n", 1, ".3 is not how", "write 0.3"),
+        ("chord = 3.\n", 1, "3. is not how", "write chord = 3.0"),
+        ("chord = 0,3\n", 1, "0,3 is not how", "write chord = 0.3"),
+        ("chord = 12 mm\n", 1, "12 mm is not how", 'write chord = "12 mm"'),
+        ("chord = 1,5 mm\n", 1, "1,5 mm is not how", 'write chord = "1.5 mm"'),
+        ("a = 01\n", 1, "01 is not how", "write a = 1"),
+        ("a = True\n", 1, "True is not how", "write a = true"),
+        ("a = no\n", 1, "no is not how", "write a = false"),
+        ("a = upper\n", 1, "upper is not how", 'write a = "upper"'),
+        ("a = [1,\nb = 2\n", 2, "a list, here or in a line above, lacks", "write a list as [1, 2]"),
+        ("a = [1 2]\n", 1, "a list, here or in a line above, lacks", "write a list as [1, 2]"),
+        ("a = 3 4\n", 1, "what stands behind a is no value", "nothing more in the line"),
+        ("a 3\n", 1, "the line is neither a [table] nor a key", "write key = value"),
+        ('a = "c:\\x"\n', 1, "a \\ in a text has a meaning of its own", "write / or"),
+        ("a = 1 # \x01\n", 1, "a sign that cannot be seen", "delete what cannot be seen"),
     ],
 )
-def test_what_is_no_toml_names_its_line(text: str, row: int, what: str) -> None:
+def test_what_is_no_toml_names_its_line_and_what_to_write(text: str, row: int, what: str, do: str) -> None:
     problems = Problems()
     assert read_toml("plan.toml", text.encode(), problems) is None
     (finding,) = problems.findings()
     assert (finding.where.row, finding.code) == (row, "toml-broken")
     assert what in finding.what
+    assert do in finding.do
+
+
+@given(text=st.text(alphabet="ab12.,=[]{}\"'\\ #\n-", max_size=40))
+def test_whatever_is_no_toml_is_told_without_an_exception_and_with_something_to_do(text: str) -> None:
+    problems = Problems()
+    table = read_toml("plan.toml", text.encode(), problems)
+    assert (table is None) == bool(problems.findings())
+    assert all(one.what and one.do for one in problems.findings())
 
 
 def test_a_value_of_the_wrong_kind_says_how_to_write_it() -> None:

@@ -29,6 +29,7 @@ Floats = NDArray[np.float64]
 TOLD = {
     "cap-too-thick",
     "caps-overlap",
+    "gap-too-wide",
     "hole-larger-than-wall",
     "rib-meets-no-web",
     "rib-outside-wing",

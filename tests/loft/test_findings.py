@@ -8,7 +8,7 @@ from typing import Any
 
 import pytest
 
-from ledger.errors import Severity
+from ledger.errors import Severity, Where
 from ledger.loft.layout import TAIL, Along, Axis, Edge, Height, Layout, Surface, Walls
 from ledger.loft.loft import loft
 from ledger.model.tanks import Outside
@@ -108,6 +108,21 @@ WRONG: dict[str, tuple[str, str, Wrong]] = {
         "rib-outside-wing",
         "rib 3",
         lambda w: w.plain(ribs=ribs_of(w, w.rib("3", 1.99, lean_deg=30.0))),
+    ),
+    "a rib in two rows beyond the tip": (
+        "rib-outside-wing",
+        "rib 4",
+        lambda w: with_rows(w, ribs=(*with_rows(w).ribs, w.rib("4", 2.5, rows=("R", "S")))),
+    ),
+    "a canted rib beyond the tip": (
+        "rib-outside-wing",
+        "rib 3",
+        lambda w: w.plain(ribs=ribs_of(w, w.rib("3", points_m=((1.1, 2.1), (1.7, 2.3))))),
+    ),
+    "a gap wider than the wing is deep": (
+        "gap-too-wide",
+        "bond",
+        lambda w: w.plain(gap_m=0.2, gap_place=Where(thing="bond")),
     ),
     "a rib where a web is not": (
         "rib-meets-no-web",
@@ -337,3 +352,32 @@ def test_every_finding_of_one_kind_of_fault_is_told_at_once(wings: Any) -> None:
         "bay-without-filler",
         "joint-empty",
     }
+
+
+def test_a_rib_outside_the_wing_is_told_once_with_where_the_wing_ends(wings: Any) -> None:
+    beyond = with_rows(wings, ribs=(*with_rows(wings).ribs, wings.rib("4", 2.5, rows=("R", "S"))))
+    (finding,) = loft(beyond)[1]
+    assert finding.what == "rib 4 stands outside the wing, which ends at BL 2000.0 mm"
+    sections = tuple(replace(one, butt_line_m=one.butt_line_m + 0.5) for one in wings.plain().sections)
+    (finding,) = loft(wings.plain(sections=sections, ribs=(wings.rib("1", 0.1), wings.rib("3", 1.9))))[1]
+    assert finding.what == "rib 1 stands outside the wing, which begins at BL 500.0 mm"
+
+
+def test_a_gap_that_leaves_no_panel_is_told_once_and_by_its_size(wings: Any) -> None:
+    (finding,) = loft(wings.plain(gap_m=0.2))[1]
+    assert finding.what.startswith("a gap of 200.0 mm at each edge leaves nothing of RIB.R")
+    assert finding.do.startswith("write a smaller gap")
+    # Without the place of the bond it stands at the first wall.
+    assert finding.where.thing == "rib 1"
+
+
+def test_a_web_that_bends_is_told_every_splice_and_to_name_the_lengths(wings: Any) -> None:
+    noses = ((0.0, 1.0), (0.6, 1.1), (1.0, 1.1), (2.0, 1.4))
+    sections = tuple(wings.section(line, leading_edge_m=nose) for line, nose in noses)
+    web = wings.web("A", 0.2, splices_m=(1.0,), lengths=("IN", "OUT"))
+    bent = wings.plain(sections=sections, webs=(web, wings.web("B", 0.6, splices_m=(0.6, 1.0))))
+    (finding,) = loft(bent)[1]
+    assert finding.what == "web A bends at BL 600.0 mm and a panel is flat"
+    assert finding.do == (
+        'add splices = ["600 mm", "1000 mm"] and a name for each length in lengths, or give it two points'
+    )

@@ -156,6 +156,9 @@ def test_a_piece_begun_under_the_second_is_held_against_the_first_by_its_own_pla
     back = compare_iterations(bench.book, "r2", "r1")
     # Its own first rib counts under r1, so the one of r2 is spare there and nobody is asked about it.
     assert "RIB/1" in back.stays
+    assert (back.on_hold, back.spare) == (("RIB/1",), ("RIB/2",))
+    there = compare_iterations(bench.book, "r1", "r2")
+    assert (there.on_hold, there.spare) == ((), ("RIB/1",))
     assert back.no_longer_fits == ()
     bench.log("scrap", what="RIB/1", why="bent")
     (piece,) = compare_iterations(bench.book, "r2", "r1").no_longer_fits

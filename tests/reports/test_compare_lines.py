@@ -203,3 +203,35 @@ def test_a_preview_and_pieces_that_fit_again_are_told() -> None:
     assert lines[2] == "PREVIEW: r3 is not adopted, nothing was written"
     assert "BUILT  1 built piece stays, 1 of them did not fit r2: RIB/1, every one that counts" in lines
     assert "COMPUTED, for planning" in lines[1]
+
+
+def test_the_usable_of_all_tanks_says_that_each_is_at_its_own_worst() -> None:
+    remark = "COMPUTED, each tank at its own worst"
+    compared = a_comparison()
+    assert compared.fuel is not None
+    one = compared.fuel.whole
+    # All at their worst in one attitude: then it is no sum over several.
+    alike = replace(compared, fuel=FuelChange(whole=one, tanks=(one, one)))
+    assert not any(remark in line for line in compare_lines(alike, "b"))
+    (climb,) = one.attitudes
+    more = replace(climb, usable_m3=Pair(a=0.12, b=0.125))
+    whole = replace(one, attitudes=(more, replace(more, attitude="slip")))
+    lone = replace(compared, fuel=FuelChange(whole=whole, tanks=(one,)))
+    assert not any(remark in line for line in compare_lines(lone, "b"))
+    two = replace(compared, fuel=FuelChange(whole=whole, tanks=(one, one)))
+    assert [remark in line for line in compare_lines(two, "b") if line.startswith("usable L")] == [
+        True,
+        False,
+        False,
+    ]
+
+
+def test_a_piece_on_hold_and_a_spare_one_are_named() -> None:
+    compared = a_comparison(stays=("RIB/1", "PIN/1"), on_hold=("RIB/1",), spare=("RIB/2",))
+    said = (
+        "BUILT  2 built pieces stay, 1 of them ON HOLD: RIB/1, every one that counts;"
+        " 1 spare or kept for stock: RIB/2"
+    )
+    assert any(said in line for line in compare_lines(compared, "b"))
+    none = a_comparison(stays=(), spare=("RIB/2",))
+    assert any("1 spare or kept for stock: RIB/2" in line for line in compare_lines(none, "b"))

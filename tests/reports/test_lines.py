@@ -248,3 +248,18 @@ def test_the_hole_that_keeps_most_back_in_flight_is_named_under_its_tank(fuel: F
     assert hole_line(tank, Display.METRIC) == (said,)
     only_outlet = dataclasses.replace(tank, attitudes=(dataclasses.replace(climb, cells=(worse,)),))
     assert hole_line(only_outlet, Display.METRIC) == ()
+
+
+def test_a_feed_that_is_the_sum_of_tanks_each_at_its_own_worst_says_so(fuel: FuelReport) -> None:
+    (left,), (feed,) = fuel.tanks, fuel.feeds
+    right = dataclasses.replace(left, tank="right", governing_attitude="slip right")
+    both = dataclasses.replace(feed, usable_m3=2 * (left.usable_m3 or 0.0))
+    told = fuel_lines(FuelReport(tanks=(left, right), feeds=(both,)), Display.METRIC)[-1]
+    assert told.endswith("  each tank at its own worst: best climb, slip right")
+    alike = dataclasses.replace(right, governing_attitude="best climb")
+    told = fuel_lines(FuelReport(tanks=(left, alike), feeds=(both,)), Display.METRIC)[-1]
+    assert told.endswith(" at best climb")
+    # Through a tee, and from one tank of the two, there is one worst attitude.
+    for one in (dataclasses.replace(both, join="tee"), feed):
+        told = fuel_lines(FuelReport(tanks=(left, right), feeds=(one,)), Display.METRIC)[-1]
+        assert told.endswith(" at best climb")

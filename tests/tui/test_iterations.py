@@ -36,9 +36,9 @@ async def test_at_80x24_one_look_tells_mass_cg_fuel_and_built_work(
         figures = bench.words("figures")
         assert figures[0].split()[:2] == [">", "FIGURES"]
         # 5.0 + 0.050 + 0.010 today; remade 2.5 + 1.0 + 0.8 + 0.4.
-        assert figures[1].split() == [">finished", "kg", "5.06", "5.06", "0.00", "|"]
-        assert figures[2].split()[:6] == ["unfit", "remade", "kg", "5.06", "4.70", "-0.36"]
-        assert figures[2].split()[6].strip("|") == "<" * 12
+        assert figures[1].split() == [">now", "kg", "5.06", "5.06", "0.00", "|"]
+        assert figures[2].split()[:5] == ["remade", "kg", "5.06", "4.70", "-0.36"]
+        assert figures[2].split()[5].strip("|") == "<" * 12
         assert " ".join(bench.words("parts")[0].split()) == "PARTS 0 out 0 in 2 changed 4 same"
         assert bench.words("parts")[1].split()[0] == "FLOOR"
         assert bench.words("parts")[1].endswith("-300.0 g")
@@ -254,9 +254,9 @@ async def test_older_newer_and_names_choose_the_pair(
         assert await pair(word="latest") == "r3 for r2"
         assert await pair(word="r1") == "r3 for r1"
         assert await pair(word="r1 r9") == "r3 for r1"
-        assert bench.said[-1] == "LOOK the book has no iteration r9; it has r1, r2, r3"
+        assert bench.said[-1] == "STOP the book has no iteration r9; it has r1, r2, r3"
         assert await pair(word="r2 r2") == "r3 for r1"
-        assert bench.said[-1].startswith("LOOK r2 and r2 are the same iteration")
+        assert bench.said[-1].startswith("STOP r2 and r2 are the same iteration")
         assert await pair(word="r7 r9") == "r3 for r1"
         assert bench.said[-1].startswith("LOOK typed r7 r9: no word and no number known here")
 
@@ -371,4 +371,19 @@ async def test_every_action_of_the_screen_is_a_word_with_a_tip_in_the_list(
             assert action.tip in listed[action.word]
         await bench.key("escape")
         await bench.type("help")
-        assert "unfit remade" in dict(bench.app.screen.rows)
+        assert {"now", "remade", "estimated"} <= set(dict(bench.app.screen.rows))
+
+
+async def test_a_row_too_long_for_the_message_lines_is_shown_whole(
+    box_book: Path, at_iterations: OpenBench, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    from ledger.tui import iterations_screen
+
+    words = " ".join(f"reason{number}" for number in range(60))
+    monkeypatch.setattr(iterations_screen, "part_words", lambda *_: words)
+    async with at_iterations(box_book) as bench:
+        await bench.key("tab", "enter")
+        assert isinstance(bench.app.screen, ListScreen)
+        assert " ".join(bench.shown.split()).count("reason") == 60
+        await bench.key("escape")
+        assert not isinstance(bench.app.screen, ListScreen)

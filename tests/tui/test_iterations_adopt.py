@@ -65,6 +65,7 @@ async def test_a_wrong_folder_is_refused_and_what_stood_stands(
         await bench.type(word)
         assert "write the folder after it" in bench.said[-1]
         await bench.type(f"{word} {tmp_path / 'nowhere'}")
+        assert bench.said[-1].startswith("STOP")
         assert "there is no such folder" in bench.said[-1]
         await bench.type(f"{word} {tmp_path}")
         await bench.reckoned()
@@ -185,7 +186,33 @@ async def test_a_plan_whose_name_is_taken_is_not_asked_about(
         await bench.type(f"adopt {tmp_path / 'plan r1'}")
         await bench.reckoned()
         assert bench.app.work_screen.asked is None
-        assert bench.said[-1].startswith("LOOK an iteration of this plan's name is in the book already")
+        assert bench.said[-1].startswith("STOP an iteration of this plan's name is in the book already")
+
+
+@pytest.mark.parametrize("words", [("adopt r3",), ("preview r3", "adopt ./r3"), ("preview r3", "adopt")])
+async def test_a_folder_called_like_its_plan_is_adopted(
+    words: tuple[str, ...],
+    box_book: Path,
+    less_fuel: BoxPlan,
+    at_iterations: OpenBench,
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    folder = less_fuel("r3")
+    folder.rename(folder.parent / "r3")
+    monkeypatch.chdir(folder.parent)
+    newest = newest_entry(box_book)
+    async with at_iterations(box_book) as bench:
+        await bench.type("preview nowhere")
+        for word in words:
+            await bench.type(word)
+            await bench.reckoned()
+        assert "adopt? type r3: _" in bench.shown
+        # What was said of another folder is gone with the good preview.
+        assert "nowhere" not in bench.shown
+        await bench.type("r3")
+        await bench.reckoned()
+        assert newest_entry(box_book)[0] == newest[0] + 1
+        assert "To adopt it" not in bench.shown
 
 
 async def test_nobody_adopts_without_a_badge(

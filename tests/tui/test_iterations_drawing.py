@@ -140,7 +140,7 @@ def test_bars_go_left_for_less_and_right_for_more_the_greatest_share_fills_its_s
     rows = figure_rows(LIGHTER, Display.METRIC)
     drawn = figures_text(LIGHTER, rows, 0, _room(80, 8)).plain.split("\n")
     # 0.62 of 48.8 kg is 1.27 %, 3.1 of the 124 L of the tank 2.5 %: 12 marks, and 12 x 1.27 / 2.5 = 6.1.
-    assert [row.split()[-1] for row in drawn if row.startswith(" finished")] == ["<<<<<<|"]
+    assert [row.split()[-1] for row in drawn if row.startswith(" now")] == ["<<<<<<|"]
     assert [row.rsplit(" ", 1)[1] for row in drawn if row.startswith(" usable")] == [f"|{'>' * 12}"]
 
 
@@ -149,7 +149,7 @@ def test_rows_beyond_the_room_are_counted_and_come_with_the_mark() -> None:
     first = figures_text(LIGHTER, rows, 0, _room(80, 4, here=True)).plain.split("\n")
     last = figures_text(LIGHTER, rows, len(rows) - 1, _room(80, 4, here=True)).plain.split("\n")
     assert first[0].startswith(f"> FIGURES 1-3/{len(rows)}")
-    assert first[1].startswith(">finished")
+    assert first[1].startswith(">now kg")
     assert last[0].startswith(f"> FIGURES {len(rows) - 2}-{len(rows)}/{len(rows)}")
     assert last[3].startswith(">Izz kg m2")
 
@@ -258,3 +258,11 @@ def test_a_plan_with_nothing_flat_says_so() -> None:
     assert plans_scale((nothing, nothing), 40, 9) is None
     rows = plan_from_above_text("r1", nothing, None, _room(40, 4)).plain.split("\n")
     assert rows[1] == "no panel and no cell to draw"
+
+
+def test_usable_is_rounded_down_on_the_chart_as_in_the_rows() -> None:
+    moments = (replace(MOMENTS[0], usable_m3=0.11009), replace(MOMENTS[1], usable_m3=0.12969))
+    chart = chart_text(moments, Display.METRIC, _room(57, 6)).plain.split("\n")[1:]
+    rows = history_text(moments, 0, Display.METRIC, _room(45, 5)).plain.split("\n")
+    assert [rows[2].split()[-1], rows[1].split()[-1]] == ["129.6", "110.0"]
+    assert [chart[0].split("|")[2].strip(), chart[-1].split("|")[2].strip()] == ["129.6", "110.0"]
