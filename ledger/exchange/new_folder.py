@@ -70,13 +70,11 @@ def _give_name(aside: Path, target: Path) -> None:
 
 
 def _move_in(aside: Path, target: Path) -> None:
-    moved: list[Path] = []
-    try:
+    with contextlib.ExitStack() as undoing:
         for each in sorted(aside.iterdir()):
             if os.path.lexists(target / each.name):
                 raise Taken("the folder is not empty")
-            moved.append(each.rename(target / each.name))
-    except BaseException:
-        for each in moved:
-            each.rename(aside / each.name)
-        raise
+            moved = each.rename(target / each.name)
+            undoing.callback(moved.rename, each)
+        # All of it is there, so nothing is put back.
+        undoing.pop_all()

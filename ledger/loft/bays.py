@@ -14,7 +14,8 @@ from ledger.loft.division import Bay, Division
 from ledger.loft.faults import stop
 from ledger.loft.layout import Fill, Layout, Row, TankBays
 from ledger.loft.panels import FlatPanel
-from ledger.loft.walls import RibPlane, WebLine, row_stations
+from ledger.loft.ribs import RibPlane, row_stations
+from ledger.loft.webs import WebLine
 
 
 @dataclass(frozen=True, kw_only=True, eq=False)

@@ -14,8 +14,11 @@ from ledger.loft.bodies import Body, beyond_plane, body_of, prism, runs, united
 from ledger.loft.faults import Tick, stop
 from ledger.loft.layout import Cap, Layout, Row, Surface
 from ledger.loft.lofted import Floats
+from ledger.loft.part_names import rib_part
+from ledger.loft.ribs import RibPlane, row_stations
 from ledger.loft.shell import Shell, layer, void
-from ledger.loft.walls import RibPlane, Slab, WebLength, WebLine, chord_point, reach_of, row_stations
+from ledger.loft.slabs import Slab, chord_point, reach_of
+from ledger.loft.webs import WebLength, WebLine
 
 # What is left of a wall over less than this is a shaving, not a panel.
 _SHAVING_M3 = 1e-9
@@ -66,7 +69,6 @@ class Bay:
 class Division:
     """Everything inside the skins, as bodies that share their faces."""
 
-    void: Body
     caps: tuple[CapSolid, ...]
     ribs: tuple[Wall, ...]
     webs: tuple[Wall, ...]
@@ -106,7 +108,6 @@ def divide(
     slabs = united(length.slab.body for line in lines for length in line.lengths)
     between = {row.name: _row_prism(layout, shell, row, by_name) for row in layout.rows}
     division = Division(
-        void=inside,
         caps=caps,
         ribs=ribs,
         webs=webs,
@@ -190,13 +191,14 @@ def _rib_walls(
         room = rooms[cutting]
         solid = room ^ cutter.body
         if solid.volume() < _SHAVING_M3:
-            faults.append(_no_room(plane.rib.place, f"rib {plane.rib.name} in row {group[0].name}"))
+            name = f"rib {plane.rib.name} in row {group[0].name}"
+            faults.append(_no_room(plane.rib.place, "rib-outside-wing", name))
             continue
         names = tuple(row.name for row in group)
         butt_line = plane.butt_line(_middle(group, lines, plane))
         walls.append(
             Wall(
-                part=f"RIB.{''.join(names)}{plane.rib.name}",
+                part=rib_part("".join(names), plane.rib.name),
                 title=f"{group[0].title} rib at BL {1000.0 * butt_line:.0f} mm",
                 place=plane.rib.place,
                 slab=plane.slab,
@@ -244,7 +246,7 @@ def _web_walls(
         for length in line.lengths:
             solid = room ^ length.slab.body
             if solid.volume() < _SHAVING_M3:
-                faults.append(_no_room(line.web.place, f"web {line.web.name}"))
+                faults.append(_no_room(line.web.place, "web-outside-section", f"web {line.web.name}"))
                 continue
             walls.append(
                 Wall(
@@ -300,13 +302,9 @@ def _meeting(bodies: list[Body]) -> Iterator[tuple[int, int]]:
                 yield one, int(other)
 
 
-def _no_room(place: Where, name: str) -> Finding:
-    return stop(
-        place,
-        "web-outside-section" if name.startswith("web") else "rib-outside-wing",
-        f"{name} finds no room between the skins",
-        "move it to where the section is deep enough",
-    )
+def _no_room(place: Where, code: str, name: str) -> Finding:
+    what = f"{name} finds no room between the skins"
+    return stop(place, code, what, "move it to where the section is deep enough")
 
 
 def _row_prism(layout: Layout, shell: Shell, row: Row, lines: dict[str, WebLine]) -> Body:

@@ -174,10 +174,11 @@ def _open_tanks(laid: Iterable[LaidHole], cells: dict[str, TankBay]) -> Iterator
         tanks = [None if bay is None else cells.get(bay.name) for bay in one.spot.bays]
         wet = [cell for cell in tanks if cell is not None]
         if wet and (len(wet) == 1 or wet[0].tank is not wet[1].tank):
-            where = "a dry bay" if len(wet) == 1 else "another tank"
+            dry = len(wet) == 1
+            code, where = ("hole-opens-tank", "a dry bay") if dry else ("hole-joins-tanks", "another tank")
             yield stop(
                 one.rule.place,
-                "hole-opens-tank",
+                code,
                 f"hole {one.rule.name!r} in wall {one.spot.label} opens bay {wet[0].bay.name} to {where}",
                 f'add leaving_out = ["{one.spot.label}"]',
             )

@@ -17,10 +17,11 @@ from ledger.loft.ledges import caps_in_tanks
 from ledger.loft.lofted import Lofted, LoftedCell, LoftedSkin, Panel
 from ledger.loft.panels import FlatPanel, flat_panels, panel_edges
 from ledger.loft.ports import place_ports
+from ledger.loft.ribs import rib_planes
 from ledger.loft.shell import Shell, build_shell, skin_surface
 from ledger.loft.solids import lofted_solids, taken_by_blocks
 from ledger.loft.strips import let_in_strips
-from ledger.loft.walls import WebLine, rib_planes, web_lines
+from ledger.loft.webs import WebLine, web_lines
 from ledger.model.plan import PartClass
 from ledger.model.progress import Progress, unwatched
 

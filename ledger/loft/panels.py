@@ -15,7 +15,9 @@ from ledger.loft.division import Wall
 from ledger.loft.faults import Tick, millimetres, stop
 from ledger.loft.layout import NOSE, TAIL, Edge
 from ledger.loft.lofted import Floats, PanelEdge
-from ledger.loft.walls import Slab, WebLine, row_stations
+from ledger.loft.ribs import row_stations
+from ledger.loft.slabs import Slab
+from ledger.loft.webs import WebLine
 from ledger.model.plan import Placement
 
 if TYPE_CHECKING:

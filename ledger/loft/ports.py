@@ -13,7 +13,8 @@ from ledger.loft.bodies import mesh_of
 from ledger.loft.faults import stop
 from ledger.loft.layout import NOSE, TAIL, Axis, Layout, Port
 from ledger.loft.lofted import Floats, LoftedOpening
-from ledger.loft.walls import RibPlane, WebLine
+from ledger.loft.ribs import RibPlane
+from ledger.loft.webs import WebLine
 from ledger.model.tanks import Circle, Pipe, Rim
 from ledger.model.vectors import Vector
 

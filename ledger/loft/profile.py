@@ -10,12 +10,10 @@ from functools import lru_cache
 from itertools import pairwise
 
 import numpy as np
-from numpy.typing import NDArray
 
 from ledger.loft.layout import PlanPoint, Section
-from ledger.loft.section import camber_line, half_thickness
-
-Floats = NDArray[np.float64]
+from ledger.loft.lofted import Floats
+from ledger.loft.section import naca_surface
 
 # Points between two corners, by which the area between the curve and its chord is summed.
 _BETWEEN = 64
@@ -39,11 +37,7 @@ def surface_points(section: Section, shares: Floats, *, upper: bool) -> Floats:
     """
     if section.coordinates:
         return _sampled(section.coordinates, upper, shares)
-    thickness = int(section.profile[-2:]) / 100.0
-    camber, slope = camber_line(section.profile, shares)
-    angle = np.arctan(slope)
-    half = half_thickness(thickness, shares) * (1.0 if upper else -1.0)
-    return np.stack((shares - half * np.sin(angle), camber + half * np.cos(angle)), axis=1)
+    return naca_surface(section.profile, shares, upper=upper)
 
 
 def section_ring(section: Section, shares: Floats) -> Floats:

@@ -46,14 +46,21 @@ def naca_section(number: str, points: int) -> Floats:
     """
     if points < 8:
         raise ValueError("a section needs at least 8 points")
-    thickness = _checked(number)
     x = 0.5 * (1.0 - np.cos(np.linspace(0.0, np.pi, points // 2 + 1)))
-    camber, slope = camber_line(number, x)
-    half = half_thickness(thickness, x)
-    angle = np.arctan(slope)
-    upper = np.stack((x - half * np.sin(angle), camber + half * np.cos(angle)), axis=1)
-    lower = np.stack((x + half * np.sin(angle), camber - half * np.cos(angle)), axis=1)
+    upper, lower = (naca_surface(number, x, upper=upper) for upper in (True, False))
     return np.concatenate((upper[::-1], lower[1:]))
+
+
+def naca_surface(number: str, x: Floats, *, upper: bool) -> Floats:
+    """One surface of a section of unit chord, (n, 2): laid off square to the camber line at shares x (n,).
+
+    Raises ValueError for a number of no family.
+    """
+    thickness = _checked(number)
+    camber, slope = camber_line(number, x)
+    half = half_thickness(thickness, x) * (1.0 if upper else -1.0)
+    angle = np.arctan(slope)
+    return np.stack((x - half * np.sin(angle), camber + half * np.cos(angle)), axis=1)
 
 
 def half_thickness(thickness: float, x: Floats) -> Floats:

@@ -26,7 +26,7 @@ if TYPE_CHECKING:
 
 # Between sections that are not alike a strip is wound; so many pieces of span follow it closely.
 _PIECES_WHERE_WOUND = 8
-# Below this share of its strip's width an inner corner is taken for one with its neighbour.
+# Places nearer to one another than this are one.
 _SAME_M = 1e-9
 
 

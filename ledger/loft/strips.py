@@ -11,7 +11,7 @@ from ledger.loft.faults import millimetres, stop
 from ledger.loft.layout import Cap, Layout, Surface
 from ledger.loft.lofted import Strip
 from ledger.loft.shell import Shell
-from ledger.loft.walls import WebLine
+from ledger.loft.webs import WebLine
 
 
 def let_in_strips(

@@ -15,6 +15,7 @@ from ledger.model.comparison import (
     TankChange,
     UnfitPiece,
 )
+from ledger.reports.change_words import cg_words, cost_in_built_work, signed, with_sign
 from ledger.reports.fuel_lines import EACH_ITS_OWN
 from ledger.reports.plain import aligned, clean, how_many
 from ledger.units import Dimension, Display, Rounding, from_si, show, shown_number, shown_unit
@@ -54,17 +55,16 @@ def compare_lines(comparison: Comparison, book: str) -> tuple[str, ...]:
 def headline(comparison: Comparison) -> str:
     """What the second is for the first in one line: mass, CG, usable, and what it costs in built work."""
     display = comparison.plan_b.display
-    unfit = len(comparison.no_longer_fits)
+    unfit, moved = len(comparison.no_longer_fits), comparison.mass.cg_m.change
     gains = [
         "mass not known"
         if comparison.mass.now_kg.change is None
         else f"{signed(comparison.mass.now_kg.change, Dimension.MASS, display)}"
         f" {shown_unit(Dimension.MASS, display)}",
-        _cg_words(comparison, display),
+        "" if moved is None else cg_words(moved, display),
         _usable_words(comparison, display),
     ]
-    pieces = "PIECE NO LONGER FITS" if unfit == 1 else "PIECES NO LONGER FIT"
-    built = "" if not unfit else f"   {unfit} BUILT {pieces}"
+    built = f"   {cost_in_built_work(unfit)}" if unfit else ""
     return clean(f"{comparison.b} for {comparison.a}:  {'  '.join(filter(None, gains))}{built}")
 
 
@@ -85,30 +85,8 @@ def command_words(entry: EntryToMake, book: str) -> str:
     return " ".join(["wingledger enter", shlex.quote(book), entry.kind, *given, *asked])
 
 
-def signed(value: float | None, dimension: Dimension, display: Display, *, places: int | None = None) -> str:
-    """A change with its sign, without its unit; one too small to show has no sign."""
-    if value is None:
-        return "-"
-    return _with_sign(shown_number(value, dimension, display, places=places))
-
-
-def _with_sign(text: str) -> str:
-    return text if text.startswith("-") or float(text) == 0 else f"+{text}"
-
-
 def _plain_zero(text: str) -> str:
     return text.removeprefix("-") if float(text) == 0 else text
-
-
-def _cg_words(comparison: Comparison, display: Display) -> str:
-    moved = comparison.mass.cg_m.change
-    if moved is None:
-        return ""
-    places = 0 if display is Display.METRIC else 2
-    far = shown_number(abs(moved[0]), Dimension.LENGTH, display, places=places)
-    if float(far) == 0:
-        return "CG same"
-    return f"CG {far} {shown_unit(Dimension.LENGTH, display)} {'aft' if moved[0] > 0 else 'forward'}"
 
 
 def _usable_words(comparison: Comparison, display: Display) -> str:
@@ -154,7 +132,7 @@ def _inertia_rows(comparison: Comparison, display: Display) -> list[Row]:
     for number, (name, row, column) in enumerate(_INERTIAS):
         a, b = (None if matrix is None else matrix[row][column] * scale for matrix in (pair.a, pair.b))
         told = ["-" if one is None else _plain_zero(f"{one:.2f}") for one in (a, b)]
-        change = "-" if a is None or b is None else _with_sign(_plain_zero(f"{b - a:.2f}"))
+        change = "-" if a is None or b is None else with_sign(_plain_zero(f"{b - a:.2f}"))
         words = "about the CG" if number == 0 else ""
         rows.append((f"{name} {mass_unit} {length_unit}2", *told, change, words))
     return [(row[0], row[1], row[2], row[3], row[4]) for row in rows]

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from rich.text import Text
 
 from ledger.model.comparison import Comparison, Pair, PartChange, UnfitPiece
+from ledger.reports.change_words import cg_words, cost_in_built_work, signed, with_sign
 from ledger.reports.plain import how_many, shortened, width_of
 from ledger.tui.bench_drawing import filled, title_row
 from ledger.tui.room import Room
@@ -46,10 +47,10 @@ def headline_text(compared: Comparison, display: Display, room: Room) -> Text:
     """kg, mm and litres gained in one line, and how much built work it costs; the cost is never cut."""
     a, b = shortened(compared.a, _LONGEST), shortened(compared.b, _LONGEST)
     lead = "" if compared.adopted else "PREVIEW "
-    told = [f"{b} for {a}:", signed(compared.mass.now_kg.change, Dimension.MASS, display)]
+    told = [f"{b} for {a}:", with_unit(compared.mass.now_kg.change, Dimension.MASS, display)]
     told.append(_cg_words(compared, display))
     if compared.fuel is not None:
-        told.append(f"usable {signed(compared.fuel.whole.usable_m3.change, Dimension.VOLUME, display)}")
+        told.append(f"usable {with_unit(compared.fuel.whole.usable_m3.change, Dimension.VOLUME, display)}")
     many = len(compared.no_longer_fits)
     for gap, last, end in _ways(many):
         if len(lead) + width_of(gap.join(told)) + len(last) + len(end) <= room.width:
@@ -68,16 +69,14 @@ def _ways(many: int) -> tuple[tuple[str, str, str], ...]:
     if not many:
         fits = "ALL THAT IS BUILT FITS"
         return (("  ", "   ", fits), (" ", "  ", fits), (" ", "  ", "ALL FITS"))
-    full = f"{many} BUILT {'PIECE NO LONGER FITS' if many == 1 else 'PIECES NO LONGER FIT'}"
+    full = cost_in_built_work(many)
     short = f"{many} BUILT NO LONGER FIT"
     return (("  ", "   ", full), (" ", "  ", full), (" ", "  ", short), (" ", "  ", f"{many} BUILT UNFIT"))
 
 
-def signed(change: float | None, dimension: Dimension, display: Display, *, places: int | None = None) -> str:
-    """A change with its sign and unit; one too small to show has no sign, one not known is `-`."""
-    if change is None:
-        return "-"
-    return f"{_signed_number(change, dimension, display, places)} {shown_unit(dimension, display)}"
+def with_unit(change: float | None, dimension: Dimension, display: Display) -> str:
+    """A change with its sign and unit; one not known is `-`."""
+    return "-" if change is None else f"{signed(change, dimension, display)} {shown_unit(dimension, display)}"
 
 
 def figure_rows(compared: Comparison, display: Display) -> tuple[FigureRow, ...]:
@@ -201,8 +200,7 @@ def grams_of(part: PartChange, display: Display) -> str:
 def _grams(change: float | None, display: Display) -> str:
     if change is None:
         return "-"
-    text = show_small_mass(change, display)
-    return text if text.startswith("-") or float(text.split()[0]) == 0.0 else f"+{text}"
+    return with_sign(show_small_mass(change, display))
 
 
 def _way(part: PartChange) -> str:
@@ -210,22 +208,12 @@ def _way(part: PartChange) -> str:
 
 
 def _cg_words(compared: Comparison, display: Display) -> str:
-    change = compared.mass.cg_m.change
-    if change is None:
-        return "CG -"
-    places = _length_places(display)
-    size = shown_number(abs(change[0]), Dimension.LENGTH, display, places=places)
-    if float(size) == 0.0:
-        return "CG same"
-    return f"CG {size} {_mm(display)} {'aft' if change[0] > 0.0 else 'fwd'}"
+    moved = compared.mass.cg_m.change
+    return "CG -" if moved is None else cg_words(moved, display, forward="fwd")
 
 
 def _mm(display: Display) -> str:
     return shown_unit(Dimension.LENGTH, display)
-
-
-def _length_places(display: Display) -> int:
-    return 0 if display is Display.METRIC else 2
 
 
 def _figure(
@@ -243,7 +231,7 @@ def _figure(
         name=name,
         a=_number(pair.a, dimension, display, rounding),
         b=_number(pair.b, dimension, display, rounding),
-        change="-" if pair.change is None else _signed_number(pair.change, dimension, display, None),
+        change=signed(pair.change, dimension, display),
         share=share,
     )
 
@@ -252,14 +240,9 @@ def _number(value: float | None, dimension: Dimension, display: Display, roundin
     return "-" if value is None else shown_number(value, dimension, display, rounding=rounding)
 
 
-def _signed_number(change: float, dimension: Dimension, display: Display, places: int | None) -> str:
-    text = shown_number(change, dimension, display, places=places)
-    return text if text.startswith("-") or float(text) == 0.0 else f"+{text}"
-
-
 def _saved(compared: Comparison, display: Display) -> FigureRow:
     saved = compared.saved_as_fuel_m3
-    change = "-" if saved is None else _signed_number(saved, Dimension.VOLUME, display, None)
+    change = signed(saved, Dimension.VOLUME, display)
     return FigureRow(
         name=f"saved, as fuel {shown_unit(Dimension.VOLUME, display)}", a="", b="", change=change
     )

@@ -8,10 +8,11 @@ from rich.text import Text
 
 from ledger.model.comparison import AttitudeChange, Comparison
 from ledger.operations.outline_plan import FromAbove
+from ledger.reports.change_words import signed
 from ledger.reports.plain import shortened
 from ledger.tui.bench_drawing import filled
 from ledger.tui.fuel_section import Scale, draw_wall, scale_for
-from ledger.tui.iterations_figures import in_sight, padded, signed
+from ledger.tui.iterations_figures import in_sight, padded, with_unit
 from ledger.tui.room import Room
 from ledger.units import Dimension, Display, Rounding, shown_number, shown_unit
 
@@ -76,7 +77,7 @@ def attitudes_text(compared: Comparison, at: int, display: Display, room: Room) 
 def attitude_words(one: AttitudeChange, display: Display) -> str:
     """One attitude at length, for the message lines."""
     flown = "flown" if one.flight else "not flown"
-    trapped = signed(one.trapped_m3.change, Dimension.VOLUME, display)
+    trapped = with_unit(one.trapped_m3.change, Dimension.VOLUME, display)
     return f"{one.attitude}, {flown}: trapped {trapped}{'; ' + one.remark if one.remark else ''}"
 
 
@@ -87,8 +88,7 @@ def _both(one: AttitudeChange, display: Display) -> str:
             "-" if value is None else shown_number(value, Dimension.VOLUME, display, rounding=rounding)
             for value in (pair.a, pair.b)
         ]
-        change = signed(pair.change, Dimension.VOLUME, display)
-        told.append(change.split()[0])
+        told.append(signed(pair.change, Dimension.VOLUME, display))
     return "".join(f"{text:>{_FIGURE}}" for text in told)
 
 

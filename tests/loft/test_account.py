@@ -20,8 +20,9 @@ from ledger.loft.layout import NOSE, TAIL, Layout, Surface
 from ledger.loft.loft import loft
 from ledger.loft.lofted import Lofted, Mesh
 from ledger.loft.panels import FlatPanel, flat_panels
+from ledger.loft.ribs import rib_planes
 from ledger.loft.shell import Shell, build_shell, skin_solids, tail_solids
-from ledger.loft.walls import rib_planes, web_lines
+from ledger.loft.webs import web_lines
 
 Floats = NDArray[np.float64]
 

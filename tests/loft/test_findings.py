@@ -206,7 +206,7 @@ WRONG: dict[str, tuple[str, str, Wrong]] = {
         lambda w: w.plain(holes=(w.hole(walls=("R1",)),)),
     ),
     "a hole from tank to tank": (
-        "hole-opens-tank",
+        "hole-joins-tanks",
         "hole drain",
         lambda w: w.plain(
             tanks=(w.tank(("R",), ("1", "2"), "a"), w.tank(("R",), ("2", "3"), "b")),

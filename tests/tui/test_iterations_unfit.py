@@ -16,6 +16,19 @@ AtMinute = Callable[[int], datetime]
 WIDE = (160, 48)
 
 
+async def choose(bench: Any, word: str) -> Any:
+    """Say what is to become of the first built piece that does not fit; the desk with its slip."""
+    await bench.key("tab", "tab")
+    await bench.type(word)
+    await bench.reckoned()
+    return bench.app.bench.desk
+
+
+async def log(bench: Any) -> None:
+    await bench.type("log")
+    await bench.reckoned()
+
+
 async def test_cut_again_opens_its_slips_on_the_bench_the_first_open_the_others_kept(
     box_book: Path, at_iterations: OpenBench
 ) -> None:
@@ -30,8 +43,7 @@ async def test_cut_again_opens_its_slips_on_the_bench_the_first_open_the_others_
         assert (desk.slip.kind, desk.slip.value("what")) == ("scrap", "WALL.OUT/1")
         assert bench.said[-1] == "LOOK after scrap: cut; each waits as a draft"
         await bench.type("moved in r2")
-        await bench.type("log")
-        await bench.reckoned()
+        await log(bench)
         assert (desk.slip.kind, desk.slip.value("pieces")) == ("cut", "WALL.OUT/2")
 
 
@@ -39,18 +51,14 @@ async def test_accept_is_about_the_marked_piece_and_then_it_is_gone_from_the_lis
     box_book: Path, at_iterations: OpenBench
 ) -> None:
     async with at_iterations(box_book) as bench:
-        await bench.key("tab", "tab")
-        await bench.type("accept")
-        await bench.reckoned()
-        slip = bench.app.bench.desk.slip
+        slip = (await choose(bench, "accept")).slip
         assert (slip.kind, slip.value("finding"), slip.value("what")) == (
             "accept",
             "built-to-earlier-iteration",
             "FLOOR/1",
         )
         await bench.type("heavier but sound")
-        await bench.type("log")
-        await bench.reckoned()
+        await log(bench)
         await bench.key("f7")
         await bench.reckoned()
         assert bench.words("unfit")[0].split()[-1] == "1"
@@ -66,8 +74,7 @@ async def test_keep_for_stock_opens_what_puts_the_piece_aside_and_then_the_one_i
         await bench.reckoned()
         slip = bench.app.bench.desk.slip
         assert (slip.kind, slip.value("what"), slip.value("why")) == ("hold", "FLOOR/1", "kept for stock")
-        await bench.type("log")
-        await bench.reckoned()
+        await log(bench)
         slip = bench.app.bench.desk.slip
         assert (slip.kind, slip.value("pieces")) == ("cut", "FLOOR/2")
 
@@ -87,12 +94,8 @@ async def test_a_prepared_slip_put_away_by_escape_is_kept_as_it_was_prepared(
     box_book: Path, at_iterations: OpenBench
 ) -> None:
     async with at_iterations(box_book) as bench:
-        await bench.key("tab", "tab")
-        await bench.type("keep for stock")
-        await bench.reckoned()
-        await bench.type("log")
-        await bench.reckoned()
-        desk = bench.app.bench.desk
+        desk = await choose(bench, "keep for stock")
+        await log(bench)
         prepared = dict(desk.slip.values)
         assert (desk.slip.kind, prepared["pieces"]) == ("cut", "FLOOR/2")
         await bench.key("escape")
@@ -105,15 +108,11 @@ async def test_the_second_slip_comes_also_where_the_first_was_put_away_and_broug
     box_book: Path, at_iterations: OpenBench
 ) -> None:
     async with at_iterations(box_book) as bench:
-        await bench.key("tab", "tab")
-        await bench.type("keep for stock")
-        await bench.reckoned()
+        desk = await choose(bench, "keep for stock")
         await bench.key("escape")
         await bench.type("hold")
-        desk = bench.app.bench.desk
         assert desk.slip.value("what") == "FLOOR/1"
-        await bench.type("log")
-        await bench.reckoned()
+        await log(bench)
         assert (desk.slip.kind, desk.slip.value("pieces")) == ("cut", "FLOOR/2")
 
 
@@ -121,10 +120,7 @@ async def test_a_refused_word_does_not_follow_to_the_next_screen(
     box_book: Path, at_iterations: OpenBench
 ) -> None:
     async with at_iterations(box_book) as bench:
-        await bench.key("tab", "tab")
-        await bench.type("cut again")
-        await bench.reckoned()
-        desk = bench.app.bench.desk
+        desk = await choose(bench, "cut again")
         desk.slip = desk.slip.moved_to("what")
         await bench.type("MYS1")
         assert bench.app.line.text == "MYS1"
