@@ -6,11 +6,14 @@ from typing import Any
 
 import numpy as np
 import pytest
-from shapely import Polygon
+from shapely import LineString, Polygon
 
 from ledger.loft.layout import NOSE, Layout, Surface
 from ledger.loft.loft import loft
 from ledger.loft.lofted import Lofted, Panel
+from ledger.loft.ribs import rib_planes
+from ledger.loft.shell import build_shell
+from ledger.loft.webs import web_lines
 
 
 def lofted(layout: Layout) -> Lofted:
@@ -169,3 +172,26 @@ def test_skin_surfaces_cover_the_outside_once(wings: Any) -> None:
     middles, normals = (a + b + c) / 3.0, np.cross(b - a, c - a)
     # Outward: away from the middle of the section.
     assert (np.einsum("ij,ij->i", normals[:, [0, 2]], middles[:, [0, 2]] - (1.4, 0.015)) > 0.0).all()
+
+
+@pytest.mark.parametrize("butt_line", [0.4, 1.0, 1.6])
+def test_a_canted_rib_meets_a_web_with_a_bend_where_their_lines_cross_in_plan(
+    wings: Any, butt_line: float
+) -> None:
+    sections = (wings.section(0.0), wings.section(1.0), wings.section(2.0, leading_edge_m=1.3))
+    canted = ((1.1, butt_line), (1.8, butt_line + 0.2))
+    layout = wings.bare(
+        sections,
+        webs=(wings.web("A", 0.2, splices_m=(1.0,), lengths=("IN", "OUT")),),
+        rows=(wings.row("R", "A", "tail"),),
+        ribs=(wings.rib("1", points_m=canted),),
+    )
+    shell, _ = build_shell(layout)
+    assert shell is not None
+    (line,), _ = web_lines(layout, shell)
+    (plane,), _ = rib_planes(layout, shell, {"A": line})
+    assert line.points == ((1.2, 0.0), (1.2, 1.0), (1.5, 2.0))
+    (x0, y0), (x1, y1) = canted
+    carried_on = LineString([(x0 - (x1 - x0), y0 - (y1 - y0)), (x1, y1)])
+    met = LineString(line.points).intersection(carried_on)
+    assert plane.crossing(line) == pytest.approx((met.x, met.y), abs=1e-12)
