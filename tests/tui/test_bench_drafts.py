@@ -166,3 +166,16 @@ async def test_the_entry_shown_as_last_is_the_one_f9_opens(
         assert f"No. {seq} 09:20 MT" in bench.shown
         await bench.key("f9")
         assert bench.app.bench.desk.slip.corrects == seq
+
+
+async def test_a_slip_nobody_wrote_in_is_kept_where_another_opens_over_it_and_not_on_escape(
+    small_book: Path, open_bench: OpenBench
+) -> None:
+    async with open_bench(small_book) as bench:
+        await bench.type("hold")
+        await bench.type("note")
+        assert bench.app.bench.desk.slip.kind == "note"
+        assert list(bench.app.bench.desk.drafts) == ["hold"]
+        await bench.key("escape")
+        assert bench.app.bench.desk.slip is None
+        assert list(bench.app.bench.desk.drafts) == ["hold"]
